@@ -1,4 +1,5 @@
 import { builtinModules } from 'node:module';
+import { defineConfig } from 'eslint/config';
 import tseslint from 'typescript-eslint';
 
 // Whatever decides a result is the same on every machine: engines differ in these, clocks and locales always do.
@@ -24,7 +25,6 @@ const machineGlobals = [
     'console',
     'process',
     'Buffer',
-    'NodeJS',
     'global',
     'require',
     'module',
@@ -44,11 +44,20 @@ const powers = ['BinaryExpression', 'AssignmentExpression'].map((node) => ({
   selector: `${node}[operator=/^\\*\\*=?$/]`,
   message: 'Engines differ in powers: multiply.',
 }));
+const machineTypes = [
+  'TSTypeReference[typeName.name=/^(Buffer|Date)$/]',
+  'TSQualifiedName[left.name=/^(NodeJS|Intl)$/]',
+].map((selector) => ({ selector, message: 'Only cli/ may.' }));
 const defaultExports = [
   { selector: 'ExportDefaultDeclaration', message: 'Export by name.' },
   { selector: "ExportSpecifier[exported.name='default']", message: 'Export by name.' },
 ];
 const unfinishedTests = [
+  {
+    selector:
+      'CallExpression[callee.name=/^(it|test|describe)$/] > ObjectExpression > Property[key.name=/^(skip|only|todo|fails)$/]',
+    message: 'Every test runs, always.',
+  },
   {
     selector:
       'MemberExpression[object.name=/^(it|test|describe)$/][property.name=/^(skip|only|todo|skipIf|runIf|fails)$/]',
@@ -60,9 +69,9 @@ const unfinishedTests = [
   },
 ];
 
-export default tseslint.config(
+export default defineConfig(
   { ignores: ['dist/', 'out/', 'coverage/', 'test/fixtures/', 'test/golden/'] },
-  { linterOptions: { reportUnusedDisableDirectives: 'error', noInlineConfig: false } },
+  { linterOptions: { reportUnusedDisableDirectives: 'error' } },
   {
     files: ['**/*.ts'],
     extends: [tseslint.configs.recommendedTypeChecked],
@@ -70,6 +79,7 @@ export default tseslint.config(
     rules: {
       eqeqeq: 'error',
       'no-var': 'error',
+      '@typescript-eslint/no-import-type-side-effects': 'error',
       'prefer-const': 'error',
       '@typescript-eslint/consistent-type-imports': ['error', { fixStyle: 'separate-type-imports' }],
       '@typescript-eslint/switch-exhaustiveness-check': ['error', { considerDefaultExhaustiveForUnions: true }],
@@ -81,7 +91,7 @@ export default tseslint.config(
     files: ['src/**/*.ts'],
     ignores: ['src/cli/**'],
     rules: {
-      'no-restricted-syntax': ['error', ...defaultExports, ...powers],
+      'no-restricted-syntax': ['error', ...defaultExports, ...powers, ...machineTypes],
       'no-restricted-properties': ['error', ...unsteady],
       'no-restricted-globals': ['error', ...machineGlobals],
       'no-restricted-imports': ['error', { paths: nodeModules.map((name) => ({ name, message: 'Only cli/ may.' })) }],
