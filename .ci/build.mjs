@@ -16,38 +16,63 @@ import { join } from 'node:path';
 
 const cache = 'node_modules/.cache/steelyard';
 const stamp = join(cache, 'build');
-const command = join('cli', 'main.js');
+const fresh = join(cache, `dist-${process.pid}`);
+const former = join(cache, `former-${process.pid}`);
+const discard = (...dirs) => dirs.forEach((dir) => rmSync(dir, { recursive: true, force: true }));
 
-const filesIn = (dir) =>
-  readdirSync(dir, { recursive: true, withFileTypes: true })
-    .filter((entry) => entry.isFile())
-    .map((entry) => join(entry.parentPath, entry.name))
-    .sort();
-
-const sources = ['.ci/build.mjs', 'tsconfig.json', 'tsconfig.build.json', 'package-lock.json', ...filesIn('src')];
-
-// Names and contents of what goes in and of what came out: an edited or incomplete dist/ is built again too.
-const fingerprint = () => {
+const hashOf = (files, base = '.') => {
   const hash = createHash('sha256');
-  for (const file of [...sources, ...(existsSync('dist') ? filesIn('dist') : [])]) {
-    hash.update(`${file}\0`).update(createHash('sha256').update(readFileSync(file)).digest());
+  for (const file of files) {
+    const content = readFileSync(join(base, file));
+    hash.update(`${file}\0${content.length}\0`).update(content);
   }
   return hash.digest('hex');
 };
+const filesIn = (dir) =>
+  readdirSync(dir, { recursive: true, withFileTypes: true })
+    .filter((entry) => entry.isFile())
+    .map((entry) => join(entry.parentPath, entry.name).slice(dir.length + 1))
+    .sort();
+const hashOfTree = (dir) => hashOf(filesIn(dir), dir);
 
-if (!existsSync(stamp) || readFileSync(stamp, 'utf8') !== fingerprint()) {
-  const fresh = join(cache, `dist-${process.pid}`);
+// Read before the compiler reads them: a source edited meanwhile makes the next build a new one.
+const settings = hashOf(['.ci/build.mjs', 'tsconfig.json', 'tsconfig.build.json', 'package-lock.json']);
+const sources = `${settings} ${hashOfTree('src')}`;
+
+// An edited or incomplete dist/ does not match either, nor one that another build replaces at this moment.
+const isCurrent = () => {
+  try {
+    return readFileSync(stamp, 'utf8') === `${sources} ${hashOfTree('dist')}`;
+  } catch {
+    return false;
+  }
+};
+
+// Two renames, so that dist/ is whole whenever it is there; they are tried again when another build came between.
+const putInPlace = (attempts = 20) => {
+  try {
+    if (existsSync('dist')) renameSync('dist', former);
+    renameSync(fresh, 'dist');
+  } catch (error) {
+    if (attempts === 1) throw error;
+    discard(former);
+    putInPlace(attempts - 1);
+  }
+};
+
+const build = () => {
+  discard(fresh, former);
   mkdirSync(cache, { recursive: true });
   const tsc = ['node_modules/typescript/bin/tsc', '-p', 'tsconfig.build.json', '--outDir', fresh];
-  const status = spawnSync(process.execPath, tsc, { stdio: 'inherit' }).status;
-  if (status === 0) {
-    chmodSync(join(fresh, command), 0o755);
-    rmSync(stamp, { force: true });
-    rmSync('dist', { recursive: true, force: true });
-    renameSync(fresh, 'dist');
-    writeFileSync(stamp, fingerprint());
-  } else {
-    rmSync(fresh, { recursive: true, force: true });
-    process.exitCode = 1;
+  const good = spawnSync(process.execPath, tsc, { stdio: 'inherit' }).status === 0;
+  if (good) {
+    chmodSync(join(fresh, 'cli', 'main.js'), 0o755);
+    const built = `${sources} ${hashOfTree(fresh)}`;
+    putInPlace();
+    writeFileSync(stamp, built);
   }
-}
+  discard(fresh, former);
+  return good;
+};
+
+if (!isCurrent() && !build()) process.exitCode = 1;
