@@ -1,0 +1,158 @@
+import { Infeasible } from '../core/problem.js';
+import { nm } from '../core/units.js';
+import type { Layer, Technology, Via } from '../spec/technology.js';
+
+/** What the channel style needs of a technology, in whole nanometres on its grid. Widths are even multiples of the grid, so that centre lines lie on it. */
+export interface Rules {
+  readonly grid: number;
+  readonly plate: readonly [width: number, height: number];
+  readonly topPlate: readonly [width: number, height: number];
+  /** Tab on the bottom plate: how far it stands out, how tall it is. The left one sits `tabLevel` above the middle, the right one below. */
+  readonly tab: readonly [length: number, height: number];
+  readonly tabLevel: number;
+  /** Where the pad that leads from the top plate to the straps has its middle. */
+  readonly pad: readonly [x: number, y: number];
+  /** Side of that pad, and of any other landing between plate metal and the straps' metal. */
+  readonly padSize: number;
+  /** Spacing beside a bottom plate, and plain spacing on its metal. */
+  readonly wideSpacing: number;
+  readonly spacing: number;
+  readonly trackWidth: number;
+  readonly trackSpacing: number;
+  /** End-to-end spacing of two wires on one track. */
+  readonly lineSpacing: number;
+  readonly rowGap: number;
+  readonly strapWidth: number;
+  readonly frameWidth: number;
+  /** Between the frame's bottom side and the plates above it: a track and its spacing fit there. */
+  readonly bottomGap: number;
+  readonly minPlateWidth: number;
+  /** The most tracks under one piece of shield before it would count as wide metal. */
+  readonly tracksPerShield: number;
+  readonly viaTrack: { readonly size: number; readonly landing: number };
+  readonly viaFrame: { readonly size: number; readonly landing: number };
+}
+
+const layerOf = (technology: Technology, name: string): Layer => {
+  const layer = technology.layers.find((candidate) => candidate.name === name);
+  if (layer === undefined) throw new Infeasible(`The technology has no layer ${name}.`, 'Name a layer that it has.');
+  return layer;
+};
+
+/** The via between two named layers. @throws Infeasible where the technology has none. */
+export function viaBetween(technology: Technology, lower: string, upper: string): Via {
+  const via = technology.vias.find((candidate) => candidate.lower === lower && candidate.upper === upper);
+  if (via === undefined)
+    throw new Infeasible(`The technology has no via from ${lower} to ${upper}.`, 'Add one to its list of vias.');
+  return via;
+}
+
+/**
+ * Derives the dimensions of a channel-style drawing from a technology's rules.
+ * @throws Infeasible where the rules leave no room: which rule, and what would make it possible.
+ */
+export function drawingRules(technology: Technology): Rules {
+  const { unit, roles } = technology;
+  if (technology.hookup !== 'channel')
+    throw new Infeasible(`The technology is made for the ${technology.hookup} hookup.`, 'Use a channel technology.');
+  const grid = technology.grid_nm;
+  const even = (length: number) => Math.ceil(length / (2 * grid)) * 2 * grid;
+  const length = (value: number | undefined) => nm(value ?? 0);
+
+  const lower = layerOf(technology, roles.trunk);
+  const plateMetal = layerOf(technology, roles.bottomPlate);
+  const topPlateLayer = layerOf(technology, roles.topPlate);
+  const upper = layerOf(technology, roles.strap);
+  const toPlate = viaBetween(technology, roles.trunk, roles.stub);
+  const toTop = viaBetween(technology, roles.topPlate, roles.strap);
+  const toUpper = viaBetween(technology, roles.bottomPlate, roles.strap);
+
+  const topPlate = [nm(unit.topPlate_um[0]), nm(unit.topPlate_um[1])] as const;
+  const margin = nm(unit.plateEnclosure_um);
+  const plate = [topPlate[0] + 2 * margin, topPlate[1] + 2 * margin] as const;
+  const spacing = length(plateMetal.minSpacing_um);
+  const minPlateWidth = length(plateMetal.minWidth_um);
+  const wideFrom = plateMetal.wideFrom_um === undefined ? Infinity : nm(plateMetal.wideFrom_um);
+  const isWide = Math.min(plate[0], plate[1]) >= wideFrom;
+  const wideSpacing = isWide ? Math.max(spacing, length(plateMetal.wideSpacing_um)) : spacing;
+
+  const landing = (via: Via) => even(nm(via.size_um) + 2 * nm(via.enclosure_um));
+  const viaTrack = { size: nm(toPlate.size_um), landing: landing(toPlate) };
+  const viaFrame = { size: nm(toUpper.size_um), landing: landing(toUpper) };
+  const tab = [nm(unit.tab_um[0]), nm(unit.tab_um[1])] as const;
+  const lineSpacing = length(lower.minSpacing_um);
+  const trackWidth = even(Math.max(length(lower.minWidth_um), minPlateWidth, viaTrack.landing, tab[1]));
+  const trackSpacing = Math.max(spacing, lineSpacing, nm(toPlate.spacing_um) - (trackWidth - viaTrack.size));
+  const upperSpacing = length(upper.minSpacing_um);
+  const rowGap = even(
+    Math.max(wideSpacing, length(upper.minWidth_um), length(topPlateLayer.minSpacing_um) - 2 * margin),
+  );
+  const strapWidth = rowGap;
+  const padSize = even(Math.max(landing(toTop), viaFrame.landing, length(upper.minWidth_um)));
+  const frameWidth = even(Math.max(minPlateWidth, viaFrame.landing, trackWidth));
+  const bottomGap = even(Math.max(trackWidth + spacing, wideSpacing));
+  const pad = [nm(unit.terminals.top.at_um[0]), nm(unit.terminals.top.at_um[1])] as const;
+  const tabLevel = nm(unit.tabLevel_um);
+
+  const stop = (because: string, remedy: string): never => {
+    throw new Infeasible(because, remedy);
+  };
+  const inMicrometres = (value: number) => `${value / 1000} um`;
+  const levels = trackWidth + 2 * spacing + minPlateWidth;
+  if (2 * tabLevel < levels || plate[1] + rowGap - 2 * tabLevel < levels)
+    stop(
+      `The two tab levels stand ${inMicrometres(2 * tabLevel)} apart and ${inMicrometres(plate[1] + rowGap - 2 * tabLevel)} from the next row's; a stub, its spacing and a shield between them need ${inMicrometres(levels)}.`,
+      'Change tabLevel_um or take a larger plate.',
+    );
+  if (tab[1] > trackWidth || tab[1] < minPlateWidth)
+    stop(
+      `A tab ${inMicrometres(tab[1])} tall does not fit a stub ${inMicrometres(trackWidth)} wide under a width rule of ${inMicrometres(minPlateWidth)}.`,
+      'Change tab_um.',
+    );
+  if (tab[0] + spacing > wideSpacing)
+    stop(
+      `A tab ${inMicrometres(tab[0])} long leaves less than ${inMicrometres(spacing)} to a shield ${inMicrometres(wideSpacing)} beside the plate.`,
+      'Make the tab as long as the wide spacing exceeds the plain one.',
+    );
+  if (pad[0] - padSize / 2 - strapWidth / 2 < upperSpacing)
+    stop(
+      `The pad of the top plate stands ${inMicrometres(pad[0] - padSize / 2 - strapWidth / 2)} beside its strap; ${inMicrometres(upperSpacing)} are needed.`,
+      'Move terminals.top to the right.',
+    );
+  if (pad[0] + padSize / 2 > topPlate[0] / 2 || Math.abs(pad[1]) + padSize / 2 > topPlate[1] / 2)
+    stop('The pad of the top plate does not lie inside it.', 'Move terminals.top inwards or take a larger plate.');
+  const tracksPerShield = Math.floor((wideFrom - 1 + trackSpacing) / (trackWidth + trackSpacing));
+  if (tracksPerShield < 1)
+    stop(
+      `A shield one track wide (${inMicrometres(trackWidth)}) already counts as wide metal.`,
+      'Raise wideFrom_um of the plate metal or narrow the track.',
+    );
+  return {
+    grid,
+    plate,
+    topPlate,
+    tab,
+    tabLevel,
+    pad,
+    padSize,
+    wideSpacing,
+    spacing,
+    trackWidth,
+    trackSpacing,
+    lineSpacing,
+    rowGap,
+    strapWidth,
+    frameWidth,
+    bottomGap,
+    minPlateWidth,
+    tracksPerShield: Math.min(tracksPerShield, 1000),
+    viaTrack,
+    viaFrame,
+  };
+}
+
+/** Column and row pitch in nanometres for a number of tracks per channel. */
+export const pitchOf = (rules: Rules, tracks: number): [x: number, y: number] => [
+  rules.plate[0] + 2 * rules.wideSpacing + tracks * rules.trackWidth + (tracks - 1) * rules.trackSpacing,
+  rules.plate[1] + rules.rowGap,
+];

@@ -1,0 +1,53 @@
+import type { Placement } from './floorplan.js';
+
+/** A figure that is exactly 0 has no worst direction, shape or code. */
+export interface FirstOrder {
+  readonly inl_lsb: number;
+  readonly dnl_lsb?: number;
+  readonly inl_lsb_per_ppm_per_um: number;
+  readonly dnl_lsb_per_ppm_per_um?: number;
+  /** Counter-clockwise from the x axis, 0 to 180. */
+  readonly worstDirection_deg?: number;
+  /** The bits that are on. */
+  readonly worstCode?: readonly string[];
+}
+
+export interface SecondOrder {
+  readonly inl_lsb: number;
+  readonly dnl_lsb?: number;
+  readonly inl_lsb_per_ppm_per_um2: number;
+  readonly dnl_lsb_per_ppm_per_um2?: number;
+  /** Spectral norm 1, first non-zero entry positive. */
+  readonly worstShape?: { readonly xx: number; readonly xy: number; readonly yy: number };
+  readonly worstCode?: readonly string[];
+  readonly lowerBound_inl_lsb?: number;
+}
+
+export interface HookupFigures {
+  readonly columnNets: number;
+  readonly trunks?: number;
+  readonly tracksPerChannel?: number;
+  readonly crossovers?: number;
+  readonly sameMetalCrossings?: number;
+  readonly bends?: number;
+  readonly vias?: number;
+  readonly wireLength_um?: number;
+}
+
+export interface Metrics {
+  readonly format: 'steelyard/metrics';
+  readonly version: 1;
+  readonly name: string;
+  readonly core: { readonly rows: number; readonly columns: number; readonly pitch_um: readonly [number, number] };
+  readonly status?: Placement['status'];
+  readonly gradient: {
+    readonly first: FirstOrder;
+    readonly second: SecondOrder;
+    readonly own?: { readonly inl_lsb: number; readonly dnl_lsb?: number };
+  };
+  readonly mismatch?: {
+    readonly placement: { readonly inlSigma_perUnitSigma: number; readonly dnlSigma_perUnitSigma: number };
+  };
+  readonly hookup: HookupFigures;
+  readonly area_um2?: number;
+}

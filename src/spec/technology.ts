@@ -1,0 +1,122 @@
+/** Types of a technology template. Lengths in micrometres as in the file; keys are the file's. */
+
+export type LayerKind =
+  | 'metal'
+  | 'plate'
+  | 'diffusion'
+  | 'implant'
+  | 'well'
+  | 'outline'
+  | 'marker'
+  | 'label'
+  | 'pin';
+
+export interface Stream {
+  readonly layer: number;
+  readonly datatype: number;
+}
+
+export interface Layer {
+  readonly name: string;
+  readonly lefName?: string;
+  readonly stream: Stream;
+  readonly kind: LayerKind;
+  /** The metal that a pin or label layer belongs to. */
+  readonly of?: string;
+  readonly minWidth_um?: number;
+  readonly minSpacing_um?: number;
+  readonly wideFrom_um?: number;
+  readonly wideSpacing_um?: number;
+  readonly minArea_um2?: number;
+  readonly minEnclosedArea_um2?: number;
+  readonly maxWidth_um?: number;
+  readonly sheetResistance_ohm?: number;
+  readonly thickness_um?: number;
+  /** Height of the underside above the substrate. */
+  readonly height_um?: number;
+}
+
+export interface Via {
+  readonly name: string;
+  readonly stream: Stream;
+  readonly lower: string;
+  readonly upper: string;
+  readonly size_um: number;
+  readonly spacing_um: number;
+  /** On all sides, in both layers. */
+  readonly enclosure_um: number;
+  readonly resistance_ohm?: number;
+}
+
+export interface Terminal {
+  readonly layer: string;
+  readonly at_um: readonly [number, number];
+}
+
+/** A bottom plate with a smaller top plate on it; tabs left (upper level) and right (lower level) of the bottom plate. */
+export interface ParallelPlateUnit {
+  readonly kind: 'parallel-plate';
+  readonly topPlate_um: readonly [number, number];
+  readonly plateEnclosure_um: number;
+  readonly tab_um: readonly [number, number];
+  readonly tabLevel_um: number;
+  readonly capacitance_fF: number;
+  readonly terminals: { readonly bottom: Terminal; readonly top: Terminal };
+}
+
+export interface Gradient {
+  readonly linear_ppm_per_um?: number;
+  readonly quadratic_ppm_per_um2?: number | { readonly xx: number; readonly xy: number; readonly yy: number };
+  readonly direction_deg?: number;
+}
+
+export interface Device {
+  readonly model: string;
+  readonly prefix: 'C' | 'X';
+  readonly terminals: readonly string[];
+  readonly bulk?: string;
+  readonly parameters?: Readonly<Record<string, string>>;
+  readonly multiplicity?: string;
+}
+
+export interface Roles {
+  readonly bottomPlate: string;
+  readonly topPlate: string;
+  readonly trunk: string;
+  readonly stub: string;
+  readonly bus: string;
+  readonly strap: string;
+  readonly spine: string;
+  readonly marker: string;
+  readonly fillExclusion: string;
+  readonly boundary: string;
+}
+
+export interface Technology {
+  readonly format: 'steelyard/technology';
+  readonly version: 1;
+  readonly name: string;
+  readonly description: string;
+  readonly hookup: 'channel' | 'under-plate';
+  readonly grid_nm: number;
+  readonly layers: readonly Layer[];
+  readonly vias: readonly Via[];
+  readonly viaUnderTopPlate: boolean;
+  readonly wiresUnderPlate: boolean;
+  readonly dielectric: {
+    readonly relativePermittivity: number;
+    readonly plateCapacitance_fF_per_um2: number;
+    readonly plateFringe_fF_per_um?: number;
+  };
+  readonly unit: ParallelPlateUnit;
+  readonly mismatch: {
+    readonly coefficient_percent_um: number;
+    readonly of: 'single' | 'pair';
+    readonly correlatedSigma_percent?: number;
+    readonly correlationLength_um?: number;
+  };
+  readonly gradient: Gradient;
+  readonly proximityReach_um: number;
+  readonly device: Device;
+  readonly roles: Roles;
+}
