@@ -84,7 +84,10 @@ export function planHookup(placed: Placed, tracks?: number): Plan & { readonly p
   const least = assignSides(problem)!;
   const lay = (sides: Sides | null, width: number) => (sides === null ? null : layTracks(placed, sides, index, width));
   if (tracks !== undefined) {
-    const asked = tracks <= least.tracks ? lay(tracks < least.tracks ? null : least, tracks) : lay(assignSides(problem, tracks), tracks);
+    const asked =
+      tracks <= least.tracks
+        ? lay(tracks < least.tracks ? null : least, tracks)
+        : lay(assignSides(problem, tracks), tracks);
     if (asked !== null) return asked;
   }
   // One track more than the nets need is always enough for fill dummies and a termination.

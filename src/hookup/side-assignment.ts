@@ -94,8 +94,7 @@ function fewestTrunks(masks: readonly number[], nets: number, tracks: number): I
   }
   // The last channel holds what the last column sends right.
   let any = false;
-  for (let state = 0; state < size; state++)
-    if (reach[state]! < never && popcount(state) <= tracks) any = true;
+  for (let state = 0; state < size; state++) if (reach[state]! < never && popcount(state) <= tracks) any = true;
   return any ? layers : null;
 }
 

@@ -15,8 +15,7 @@ export interface ChannelNet {
   readonly fromRight: readonly number[];
 }
 
-const top = (entry: ChannelNet): number =>
-  Math.min(entry.fromLeft[0] ?? Infinity, entry.fromRight[0] ?? Infinity);
+const top = (entry: ChannelNet): number => Math.min(entry.fromLeft[0] ?? Infinity, entry.fromRight[0] ?? Infinity);
 
 const countBelow = (heights: readonly number[], from: number): number => {
   let count = 0;
@@ -33,8 +32,7 @@ export function orderTracks(entries: readonly ChannelNet[]): { order: ChannelNet
   const count = entries.length;
   const before = new Int32Array(count * count);
   for (let m = 0; m < count; m++)
-    for (let n = 0; n < count; n++)
-      if (m !== n) before[m * count + n] = crossoversBetween(entries[m]!, entries[n]!);
+    for (let n = 0; n < count; n++) if (m !== n) before[m * count + n] = crossoversBetween(entries[m]!, entries[n]!);
   const states = 1 << count;
   const best = new Int32Array(states).fill(0x7fffffff);
   const last = new Int8Array(states);
