@@ -87,7 +87,7 @@ function writeBoundary(out: record.StreamRecords, { layer, datatype, xy }: Polyg
   out.begin(record.DATATYPE).int16(datatype).end();
   out.begin(record.XY);
   for (const corner of xy) point(out, corner);
-  point(out, xy[0] as Point);
+  point(out, xy[0]);
   out.end().bare(record.ENDEL);
 }
 

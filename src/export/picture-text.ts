@@ -1,0 +1,39 @@
+/** Text for pictures: names from files made harmless, and widths estimated, for there is no font to measure with. */
+
+export const fontFamily = 'DejaVu Sans, Verdana, Helvetica, Arial, sans-serif';
+
+const LONGEST = 32;
+
+// Controls, surrogates without a partner, invisible spaces and everything that turns the direction of writing; then the noncharacters.
+const unwanted = /[\p{Cc}\p{Cf}\p{Cs}\p{Co}\p{Cn}\p{Zl}\p{Zp}]/u;
+
+/** The text on one line, without characters that cannot be seen, cut to a length that a legend can hold. */
+export function plainText(text: string): string {
+  let plain = '';
+  let length = 0;
+  for (const character of text) {
+    const shown = /\s/u.test(character) ? ' ' : unwanted.test(character) ? '' : character;
+    if (shown === '') continue;
+    if (++length > LONGEST) return `${plain.trim()}…`;
+    plain += shown;
+  }
+  return plain.trim();
+}
+
+/** Estimated width in units of the font size, on the wide side. */
+export function textWidth(text: string, size: number, bold = false): number {
+  let width = 0;
+  for (const character of text) {
+    if (/[ ilIjft.,:;'|!()[\]·-]/.test(character)) width += 0.38;
+    else if (/[mwMW@%—]/.test(character)) width += 0.98;
+    else if (/[A-Z&]/.test(character)) width += 0.72;
+    else if (character.charCodeAt(0) < 0x2000) width += 0.64;
+    else width += 1.05;
+  }
+  return Math.ceil(width * size * (bold ? 1.1 : 1));
+}
+
+/** At most three decimals, no trailing zeros. */
+export const decimal = (value: number): string => String(Math.round(value * 1000) / 1000);
+
+export const counted = (count: number, one: string): string => `${count} ${one}${count === 1 ? '' : 's'}`;
