@@ -1,15 +1,6 @@
 /** Types of a technology template. Lengths in micrometres as in the file; keys are the file's. */
 
-export type LayerKind =
-  | 'metal'
-  | 'plate'
-  | 'diffusion'
-  | 'implant'
-  | 'well'
-  | 'outline'
-  | 'marker'
-  | 'label'
-  | 'pin';
+export type LayerKind = 'metal' | 'plate' | 'diffusion' | 'implant' | 'well' | 'outline' | 'marker' | 'label' | 'pin';
 
 export interface Stream {
   readonly layer: number;

@@ -1,0 +1,329 @@
+import { figure } from '../core/figure.js';
+import type { ArraySpec } from './array-spec.js';
+import { record } from './loose.js';
+import {
+  atLeastZero,
+  choice,
+  gradient,
+  length,
+  lengthOrZero,
+  list,
+  name,
+  object,
+  pair,
+  positive,
+  seed,
+  share,
+  worded,
+  whole,
+} from './schema-parts.js';
+import type { Schema } from './schema-parts.js';
+import type { Technology } from './technology.js';
+
+/** One key of an array file. This table is its only description: schema, defaults, help and documentation come from it. */
+export interface Option {
+  readonly key: string;
+  /** What the file may hold, in words. */
+  readonly values: string;
+  /** The default in words; "-" where one is required. */
+  readonly standard: string;
+  /** One line of help. */
+  readonly help: string;
+  /** The command line's form, where it has one. */
+  readonly flag?: string;
+  /** False: the key is refused by name in this version. */
+  readonly available: boolean;
+  readonly schema: Schema;
+  /** Which of the schema's values work in this version; absent: all. */
+  readonly works?: { readonly accepts: (value: unknown) => boolean; readonly wanted: string };
+  /** The default, from the keys resolved before this one; absent where the tool chooses later or nothing is the default. */
+  readonly resolve?: (before: ArraySpec, technology: Technology) => unknown;
+}
+
+export const mostBits = 14;
+export const mostWeights = 20;
+export const mostWeight = 16383;
+export const mostCells = 40000;
+export const mostRings = 3;
+
+const side = choice('bottom', 'top');
+const standardPins = { bits: { side: 'bottom' }, top: { side: 'top' } };
+
+function hasStandardPins(value: unknown): boolean {
+  const { bits = standardPins.bits, top = standardPins.top } = record(value);
+  const keys = Object.keys(record(bits));
+  return record(bits).side === 'bottom' && record(top).side === 'top' && keys.length === 1;
+}
+
+const allBut = (later: string, ...now: string[]): NonNullable<Option['works']> => ({
+  accepts: (value) => value !== later,
+  wanted: `${now.map((v) => `"${v}"`).join(' or ')} ("${later}" is not available yet)`,
+});
+
+/** Rings of dummies whose pitch, at least that of the plate and its wide spacing, add up to the proximity reach. */
+export function ringsToReach({ unit, layers, roles, proximityReach_um }: Technology): number {
+  const plate = Math.min(...unit.topPlate_um) + 2 * unit.plateEnclosure_um;
+  const metal = layers.find((l) => l.name === roles.bottomPlate);
+  const wide = metal?.wideFrom_um !== undefined && plate >= metal.wideFrom_um;
+  const spacing = (wide ? metal.wideSpacing_um : metal?.minSpacing_um) ?? 0;
+  const nanometres = (length_um: number): number => Math.round(length_um * 1000);
+  return Math.max(1, Math.ceil(nanometres(proximityReach_um) / nanometres(plate + spacing)));
+}
+
+/** Relative standard deviation of one unit by the area law: the coefficient over the square root of the top plate's area. */
+function unitMismatch({ mismatch, unit }: Technology): NonNullable<ArraySpec['mismatch']> {
+  const area_um2 = unit.topPlate_um[0] * unit.topPlate_um[1];
+  // A coefficient of pairs is that of a difference of two units: its variance is twice a unit's.
+  const variances = mismatch.of === 'pair' ? 2 : 1;
+  return {
+    localSigma_percent: figure(mismatch.coefficient_percent_um / Math.sqrt(area_um2 * variances)),
+    correlatedSigma_percent: mismatch.correlatedSigma_percent ?? 0,
+    correlationLength_um: mismatch.correlationLength_um ?? 0,
+  };
+}
+
+export const options: readonly Option[] = [
+  {
+    key: 'name',
+    values: 'a letter, then letters, digits, `_`, 24 at most',
+    standard: '`cdac<bits>`, with weights `cdac<capacitors>w`',
+    help: 'name of the array, of its files and of its structures',
+    available: true,
+    schema: name,
+    resolve: ({ bits, weights }) => (weights === undefined ? `cdac${bits}` : `cdac${weights.length}w`),
+  },
+  {
+    key: 'bits',
+    values: `whole number 2 to ${mostBits}; instead of \`weights\``,
+    standard: '-',
+    help: 'number of bits, weights 1, 2, 4, ...',
+    flag: '--bits <count>',
+    available: true,
+    schema: whole(2, mostBits),
+  },
+  {
+    key: 'weights',
+    values: `2 to ${mostWeights} whole numbers, least significant bit first, ${mostWeight} in all at most; instead of \`bits\``,
+    standard: '-',
+    help: 'weights of the bits in units',
+    available: true,
+    schema: list(whole(1, mostWeight), 2, mostWeights),
+  },
+  {
+    key: 'technology',
+    values: "a shipped template's name, or a file ending in `.json`, relative to this one",
+    standard: '`parallel-plate`',
+    help: 'technology template',
+    flag: '--technology <name or file>',
+    available: true,
+    schema: worded('^[^\\u0000-\\u001f\\u007f]{1,1000}$', "a shipped template's name or the name of a .json file"),
+    resolve: (_, technology) => technology.name,
+  },
+  {
+    key: 'hookup',
+    values: '`"channel"`, `"under-plate"`',
+    standard: "the technology's",
+    help: 'where the trunks run: in channels between the columns or under the plates',
+    flag: '--hookup <style>',
+    available: true,
+    schema: choice('channel', 'under-plate'),
+    works: allBut('under-plate', 'channel'),
+    resolve: (_, technology) => technology.hookup,
+  },
+  {
+    key: 'unit_fF',
+    values: "the technology's own; others are not available yet",
+    standard: "the technology's",
+    help: 'capacitance of one unit',
+    available: true,
+    schema: positive,
+    resolve: (_, technology) => technology.unit.capacitance_fF,
+  },
+  {
+    key: 'core',
+    values: `\`{rows, columns}\`, ${mostCells} cells at most; with --floorplan-only also \`pitch_um: [x, y]\``,
+    standard: 'chosen',
+    help: 'rows and columns of the core',
+    flag: '--core <RxC>',
+    available: true,
+    schema: object({ rows: whole(1, mostCells), columns: whole(1, mostCells), 'pitch_um?': pair(length) }),
+  },
+  {
+    key: 'block',
+    values: '`{maxWidth_um, maxHeight_um}`, one or both',
+    standard: 'no limit',
+    help: 'limits of the whole block, rings and buses included',
+    available: false,
+    schema: object({ 'maxWidth_um?': length, 'maxHeight_um?': length }),
+  },
+  {
+    key: 'tracksPerChannel',
+    values: 'whole number from 1',
+    standard: 'chosen',
+    help: 'tracks in a channel',
+    available: true,
+    schema: whole(1, 64),
+  },
+  {
+    key: 'rings',
+    values: `whole number 0 to ${mostRings}`,
+    standard: "the least that covers the technology's `proximityReach_um`, at least 1",
+    help: 'rings of dummies around the core',
+    flag: '--rings <count>',
+    available: true,
+    schema: whole(0, mostRings),
+    resolve: (_, technology) => ringsToReach(technology),
+  },
+  {
+    key: 'termination',
+    values: '`"ring"`, `"core"`, `"none"`',
+    standard: '`"ring"` with one ring or more, else `"none"`',
+    help: 'where the termination unit lies',
+    available: true,
+    schema: choice('ring', 'core', 'none'),
+    resolve: ({ rings = 0 }) => (rings >= 1 ? 'ring' : 'none'),
+  },
+  {
+    key: 'fillTop',
+    values: '`"TOP"` (the same surroundings for all, costs gain only), `"VSS"`',
+    standard: '`"TOP"`',
+    help: "net of the fill dummies' top plates",
+    available: true,
+    schema: choice('TOP', 'VSS'),
+    resolve: () => 'TOP',
+  },
+  {
+    key: 'emphasis',
+    values: '`"balanced"`, `"gradient"`, `"dispersed"`, `"wiring"`; `"dispersed"` is not available yet',
+    standard: '`"balanced"`',
+    help: 'what the placement gives most weight to',
+    flag: '--emphasis <which>',
+    available: true,
+    schema: choice('balanced', 'gradient', 'dispersed', 'wiring'),
+    works: allBut('dispersed', 'balanced', 'gradient', 'wiring'),
+    resolve: () => 'balanced',
+  },
+  {
+    key: 'effort',
+    values: '`"quick"`, `"normal"`, `"thorough"`',
+    standard: '`"normal"`',
+    help: 'how much work the search may spend',
+    flag: '--effort <how much>',
+    available: true,
+    schema: choice('quick', 'normal', 'thorough'),
+    resolve: () => 'normal',
+  },
+  {
+    key: 'seed',
+    values: 'whole number from 0',
+    standard: '1',
+    help: "seed of the search's random numbers",
+    flag: '--seed <number>',
+    available: true,
+    schema: seed,
+    resolve: () => 1,
+  },
+  {
+    key: 'balance',
+    values: '`"on"`, `"off"`; `"on"` is not available yet',
+    standard: '`"off"`',
+    help: 'whether coupling to TOP is balanced to the weights',
+    flag: '--balance <on|off>',
+    available: true,
+    schema: choice('on', 'off'),
+    works: allBut('on', 'off'),
+    resolve: () => 'off',
+  },
+  {
+    key: 'gradient',
+    values:
+      "`{linear_ppm_per_um, quadratic_ppm_per_um2: number or {xx, xy, yy}, direction_deg}` about the core's centre",
+    standard: "the technology's expectation; without a direction the worst one",
+    help: 'gradient to expect across the array',
+    available: true,
+    schema: gradient,
+    resolve: (_, technology) => technology.gradient,
+  },
+  {
+    key: 'mismatch',
+    values: '`{localSigma_percent, correlatedSigma_percent, correlationLength_um}`',
+    standard: "the technology's, scaled to the unit",
+    help: 'random mismatch of one unit',
+    available: false,
+    schema: object({
+      localSigma_percent: atLeastZero,
+      correlatedSigma_percent: atLeastZero,
+      correlationLength_um: lengthOrZero,
+    }),
+    resolve: (_, technology) => unitMismatch(technology),
+  },
+  {
+    key: 'drive',
+    values: '`{switch_ohm: number or list, reference_ohm}`',
+    standard: 'none: no settling',
+    help: 'resistance of the switches and of the reference',
+    available: false,
+    schema: object({
+      switch_ohm: { type: ['number', 'array'], minimum: 0, maximum: 1e12, items: atLeastZero, maxItems: mostWeights },
+      'reference_ohm?': atLeastZero,
+    }),
+  },
+  {
+    key: 'topLoad_fF',
+    values: 'number from 0',
+    standard: '0',
+    help: 'what hangs on TOP outside the array',
+    available: false,
+    schema: atLeastZero,
+  },
+  {
+    key: 'pins',
+    values: '`{bits: {side, order, pitch_um}, top: {side}}`; others than the default are not available yet',
+    standard: '`{bits: {side: "bottom"}, top: {side: "top"}}`',
+    help: 'where the pins lie',
+    available: true,
+    schema: object({
+      'bits?': object({ side, 'order?': list(name, 1, mostWeights + 1), 'pitch_um?': length }),
+      'top?': object({ side }),
+    }),
+    works: {
+      accepts: hasStandardPins,
+      wanted: '{"bits": {"side": "bottom"}, "top": {"side": "top"}} (other pins are not available yet)',
+    },
+    resolve: () => standardPins,
+  },
+  {
+    key: 'pair',
+    values: '`"none"`, `"mirrored"`; `"mirrored"` is not available yet',
+    standard: '`"none"`',
+    help: 'two arrays for a differential converter',
+    available: true,
+    schema: choice('none', 'mirrored'),
+    works: allBut('mirrored', 'none'),
+    resolve: () => 'none',
+  },
+  {
+    key: 'limits',
+    values: '`{inl_lsb, dnl_lsb, yield}`',
+    standard: 'none',
+    help: 'what the drawn array must keep',
+    available: false,
+    schema: object({ 'inl_lsb?': positive, 'dnl_lsb?': positive, 'yield?': share }),
+  },
+];
+
+/** The table as Markdown, for the documentation. */
+export function optionsMarkdown(): string {
+  const escape = (cell: string): string => cell.replaceAll('|', '\\|').replaceAll('<', '&lt;');
+  const code = (words: string): string => `\`${words.replaceAll('|', '\\|')}\``;
+  const inCode = (cell: string): string =>
+    cell
+      .split('`')
+      .map((part, i) => (i % 2 ? code(part) : escape(part)))
+      .join('');
+  const rows = options.map(({ key, values, standard, help, flag, available }) => {
+    const what = available ? inCode(values) : `${inCode(values)}; not available yet`;
+    return `| ${code(key)} | ${help} | ${what} | ${inCode(standard)} | ${flag === undefined ? '' : code(flag)} |`;
+  });
+  return ['| key | what it is | values | default | command line |', '|---|---|---|---|---|', ...rows, ''].join('\n');
+}

@@ -1,0 +1,42 @@
+import type { Result } from '../core/problem.js';
+import type { ArraySpec } from './array-spec.js';
+import { integer, items, record } from './loose.js';
+import { mostCells, mostWeight, options } from './options.js';
+import { read } from './read.js';
+import type { Refusal } from './read.js';
+import type { Report } from './report.js';
+import { quoted, shown } from './words.js';
+
+/** What the shape of an array file, or of the array in a floorplan, does not say. */
+export function checkArray(value: unknown, report: Report, at: string): void {
+  const array = record(value);
+  const given = ['bits', 'weights'].filter((key) => array[key] !== undefined);
+  if (given.length === 2) report.add(`${at}/weights`, '"weights" beside "bits"', 'one of the two', 'key');
+  if (given.length === 0) report.add(at, 'neither "bits" nor "weights"', 'one of the two');
+  const total = items(array.weights).reduce<number>((sum, weight) => sum + (integer(weight) ?? 0), 0);
+  if (total > mostWeight) report.add(`${at}/weights`, `weights of ${total} in all`, `${mostWeight} in all at most`);
+  const core = record(array.core);
+  const cells = (integer(core.rows) ?? 0) * (integer(core.columns) ?? 0);
+  if (cells > mostCells) report.add(`${at}/core`, `a core of ${cells} cells`, `${mostCells} cells at most`);
+}
+
+/** What an array file asks for and this version has not. */
+function refusals(value: unknown): Refusal[] {
+  const array = record(value);
+  return options.flatMap(({ key, available, works }): Refusal[] => {
+    const given = array[key];
+    if (given === undefined) return [];
+    const pointer = `/${key}`;
+    if (!available) {
+      const wanted = `it left out: ${quoted(key)} is not available yet`;
+      return [{ pointer, found: `key ${quoted(key)}`, wanted, place: 'key' }];
+    }
+    if (works === undefined || works.accepts(given)) return [];
+    return [{ pointer, found: shown(given), wanted: works.wanted, place: 'value' }];
+  });
+}
+
+/** Reads an array file (`steelyard/array`). Keys and values that a later version may bring are refused by name. */
+export function parseArray(text: string, file: string): Result<ArraySpec> {
+  return read('array', { text, file }, { refusals, check: (value, report) => checkArray(value, report, '') });
+}
