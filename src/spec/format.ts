@@ -60,7 +60,7 @@ function lines(value: unknown, key: string, indent: string): string {
     return `[\n${inner}${text.join(`,\n${inner}`)}\n${indent}]`;
   }
   const entries = entriesOf(value as Keyed);
-  if (!entries.some(([k]) => tall.has(k))) {
+  if (!entries.some(([k, v]) => tall.has(k) && Array.isArray(v))) {
     const line = flat(value);
     if (line.length <= lineWidth) return line;
   }

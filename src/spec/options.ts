@@ -56,7 +56,7 @@ function hasStandardPins(value: unknown): boolean {
 }
 
 const allBut = (later: string, ...now: string[]): NonNullable<Option['works']> => ({
-  accepts: (value) => value !== later,
+  accepts: (value) => now.some((v) => v === value),
   wanted: `${now.map((v) => `"${v}"`).join(' or ')} ("${later}" is not available yet)`,
 });
 
