@@ -26,6 +26,8 @@ export interface GradientFigures {
   readonly own?: { readonly inl_lsb: number; readonly dnl_lsb?: number };
   /** As `first.inl_lsb` and `second.inl_lsb`, but from the least-squares line through all 2^N codes. */
   readonly leastSquares: { readonly firstInl_lsb: number; readonly secondInl_lsb: number };
+  /** The second order equals its lower bound exactly: no placement without first order has less. */
+  readonly meetsBound: boolean;
 }
 
 /**
@@ -82,6 +84,7 @@ export function analyseGradient({ core, capacitors, cells, gradient }: GradientI
   return {
     first,
     second,
+    meetsBound: bound?.squared === worst2.squared,
     ...(own && {
       own: { inl_lsb: worstOwnError(own, residuals, half), ...(steps && { dnl_lsb: steps.own }) },
     }),

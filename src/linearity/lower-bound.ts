@@ -1,5 +1,7 @@
 import type { Capacitor, Core } from '../spec/floorplan.js';
 import { perPpmPerUm2, pitchNm, onePercent } from './figures.js';
+import { visitZeroSumSets } from './fill-sets.js';
+import type { Places, Spread } from './fill-sets.js';
 import { offset2 } from './moments.js';
 import { nuclearNormSquared } from './worst-code.js';
 
@@ -13,9 +15,6 @@ export interface SecondOrderBound {
 
 /** Pairs times fill sets that are looked at; more than that, and there is no bound. */
 const MOST_WORK = 4_000_000;
-
-/** Second moments in half-pitches squared. */
-type Spread = readonly [xx: number, xy: number, yy: number];
 
 /**
  * A bound below the second order of every placement of these bits on this core whose first order is exactly 0. The cells without a bit
@@ -42,30 +41,28 @@ export function lowerBound(core: Core, bits: readonly Capacitor[]): SecondOrderB
   // |sum of the fill's coordinates| <= fill * half the core, in pitches.
   if (fill * ((columns - 1) / 2) >= total || fill * ((rows - 1) / 2) >= total) return undefined;
 
-  const half = (rows * columns - 1) / 2;
-  if (fill > 0 && choices(2 * half, fill - 1) * half > MOST_WORK) return undefined;
+  const pairs = (rows * columns - 1) / 2;
+  if (fill > 0 && (choices(2 * pairs, fill - 1) / fill) * pairs > MOST_WORK) return undefined;
   const squared = leastSquaredNorm(core, total, fill);
   if (squared === undefined) return undefined;
   const perPpm = perPpmPerUm2(squared, BigInt(total));
   return { squared, inl_lsb: perPpm * onePercent(core, 2), inl_lsb_per_ppm_per_um2: perPpm };
 }
 
-const choices = (n: number, k: number): number => {
+function choices(n: number, k: number): number {
   let product = 1;
   for (let i = 0; i < k; i++) product = (product * (n - i)) / (i + 1);
   return product;
-};
+}
 
 function leastSquaredNorm(core: Core, total: number, fill: number): bigint | undefined {
-  const { rows, columns } = core;
-  const centre = (rows * columns - 1) / 2;
-  const xOf = (cell: number): number => offset2(cell % columns, columns);
-  const yOf = (cell: number): number => -offset2(Math.floor(cell / columns), rows);
-  const whole: [number, number, number] = [0, 0, 0];
-  for (let cell = 0; cell < rows * columns; cell++) {
-    whole[0] += xOf(cell) * xOf(cell);
-    whole[1] += xOf(cell) * yOf(cell);
-    whole[2] += yOf(cell) * yOf(cell);
+  const places = placesOf(core);
+  const { x, y } = places;
+  const centre = (x.length - 1) / 2;
+  const whole = { xx: 0, xy: 0, yy: 0 };
+  for (let cell = 0; cell < x.length; cell++) {
+    whole.xx += x[cell] * x[cell];
+    whole.yy += y[cell] * y[cell];
   }
   const [px, py] = pitchNm(core.pitch_um);
   const norm2 = (xx: number, xy: number, yy: number): number => {
@@ -75,73 +72,50 @@ function leastSquaredNorm(core: Core, total: number, fill: number): bigint | und
     return Math.max(trace * trace, difference * difference + cross * cross);
   };
   const [bx, by] = [BigInt(px), BigInt(py)];
-  const exactNorm2 = (xx: bigint, xy: bigint, yy: bigint): bigint =>
-    4n * nuclearNormSquared(bx * bx * xx, bx * by * xy, by * by * yy);
+  const exactNorm2 = (xx: number, xy: number, yy: number): bigint =>
+    4n * nuclearNormSquared(bx * bx * BigInt(xx), bx * by * BigInt(xy), by * by * BigInt(yy));
 
-  // A double is off by a few 2^-53, relatively: in the larger of trace and difference no cancellation goes below its own terms. So whatever
-  // is least exactly is among those within 1e-12 of the least double, and those are compared in whole numbers.
+  // A double is off by a few 2^-53, relatively: in the larger of trace and difference no cancellation goes below its own terms. So what is
+  // least exactly is among those within 1e-12 of the least double, and those are compared in whole numbers.
   let least = Infinity;
-  let nearest: (readonly [pair: number, spread: Spread])[] = [];
-  const consider = (pair: number, spread: Spread): void => {
-    const [xx, xy, yy] = spread;
-    const [x, y] = [xOf(pair), yOf(pair)];
-    const [rxx, rxy, ryy] = [2 * total * x * x, 2 * total * x * y, 2 * total * y * y];
-    // W times B_0, B_1 and their sum: -T, 2 W r r' - 2 T, 2 W r r' - 3 T.
-    const largest = Math.max(
-      norm2(xx, xy, yy),
-      norm2(rxx - 2 * xx, rxy - 2 * xy, ryy - 2 * yy),
-      norm2(rxx - 3 * xx, rxy - 3 * xy, ryy - 3 * yy),
-    );
-    if (largest > least * (1 + 1e-12)) return;
-    if (largest * (1 + 1e-12) < least) nearest = [];
-    if (largest < least) least = largest;
-    nearest.push([pair, spread]);
-  };
-  const exact = ([pair, spread]: readonly [pair: number, spread: Spread]): bigint => {
-    const [xx, xy, yy] = spread.map(BigInt);
-    const [x, y, w2] = [BigInt(xOf(pair)), BigInt(yOf(pair)), BigInt(2 * total)];
-    const norms = [0n, 2n, 3n].map((t) =>
-      t === 0n ? exactNorm2(xx, xy, yy) : exactNorm2(w2 * x * x - t * xx, w2 * x * y - t * xy, w2 * y * y - t * yy),
-    );
-    return norms.reduce((a, b) => (a > b ? a : b));
-  };
-
-  const taken = new Uint8Array(rows * columns);
-  const withFill = (spread: Spread): void => {
+  let nearest: { readonly pair: number; readonly bits: Spread }[] = [];
+  visitZeroSumSets(places, fill, (taken, spread) => {
+    const bits = { xx: whole.xx - spread.xx, xy: whole.xy - spread.xy, yy: whole.yy - spread.yy };
     for (let pair = 0; pair < centre; pair++) {
-      // The reflection of cell i is cell 2 centre - i.
-      if (!taken[pair] && !taken[2 * centre - pair]) consider(pair, spread);
+      if (taken[pair] || taken[2 * centre - pair]) continue;
+      const largest = largestOfThree(norm2, total, x[pair], y[pair], bits);
+      if (largest > least * (1 + 1e-12)) continue;
+      if (largest * (1 + 1e-12) < least) nearest = [];
+      if (largest < least) least = largest;
+      nearest.push({ pair, bits });
     }
-  };
-  /** Takes `left` more fill cells, in descending order from below `before`; the last is the one that makes their sum 0. */
-  const take = (left: number, before: number, x: number, y: number, [xx, xy, yy]: Spread): void => {
-    if (left === 0) {
-      withFill([xx, xy, yy]);
-      return;
-    }
-    const without = (cell: number): Spread => [
-      xx - xOf(cell) * xOf(cell),
-      xy - xOf(cell) * yOf(cell),
-      yy - yOf(cell) * yOf(cell),
-    ];
-    if (left === 1) {
-      const column = (columns - 1 - x) / 2;
-      const row = (rows - 1 + y) / 2;
-      if (column < 0 || column >= columns || row < 0 || row >= rows) return;
-      const cell = row * columns + column;
-      if (cell >= before || cell === centre) return;
-      taken[cell] = 1;
-      take(0, cell, 0, 0, without(cell));
-      taken[cell] = 0;
-      return;
-    }
-    for (let cell = left - 1; cell < before; cell++) {
-      if (cell === centre) continue;
-      taken[cell] = 1;
-      take(left - 1, cell, x + xOf(cell), y + yOf(cell), without(cell));
-      taken[cell] = 0;
-    }
-  };
-  take(fill, rows * columns, 0, 0, whole);
-  return nearest.map(exact).reduce<bigint | undefined>((a, b) => (a === undefined || b < a ? b : a), undefined);
+  });
+  let exact: bigint | undefined;
+  for (const { pair, bits } of nearest) {
+    const largest = largestOfThree(exactNorm2, total, x[pair], y[pair], bits);
+    if (exact === undefined || largest < exact) exact = largest;
+  }
+  return exact;
+}
+
+/** The largest norm of W B_0, W B_1 and their sum: -T, 2 W r r' - 2 T and 2 W r r' - 3 T, whole numbers. */
+function largestOfThree<T extends number | bigint>(
+  norm2: (xx: number, xy: number, yy: number) => T,
+  total: number,
+  x: number,
+  y: number,
+  { xx, xy, yy }: Spread,
+): T {
+  const pair = 2 * total;
+  const lone = norm2(xx, xy, yy);
+  const two = norm2(pair * x * x - 2 * xx, pair * x * y - 2 * xy, pair * y * y - 2 * yy);
+  const both = norm2(pair * x * x - 3 * xx, pair * x * y - 3 * xy, pair * y * y - 3 * yy);
+  const larger = two > both ? two : both;
+  return lone > larger ? lone : larger;
+}
+
+function placesOf({ rows, columns }: Core): Places {
+  const x = Int32Array.from({ length: rows * columns }, (_, cell) => offset2(cell % columns, columns));
+  const y = Int32Array.from({ length: rows * columns }, (_, cell) => -offset2(Math.floor(cell / columns), rows));
+  return { rows, columns, x, y };
 }
