@@ -1,0 +1,60 @@
+import type { Polygons } from '../spec/polygons.js';
+import { conductorsOf } from './conductors.js';
+import { checkConnectivity } from './connectivity.js';
+import { coveredArea, Drawing } from './drawing.js';
+import type { Finding } from './finding.js';
+import { inOrder, placeUm } from './finding.js';
+import { pieceNames, pinLabels } from './nets.js';
+import { checkShapes } from './shape-rules.js';
+import { checkUnits, unitsOf } from './units.js';
+import { checkVertices } from './vertices.js';
+import { checkVia } from './via-rules.js';
+
+/** Shapes beyond the block's outline, where it has one, and shapes on stream layers that the technology does not name. */
+function checkLayers(drawing: Drawing): Finding[] {
+  const { technology, flat } = drawing;
+  const outline = drawing.sheet(technology.roles.boundary);
+  const findings: Finding[] = [];
+  for (const boxes of flat.layers.values()) {
+    const named = [...technology.layers, ...technology.vias].find(
+      (one) => one.stream.layer === boxes.layer && one.stream.datatype === boxes.datatype,
+    );
+    const name = named?.name ?? `${boxes.layer}/${boxes.datatype}`;
+    const reported = new Set<number>();
+    for (let i = 0; i < boxes.x0.length; i++) {
+      const [x0, y0, x1, y1] = [boxes.x0[i], boxes.y0[i], boxes.x1[i], boxes.y1[i]];
+      const within = outline.boxes.x0.length === 0 || coveredArea(outline, x0, y0, x1, y1) === (x1 - x0) * (y1 - y0);
+      if ((named && within) || reported.has(boxes.shape[i])) continue;
+      reported.add(boxes.shape[i]);
+      const at_um = placeUm((x0 + x1) / 2, (y0 + y1) / 2);
+      if (!named) findings.push({ rule: 'unknown-layer', layer: name, at_um, text: 'not a layer of the technology' });
+      if (!within) findings.push({ rule: 'boundary', layer: name, at_um, text: "beyond the block's outline" });
+    }
+  }
+  return findings;
+}
+
+/**
+ * Checks a drawing from its polygons alone, against its own technology, capacitors and cells. Never looks at `net` or `part`: shapes
+ * that touch are one piece, and pin labels name pieces.
+ *
+ * @returns the findings in a fixed order; none for a sound drawing.
+ * @throws InputError if the structures cannot be flattened (`flatten`).
+ */
+export function checkPolygons(p: Polygons): Finding[] {
+  const drawing = new Drawing(p);
+  const { technology } = p;
+  const c = conductorsOf(drawing);
+  const { labels, findings } = pinLabels(drawing, c);
+  const names = pieceNames(labels, c);
+  const units = unitsOf(drawing, c);
+  return inOrder([
+    ...findings,
+    ...checkVertices(drawing),
+    ...technology.layers.flatMap((layer) => checkShapes(drawing.sheet(layer.name).slabs, layer)),
+    ...technology.vias.flatMap((via) => checkVia(drawing, via)),
+    ...checkLayers(drawing),
+    ...checkConnectivity(drawing, { c, labels, names, units }),
+    ...checkUnits(drawing, units, p.capacitors, { c, labels, names }),
+  ]);
+}

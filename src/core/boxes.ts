@@ -1,0 +1,48 @@
+import Flatbush from 'flatbush';
+
+/** Rectangles in flat arrays, whole nanometres; box `i` is x0[i] .. x1[i] by y0[i] .. y1[i], of positive area. */
+export interface Boxes {
+  readonly x0: Int32Array;
+  readonly y0: Int32Array;
+  readonly x1: Int32Array;
+  readonly y1: Int32Array;
+}
+
+/** Collects boxes whose number is not known beforehand. */
+export class BoxList {
+  readonly #values: number[] = [];
+
+  push(x0: number, y0: number, x1: number, y1: number): void {
+    this.#values.push(x0, y0, x1, y1);
+  }
+
+  finish(): Boxes {
+    const count = this.#values.length / 4;
+    const column = (offset: number) => {
+      const column = new Int32Array(count);
+      for (let i = 0; i < count; i++) column[i] = this.#values[4 * i + offset];
+      return column;
+    };
+    return { x0: column(0), y0: column(1), x1: column(2), y1: column(3) };
+  }
+}
+
+/** The boxes with x and y exchanged: what is said about rows then holds for columns. */
+export const transposed = (b: Boxes): Boxes => ({ x0: b.y0, y0: b.x0, x1: b.y1, y1: b.x1 });
+
+/** Finds boxes by place. A search is closed: boxes that only touch the window are found too. */
+export class BoxIndex {
+  readonly #tree: Flatbush | undefined;
+
+  constructor(b: Boxes) {
+    if (b.x0.length === 0) return;
+    this.#tree = new Flatbush(b.x0.length, 16, Int32Array);
+    for (let i = 0; i < b.x0.length; i++) this.#tree.add(b.x0[i], b.y0[i], b.x1[i], b.y1[i]);
+    this.#tree.finish();
+  }
+
+  /** Numbers of the boxes that meet the closed window, in no particular order. */
+  search(x0: number, y0: number, x1: number, y1: number): number[] {
+    return this.#tree ? this.#tree.search(x0, y0, x1, y1) : [];
+  }
+}
