@@ -1,0 +1,113 @@
+import type { Point } from '../core/layout.js';
+import type { Layer, Technology } from '../spec/technology.js';
+import type { Polygons } from '../spec/polygons.js';
+import { visitDrawn } from './drawn-shapes.js';
+import { greatestCommonDivisor } from './path-data.js';
+
+/** `cover` is ground on the metal of the plates over a channel: it would hide the trunks below it. */
+export type GroupKind = 'cover' | 'plate' | 'topPlate' | 'lower' | 'middle' | 'upper' | 'via' | 'topVia';
+
+/** All shapes of one net on one layer; of vias and top plates all nets together, for they look alike. */
+export interface DrawnGroup {
+  readonly kind: GroupKind;
+  readonly net: string;
+  /** Underside of the layer; of a via that of the layer above it. */
+  readonly height: number;
+  readonly outlines: (readonly Point[])[];
+}
+
+/** A plate that belongs to a capacitor: where its name may stand. */
+export interface NamedPlate {
+  readonly net: string;
+  readonly left: number;
+  readonly right: number;
+  readonly top: number;
+}
+
+export interface Drawn {
+  /** In the order of drawing: plates, then wires from the lowest metal up, each with the vias that end on it. */
+  readonly groups: readonly DrawnGroup[];
+  readonly plates: readonly NamedPlate[];
+  /** The longest step on which every corner lies. */
+  readonly step: number;
+  /** Bounding box of all outlines. */
+  readonly extent: { readonly x0: number; readonly y0: number; readonly x1: number; readonly y1: number };
+}
+
+const order: readonly GroupKind[] = ['cover', 'plate', 'topPlate', 'lower', 'middle', 'upper', 'via', 'topVia'];
+
+/** Sorts what conducts into groups to be painted alike. Layers that the technology does not know are left out. */
+export function drawnGroups(p: Polygons): Drawn {
+  const layers = paintedLayers(p.technology);
+  const capacitors = new Set(p.capacitors.map((c) => c.name));
+  const groups = new Map<string, DrawnGroup>();
+  const plates: NamedPlate[] = [];
+  let step = 0;
+  let [x0, y0, x1, y1] = [Infinity, Infinity, -Infinity, -Infinity];
+
+  visitDrawn(p, ({ layer, datatype, part }, net, xy) => {
+    const painted = layers.get(`${layer}/${datatype}`);
+    if (painted === undefined) return;
+    const { height } = painted;
+    const kind =
+      painted.kind !== 'middle' ? painted.kind : part === 'plate' ? 'plate' : part === 'shield' ? 'cover' : 'middle';
+    const alike = kind === 'via' || kind === 'topVia' || kind === 'topPlate';
+    const key = `${kind} ${height} ${alike ? '' : net}`;
+    const group = groups.get(key);
+    if (group) group.outlines.push(xy);
+    else groups.set(key, { kind, net, height, outlines: [xy] });
+
+    for (const [x, y] of xy) {
+      step = greatestCommonDivisor(greatestCommonDivisor(x, y), step);
+      x0 = Math.min(x0, x);
+      y0 = Math.min(y0, y);
+      x1 = Math.max(x1, x);
+      y1 = Math.max(y1, y);
+    }
+    if (kind === 'plate' && capacitors.has(net)) plates.push(namedPlate(net, xy));
+  });
+
+  const rank = new Map(['', ...p.capacitors.map((c) => c.name), 'VSS', 'TOP'].map((net, i) => [net, i]));
+  const sorted = [...groups.values()].sort(
+    (a, b) =>
+      order.indexOf(a.kind) - order.indexOf(b.kind) ||
+      a.height - b.height ||
+      (rank.get(a.net) ?? -1) - (rank.get(b.net) ?? -1),
+  );
+  return { groups: sorted, plates, step: step || 1, extent: { x0, y0, x1, y1 } };
+}
+
+/** The widest level part of a plate's top edge, so that tabs do not count. */
+function namedPlate(net: string, xy: readonly Point[]): NamedPlate {
+  const top = Math.max(...xy.map(([, y]) => y));
+  const edge = xy.filter(([, y]) => y === top).map(([x]) => x);
+  return { net, left: Math.min(...edge), right: Math.max(...edge), top };
+}
+
+interface PaintedLayer {
+  readonly kind: Exclude<GroupKind, 'plate' | 'cover'>;
+  readonly height: number;
+}
+
+function paintedLayers(technology: Technology): Map<string, PaintedLayer> {
+  const { layers, vias, roles } = technology;
+  const painted = new Map<string, PaintedLayer>();
+  const byName = new Map(layers.map((l) => [l.name, l]));
+  const height = (name: string) => byName.get(name)?.height_um ?? 0;
+  const plateHeight = height(roles.bottomPlate);
+  const kindOf = (l: Layer): PaintedLayer['kind'] | undefined => {
+    if (l.kind !== 'metal' && l.kind !== 'plate') return undefined;
+    if (l.name === roles.topPlate) return 'topPlate';
+    const above = (l.height_um ?? 0) - plateHeight;
+    return above < 0 ? 'lower' : above > 0 ? 'upper' : 'middle';
+  };
+  for (const l of layers) {
+    const kind = kindOf(l);
+    if (kind) painted.set(streamKey(l.stream), { kind, height: l.height_um ?? 0 });
+  }
+  for (const v of vias)
+    painted.set(streamKey(v.stream), { kind: v.lower === roles.topPlate ? 'topVia' : 'via', height: height(v.upper) });
+  return painted;
+}
+
+const streamKey = ({ layer, datatype }: { layer: number; datatype: number }): string => `${layer}/${datatype}`;
