@@ -37,7 +37,7 @@ export function drawPolygons(
   const inRing = new Map(placed.ringUnits.map((unit) => [`${unit.row} ${unit.column}`, unit.capacitor]));
   const ringCell = (row: number, column: number) => inRing.get(`${row} ${column}`) ?? '-';
   const cellAt = (row: number, column: number) =>
-    row >= 0 && row < rows && column >= 0 && column < columns ? placed.cells[row]![column]! : ringCell(row, column);
+    row >= 0 && row < rows && column >= 0 && column < columns ? placed.cells[row][column] : ringCell(row, column);
   drawRing(sheet, technology, frame, ringCell);
   drawWires(sheet, technology, hookup);
   drawRingUnits(sheet, technology, hookup);

@@ -37,8 +37,8 @@ function crossovers(hookup: Hookup, bits: ReadonlySet<string>): number {
   let count = 0;
   for (const stub of hookup.horizontal) {
     if (stub.part !== 'stub' || !bits.has(stub.net)) continue;
-    for (let i = firstAtLeast(xs, stub.x0 - half + 1); i < xs.length && xs[i]! - half < stub.x1; i++)
-      for (const trunk of trunksAt.get(xs[i]!)!)
+    for (let i = firstAtLeast(xs, stub.x0 - half + 1); i < xs.length && xs[i] - half < stub.x1; i++)
+      for (const trunk of trunksAt.get(xs[i])!)
         if (trunk.net !== stub.net && trunk.y1 + half > stub.y0 - half && trunk.y0 - half < stub.y0 + half) count++;
   }
   return count;
@@ -49,7 +49,7 @@ const firstAtLeast = (sorted: readonly number[], value: number): number => {
   let high = sorted.length;
   while (low < high) {
     const middle = (low + high) >> 1;
-    if (sorted[middle]! < value) low = middle + 1;
+    if (sorted[middle] < value) low = middle + 1;
     else high = middle;
   }
   return low;

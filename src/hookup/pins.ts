@@ -18,12 +18,12 @@ export interface Pins {
  * Places the pins from left to right in the order given, and the buses that lead to them: the net with the most trunks next to the ring,
  * so that the trunks are short. A drop runs from its bus down past the buses below: it keeps clear of every trunk that ends lower.
  *
- * @param pitch from pin to pin. @param clear from the left edge of a drop to that of a foreign vertical wire, at least.
+ * @param size `pitch` from the left edge of a drop to that of the next, or of any other vertical wire beside it.
  * @throws Infeasible where the pins do not fit between `first` and `last`.
  */
 export function placePins(
   nets: readonly Leaving[],
-  size: { first: number; last: number; pitch: number; clear: number; grid: number },
+  size: { first: number; last: number; pitch: number; grid: number },
   given?: readonly string[],
 ): Pins {
   const { first, last, pitch } = size;
@@ -54,42 +54,42 @@ function sweep(
   nets: readonly Leaving[],
   direct: ReadonlySet<string>,
   buses: readonly string[],
-  size: { first: number; last: number; pitch: number; clear: number; grid: number },
+  size: { first: number; last: number; pitch: number; grid: number },
 ): number[] | string {
-  const { first, last, pitch, clear, grid } = size;
+  const { first, last, pitch, grid } = size;
   const depth = new Map(buses.map((net, i) => [net, i]));
   const level = (net: string) => depth.get(net) ?? Infinity;
   const x: number[] = [];
   const anchor = nets.findIndex((net) => direct.has(net.net));
   // Pins before the first direct net stand left of it, with room to dodge; without one they gather in the middle.
   const start =
-    anchor === -1 ? (first + last - (nets.length - 1) * pitch) / 2 : nets[anchor]!.trunks[0]! - 2 * anchor * pitch;
+    anchor === -1 ? (first + last - (nets.length - 1) * pitch) / 2 : nets[anchor].trunks[0] - 2 * anchor * pitch;
   let cursor = Math.max(first, Math.floor(start / grid) * grid);
   for (let i = 0; i < nets.length; i++) {
-    const net = nets[i]!;
+    const net = nets[i];
     const room = last - (nets.length - 1 - i) * pitch;
     if (direct.has(net.net)) {
-      const at = net.trunks[0]!;
-      if ((i > 0 && at < x[i - 1]! + pitch) || at > room) return net.net;
+      const at = net.trunks[0];
+      if ((i > 0 && at < x[i - 1] + pitch) || at > room) return net.net;
       x.push(at);
     } else {
-      let at = i === 0 ? cursor : Math.max(cursor, x[i - 1]! + pitch);
-      // Foreign trunks that pass this net's bus: their own bus lies lower, or they run to the edge.
+      let at = i === 0 ? cursor : Math.max(cursor, x[i - 1] + pitch);
+      // In the way are the net's own trunks, and foreign ones that pass its bus: their own bus lies lower, or they run to the edge.
       const passing = nets
-        .filter((other) => other !== net && level(other.net) > level(net.net))
+        .filter((other) => other === net || level(other.net) > level(net.net))
         .flatMap((other) => other.trunks);
       for (let moved = true; moved;) {
         moved = false;
         for (const trunk of passing)
-          if (Math.abs(trunk - at) < clear) {
-            at = trunk + clear;
+          if (Math.abs(trunk - at) < pitch) {
+            at = trunk + pitch;
             moved = true;
           }
       }
-      if (at > room) return anchor === -1 ? '' : nets[anchor]!.net;
+      if (at > room) return anchor === -1 ? '' : nets[anchor].net;
       x.push(at);
     }
-    cursor = x[i]! + pitch;
+    cursor = x[i] + pitch;
   }
   return x;
 }

@@ -29,18 +29,18 @@ export const needsTrack = (unit: RingUnit, placed: Placed): boolean =>
 export function channelStubs(placed: Placed, plan: Plan): Map<string, ChannelNet>[] {
   const channels = plan.channels.map(() => new Map<string, { net: string; fromLeft: number[]; fromRight: number[] }>());
   const add = (net: string, row: number, column: number, side: Side) => {
-    const nets = channels[side === 'R' ? column + 1 : column]!;
+    const nets = channels[side === 'R' ? column + 1 : column];
     const entry = nets.get(net) ?? { net, fromLeft: [], fromRight: [] };
     nets.set(net, entry);
     if (side === 'R') entry.fromLeft.push(2 * row + 1);
     else entry.fromRight.push(2 * row);
   };
   placed.cells.forEach((names, row) =>
-    names.forEach((net, column) => net !== '-' && add(net, row, column, plan.sides[row]![column]!)),
+    names.forEach((net, column) => net !== '-' && add(net, row, column, plan.sides[row][column])),
   );
   for (const unit of placed.ringUnits)
     if (needsTrack(unit, placed))
-      add(unit.capacitor, unit.row, unit.column, plan.channels[unit.column]!.includes(unit.capacitor) ? 'L' : 'R');
+      add(unit.capacitor, unit.row, unit.column, plan.channels[unit.column].includes(unit.capacitor) ? 'L' : 'R');
   return channels;
 }
 
@@ -59,10 +59,10 @@ export function nearestVss(
   const channel = side === 'R' ? column + 1 : column;
   const height = side === 'R' ? 2 * row + 1 : 2 * row;
   const isVss = (net: string): boolean => {
-    const entry = stubs[channel]!.get(net);
+    const entry = stubs[channel].get(net);
     return net === 'VSS' || (entry !== undefined && height < trunkTop(entry));
   };
-  const list = plan.channels[channel]!;
+  const list = plan.channels[channel];
   return side === 'R' ? list.findIndex(isVss) : list.findLastIndex(isVss);
 }
 
@@ -73,11 +73,11 @@ export function nearestVss(
  */
 export function planHookup(placed: Placed, tracks?: number): Plan & { readonly proved: boolean } {
   const { cells, capacitors } = placed;
-  const columns = cells[0]!.length;
+  const columns = cells[0].length;
   const inCore = capacitors.filter((capacitor) => cells.some((row) => row.includes(capacitor.name)));
   const index = new Map(inCore.map((capacitor, i) => [capacitor.name, i]));
   const rowsOf = Array.from({ length: columns }, () => inCore.map((): number[] => []));
-  cells.forEach((row, r) => row.forEach((name, c) => name !== '-' && rowsOf[c]![index.get(name)!]!.push(r)));
+  cells.forEach((row, r) => row.forEach((name, c) => name !== '-' && rowsOf[c][index.get(name)!].push(r)));
   const masks = rowsOf.map((nets) => nets.reduce((mask, rows, n) => (rows.length > 0 ? mask | (1 << n) : mask), 0));
 
   const problem = { columns, nets: inCore.length, masks, crossovers: crossoverBound(rowsOf, inCore.length) };
@@ -94,8 +94,8 @@ export function planHookup(placed: Placed, tracks?: number): Plan & { readonly p
   const found = lay(least, least.tracks) ?? lay(assignSides(problem, least.tracks + 1), least.tracks + 1)!;
   if (tracks !== undefined)
     throw new Infeasible(
-      `${tracks} track${tracks === 1 ? '' : 's'} per channel do not suffice for this placement.`,
-      `Allow ${found.channels[0]!.length}, or leave tracksPerChannel out.`,
+      `This placement needs more than the ${tracks} track${tracks === 1 ? '' : 's'} per channel asked for.`,
+      `Allow ${found.channels[0].length}, or leave tracksPerChannel out.`,
     );
   return found;
 }
@@ -113,14 +113,14 @@ function crossoverBound(rowsOf: readonly (readonly number[][])[], nets: number) 
     for (let n = 0; n < nets; n++) {
       const bit = 1 << n;
       if (((right | left) & bit) === 0) continue;
-      const fromLeft = right & bit && channel > 0 ? rowsOf[channel - 1]![n]!.map((row) => 2 * row + 1) : [];
-      const fromRight = left & bit && channel < columns ? rowsOf[channel]![n]!.map((row) => 2 * row) : [];
+      const fromLeft = right & bit && channel > 0 ? rowsOf[channel - 1][n].map((row) => 2 * row + 1) : [];
+      const fromRight = left & bit && channel < columns ? rowsOf[channel][n].map((row) => 2 * row) : [];
       entries.push({ net: '', fromLeft, fromRight });
     }
     let sum = 0;
     for (let m = 0; m < entries.length; m++)
       for (let n = 0; n < m; n++)
-        sum += Math.min(crossoversBetween(entries[m]!, entries[n]!), crossoversBetween(entries[n]!, entries[m]!));
+        sum += Math.min(crossoversBetween(entries[m], entries[n]), crossoversBetween(entries[n], entries[m]));
     known.set(key, sum);
     return sum;
   };
@@ -135,9 +135,9 @@ function layTracks(
 ): (Plan & { readonly proved: boolean }) | null {
   const { cells, ringUnits } = placed;
   const sides = cells.map((row) =>
-    row.map((name, c): Side => (name !== '-' && (assigned.right[c]! >> index.get(name)!) & 1 ? 'R' : 'L')),
+    row.map((name, c): Side => (name !== '-' && (assigned.right[c] >> index.get(name)!) & 1 ? 'R' : 'L')),
   );
-  const channels = Array.from({ length: cells[0]!.length + 1 }, () => new Array<string>(tracks).fill('VSS'));
+  const channels = Array.from({ length: cells[0].length + 1 }, () => new Array<string>(tracks).fill('VSS'));
   let proved = assigned.proved;
   const inCore = { ...placed, ringUnits: [] };
   channelStubs(inCore, { sides, channels }).forEach((entries, channel) => {
@@ -146,25 +146,25 @@ function layTracks(
     let bound = 0;
     for (let m = 0; m < listed.length; m++)
       for (let n = 0; n < m; n++)
-        bound += Math.min(crossoversBetween(listed[m]!, listed[n]!), crossoversBetween(listed[n]!, listed[m]!));
+        bound += Math.min(crossoversBetween(listed[m], listed[n]), crossoversBetween(listed[n], listed[m]));
     proved &&= crossovers === bound;
-    placeOnTracks(order, tracks).forEach((track, i) => (channels[channel]![track] = order[i]!.net));
+    placeOnTracks(order, tracks).forEach((track, i) => (channels[channel][track] = order[i].net));
   });
   for (const unit of ringUnits) {
     if (!needsTrack(unit, placed)) continue;
-    const channel = [unit.column, unit.column + 1].find((j) => channels[j]!.includes('VSS'));
+    const channel = [unit.column, unit.column + 1].find((j) => channels[j].includes('VSS'));
     if (channel === undefined) return null;
-    const list = channels[channel]!;
+    const list = channels[channel];
     list[channel === unit.column ? list.lastIndexOf('VSS') : list.indexOf('VSS')] = unit.capacitor;
   }
   const plan = { sides, channels };
   const stubs = channelStubs(placed, plan);
   for (let row = 0; row < cells.length; row++)
-    for (let column = 0; column < cells[row]!.length; column++) {
-      if (cells[row]![column] !== '-') continue;
+    for (let column = 0; column < cells[row].length; column++) {
+      if (cells[row][column] !== '-') continue;
       const side = (['L', 'R'] as const).find((s) => nearestVss(plan, stubs, row, column, s) !== -1);
       if (side === undefined) return null;
-      sides[row]![column] = side;
+      sides[row][column] = side;
     }
   return { sides, channels, proved };
 }

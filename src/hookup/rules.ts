@@ -21,6 +21,8 @@ export interface Rules {
   readonly trackSpacing: number;
   /** End-to-end spacing of two wires on one track. */
   readonly lineSpacing: number;
+  /** Between two drops, whose vias may stand side by side on one bus. */
+  readonly dropSpacing: number;
   readonly rowGap: number;
   readonly strapWidth: number;
   readonly frameWidth: number;
@@ -82,7 +84,9 @@ export function drawingRules(technology: Technology): Rules {
   const tab = [nm(unit.tab_um[0]), nm(unit.tab_um[1])] as const;
   const lineSpacing = length(lower.minSpacing_um);
   const trackWidth = even(Math.max(length(lower.minWidth_um), minPlateWidth, viaTrack.landing, tab[1]));
-  const trackSpacing = Math.max(spacing, lineSpacing, nm(toPlate.spacing_um) - (trackWidth - viaTrack.size));
+  const viaApart = nm(toPlate.spacing_um) - (trackWidth - viaTrack.size);
+  const trackSpacing = Math.max(spacing, lineSpacing, viaApart);
+  const dropSpacing = Math.max(lineSpacing, viaApart);
   const upperSpacing = length(upper.minSpacing_um);
   const rowGap = even(
     Math.max(wideSpacing, length(upper.minWidth_um), length(topPlateLayer.minSpacing_um) - 2 * margin),
@@ -140,6 +144,7 @@ export function drawingRules(technology: Technology): Rules {
     trackWidth,
     trackSpacing,
     lineSpacing,
+    dropSpacing,
     rowGap,
     strapWidth,
     frameWidth,

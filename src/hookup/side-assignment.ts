@@ -63,17 +63,17 @@ function fewestTrunks(masks: readonly number[], nets: number, tracks: number): I
         const base = k * size;
         const above = base + size;
         for (let state = 0; state < size; state++) {
-          const value = now[base + state]!;
+          const value = now[base + state];
           if (value === never) continue;
           const sentRight = (state & bit) !== 0;
           const cleared = state & ~bit;
           if ((mask & bit) !== 0) {
-            if (k < tracks && value < next[above + cleared]!) next[above + cleared] = value;
+            if (k < tracks && value < next[above + cleared]) next[above + cleared] = value;
             const at = (sentRight ? above : base) + (cleared | bit);
-            if ((!sentRight || k < tracks) && value < next[at]!) next[at] = value;
+            if ((!sentRight || k < tracks) && value < next[at]) next[at] = value;
           } else {
             const at = (sentRight ? above : base) + cleared;
-            if ((!sentRight || k < tracks) && value < next[at]!) next[at] = value;
+            if ((!sentRight || k < tracks) && value < next[at]) next[at] = value;
           }
         }
       }
@@ -83,10 +83,10 @@ function fewestTrunks(masks: readonly number[], nets: number, tracks: number): I
     let any = false;
     for (let k = 0; k <= tracks; k++)
       for (let state = 0; state < size; state++) {
-        const value = now[k * size + state]!;
+        const value = now[k * size + state];
         if (value === never) continue;
         any = true;
-        if (value + k < reach[state]!) reach[state] = value + k;
+        if (value + k < reach[state]) reach[state] = value + k;
       }
     if (!any) return null;
     layers.push(reach);
@@ -94,7 +94,7 @@ function fewestTrunks(masks: readonly number[], nets: number, tracks: number): I
   }
   // The last channel holds what the last column sends right.
   let any = false;
-  for (let state = 0; state < size; state++) if (reach[state]! < never && popcount(state) <= tracks) any = true;
+  for (let state = 0; state < size; state++) if (reach[state] < never && popcount(state) <= tracks) any = true;
   return any ? layers : null;
 }
 
@@ -110,22 +110,22 @@ export function assignSides(problem: SideProblem, given?: number): Sides | null 
   }
   // Seen from the right end, "right" and "left" change places: backward[c][right] counts the trunks of the channels right of column c.
   const mirrored = fewestTrunks([...masks].reverse(), problem.nets, tracks)!;
-  const backward = (c: number, right: number) => mirrored[columns - 1 - c]![masks[c]! & ~right]!;
+  const backward = (c: number, right: number) => mirrored[columns - 1 - c][masks[c] & ~right];
   let trunks = never;
   for (let right = 0; right < 1 << problem.nets; right++) {
-    const value = forward[columns - 1]![right]!;
+    const value = forward[columns - 1][right];
     if (value < never && popcount(right) <= tracks) trunks = Math.min(trunks, value + popcount(right));
   }
   const optimal: number[][] = masks.map((mask, c) => {
     const states: number[] = [];
     for (let right = mask; ; right = (right - 1) & mask) {
-      if (forward[c]![right]! + backward(c, right) === trunks) states.push(right);
+      if (forward[c][right] + backward(c, right) === trunks) states.push(right);
       if (right === 0) break;
     }
     return states.sort((a, b) => a - b);
   });
-  let transitions = optimal[0]!.length;
-  for (let c = 1; c < columns; c++) transitions += optimal[c - 1]!.length * optimal[c]!.length;
+  let transitions = optimal[0].length;
+  for (let c = 1; c < columns; c++) transitions += optimal[c - 1].length * optimal[c].length;
   const narrow = transitions > exactTransitions;
 
   interface Node {
@@ -137,12 +137,12 @@ export function assignSides(problem: SideProblem, given?: number): Sides | null 
   let kept: Node[] = [{ right: 0, cost: 0, from: -1 }];
   for (let c = 0; c < columns; c++) {
     const nodes: Node[] = [];
-    for (const right of optimal[c]!) {
-      const left = masks[c]! & ~right;
+    for (const right of optimal[c]) {
+      const left = masks[c] & ~right;
       let node: Node | undefined;
       kept.forEach((previous, from) => {
         const size = popcount(previous.right | left);
-        const before = c === 0 ? 0 : forward[c - 1]![previous.right]!;
+        const before = c === 0 ? 0 : forward[c - 1][previous.right];
         if (size > tracks || before + size + backward(c, right) !== trunks) return;
         const cost = previous.cost + problem.crossovers(c, previous.right, left);
         if (node === undefined || cost < node.cost) node = { right, cost, from };
@@ -167,8 +167,8 @@ export function assignSides(problem: SideProblem, given?: number): Sides | null 
   });
   const right = new Array<number>(columns);
   for (let c = columns - 1, at = best; c >= 0; c--) {
-    right[c] = layers[c]![at]!.right;
-    at = layers[c]![at]!.from;
+    right[c] = layers[c][at].right;
+    at = layers[c][at].from;
   }
   return { tracks, trunks, right, proved: !narrow || least === 0 };
 }
@@ -187,7 +187,7 @@ function assignGreedily(problem: SideProblem, given?: number): Sides | null {
     for (let c = 0; c < columns; c++) {
       const nodes = new Map<number, Node>();
       const offer = (from: Node, left: number) => {
-        const right = masks[c]! & ~left;
+        const right = masks[c] & ~left;
         const size = popcount(from.right | left);
         if (size > tracks || popcount(right) > tracks) return;
         const trunks = from.trunks + size;
@@ -199,10 +199,10 @@ function assignGreedily(problem: SideProblem, given?: number): Sides | null {
       };
       for (const from of kept) {
         // Joining the trunks that are there costs nothing; every subset of the few others is weighed one net at a time.
-        const shared = masks[c]! & from.right;
+        const shared = masks[c] & from.right;
         let left = shared;
         offer(from, left);
-        const others = masks[c]! & ~shared;
+        const others = masks[c] & ~shared;
         for (let n = 0; n < problem.nets; n++)
           if ((others >> n) & 1) {
             offer(from, shared | (1 << n));

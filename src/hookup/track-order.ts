@@ -32,7 +32,7 @@ export function orderTracks(entries: readonly ChannelNet[]): { order: ChannelNet
   const count = entries.length;
   const before = new Int32Array(count * count);
   for (let m = 0; m < count; m++)
-    for (let n = 0; n < count; n++) if (m !== n) before[m * count + n] = crossoversBetween(entries[m]!, entries[n]!);
+    for (let n = 0; n < count; n++) if (m !== n) before[m * count + n] = crossoversBetween(entries[m], entries[n]);
   const states = 1 << count;
   const best = new Int32Array(states).fill(0x7fffffff);
   const last = new Int8Array(states);
@@ -40,18 +40,18 @@ export function orderTracks(entries: readonly ChannelNet[]): { order: ChannelNet
   for (let set = 0; set < states; set++) {
     for (let n = 0; n < count; n++) {
       if ((set >> n) & 1) continue;
-      let cost = best[set]!;
-      for (let m = 0; m < count; m++) if ((set >> m) & 1) cost += before[m * count + n]!;
+      let cost = best[set];
+      for (let m = 0; m < count; m++) if ((set >> m) & 1) cost += before[m * count + n];
       const next = set | (1 << n);
-      if (cost < best[next]!) {
+      if (cost < best[next]) {
         best[next] = cost;
         last[next] = n;
       }
     }
   }
   const order: ChannelNet[] = [];
-  for (let set = states - 1; set !== 0; set ^= 1 << last[set]!) order.unshift(entries[last[set]!]!);
-  return { order, crossovers: count === 0 ? 0 : best[states - 1]! };
+  for (let set = states - 1; set !== 0; set ^= 1 << last[set]) order.unshift(entries[last[set]]);
+  return { order, crossovers: count === 0 ? 0 : best[states - 1] };
 }
 
 /**
@@ -62,17 +62,17 @@ export function placeOnTracks(order: readonly ChannelNet[], tracks: number): num
   const count = order.length;
   if (count > tracks) throw new RangeError(`${count} nets do not fit ${tracks} tracks`);
   const cost = (i: number, track: number) =>
-    order[i]!.fromLeft.length * track + order[i]!.fromRight.length * (tracks - 1 - track);
+    order[i].fromLeft.length * track + order[i].fromRight.length * (tracks - 1 - track);
   // least[i][t]: the first i nets on tracks below t
   const least: number[][] = [new Array<number>(tracks + 1).fill(0)];
   for (let i = 0; i < count; i++) {
     const row = new Array<number>(tracks + 1).fill(Infinity);
-    for (let t = i; t < tracks; t++) row[t + 1] = Math.min(row[t]!, least[i]![t]! + cost(i, t));
+    for (let t = i; t < tracks; t++) row[t + 1] = Math.min(row[t], least[i][t] + cost(i, t));
     least.push(row);
   }
   const places: number[] = [];
   for (let i = count, t = tracks; i > 0; i--) {
-    while (least[i]![t - 1] === least[i]![t]) t--;
+    while (least[i][t - 1] === least[i][t]) t--;
     places.unshift(--t);
   }
   return places;

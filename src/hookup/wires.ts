@@ -60,8 +60,8 @@ export const pinOrder = (capacitors: readonly Capacitor[]): string[] => [
  */
 export function layWires(rules: Rules, placed: Placed, plan: Plan, buses?: readonly string[]): Hookup {
   const rows = placed.cells.length;
-  const columns = placed.cells[0]!.length;
-  const tracks = plan.channels[0]!.length;
+  const columns = placed.cells[0].length;
+  const tracks = plan.channels[0].length;
   const size = { rows, columns, rings: placed.rings, tracks };
   const half = rules.trackWidth / 2;
   // Positions along x do not depend on the number of buses, so the pins come first.
@@ -87,8 +87,7 @@ export function layWires(rules: Rules, placed: Placed, plan: Plan, buses?: reado
     {
       first: rules.spacing,
       last: flat.width - rules.frameWidth - rules.spacing - rules.trackWidth,
-      pitch: rules.trackWidth + rules.lineSpacing,
-      clear: rules.trackWidth + rules.lineSpacing,
+      pitch: rules.trackWidth + rules.dropSpacing,
       grid: rules.grid,
     },
     buses,
@@ -114,16 +113,16 @@ export function layWires(rules: Rules, placed: Placed, plan: Plan, buses?: reado
   const stubs = channelStubs(placed, plan);
   placed.cells.forEach((names, row) =>
     names.forEach((net, column) => {
-      const side = plan.sides[row]![column]!;
-      if (net !== '-') stub(net, row, column, side, plan.channels[side === 'R' ? column + 1 : column]!.indexOf(net));
+      const side = plan.sides[row][column];
+      if (net !== '-') stub(net, row, column, side, plan.channels[side === 'R' ? column + 1 : column].indexOf(net));
       else stub('VSS', row, column, side, nearestVss(plan, stubs, row, column, side));
     }),
   );
   for (const unit of placed.ringUnits) {
     if (!needsTrack(unit, placed)) continue;
-    const side = plan.channels[unit.column]!.includes(unit.capacitor) ? 'L' : 'R';
+    const side = plan.channels[unit.column].includes(unit.capacitor) ? 'L' : 'R';
     const channel = side === 'R' ? unit.column + 1 : unit.column;
-    stub(unit.capacitor, unit.row, unit.column, side, plan.channels[channel]!.indexOf(unit.capacitor));
+    stub(unit.capacitor, unit.row, unit.column, side, plan.channels[channel].indexOf(unit.capacitor));
   }
 
   // Heights of track-order back to y: an even height is a stub at the upper level.
@@ -133,7 +132,7 @@ export function layWires(rules: Rules, placed: Placed, plan: Plan, buses?: reado
   plan.channels.forEach((list, channel) =>
     list.forEach((net, track) => {
       const x = frame.trackX(channel, track) + half;
-      const entry = stubs[channel]!.get(net);
+      const entry = stubs[channel].get(net);
       if (net === 'VSS' || entry === undefined) {
         vertical.push({ net: 'VSS', part: 'shield', x0: x, y0: frameMiddleLow, x1: x, y1: frameMiddleTop });
         return;
@@ -149,7 +148,7 @@ export function layWires(rules: Rules, placed: Placed, plan: Plan, buses?: reado
   nets.forEach(({ net, trunks }, i) => {
     if (!pins.buses.includes(net)) return;
     const y = busMiddle(net);
-    const x = pins.x[i]! + half;
+    const x = pins.x[i] + half;
     const ends = [...trunks.map((left) => left + half), x];
     horizontal.push({ net, part: 'bus', x0: Math.min(...ends), y0: y, x1: Math.max(...ends), y1: y });
     vertical.push({ net, part: 'drop', x0: x, y0: 0, x1: x, y1: y });
@@ -163,7 +162,7 @@ export function layWires(rules: Rules, placed: Placed, plan: Plan, buses?: reado
     joints,
     cuts,
     ringLines,
-    pins: nets.map(({ net }, i) => ({ net, x: pins.x[i]! })),
+    pins: nets.map(({ net }, i) => ({ net, x: pins.x[i] })),
     buses: pins.buses,
   };
 }

@@ -10,7 +10,7 @@ import { endPointResiduals, leastSquaresResiduals } from './residuals.js';
 import { inNanometres, worstFirstOrder, worstSecondOrder } from './worst-code.js';
 import { worstDirection, worstShape } from './worst-gradient.js';
 
-export interface GradientInput {
+interface GradientInput {
   readonly core: Core;
   readonly capacitors: readonly Capacitor[];
   /** Rows of capacitor names from the top; what is no bit's name (dummies, the termination) counts for nothing. */
@@ -33,10 +33,11 @@ export interface GradientFigures {
 /**
  * How far a linear and a quadratic gradient across the core bend the transfer curve, at worst.
  *
- * INL is the largest over all subsets of bits, in the linear model (errors small against the unit), from the line through both ends.
- * First order: 1 % from the centre to the farthest cell, along the worst direction. Second order: 1 % r'Qr / r_far^2 with the worst Q of
- * spectral norm 1. Both also per ppm/um and ppm/um^2. What is compared is compared in whole numbers; only what is reported is rounded.
- * DNL is absent beyond 14 capacitors that are not straight binary; worst direction, shape and code where the figure is exactly 0.
+ * INL is the largest over all subsets of bits, in the linear model (errors small against the unit), from the line through
+ * both ends. First order: 1 % from the centre to the farthest cell, along the worst direction. Second order: 1 % r'Qr /
+ * r_far^2 with the worst Q of spectral norm 1. Both also per ppm/um and ppm/um^2. What is compared is compared in whole
+ * numbers; only what is reported is rounded. DNL is absent beyond 14 capacitors that are not straight binary; worst
+ * direction, shape and code where the figure is exactly 0.
  *
  * @param input weights and units are whole numbers, pitches whole nanometres.
  * @throws RangeError if a pitch is no whole number of nanometres.
