@@ -3,8 +3,8 @@ import { perPpmPerUm, perPpmPerUm2, pitchNm } from './figures.js';
 import { momentsOfBlocks } from './moments.js';
 
 /**
- * Half the sum of the lengths of the bits' first-order residuals, LSB per ppm/um: an upper bound of the first order, 0 exactly where
- * that is 0, and cheap to follow.
+ * Half the sum of the lengths of the bits' first-order residuals, LSB per ppm/um: an upper bound of the first order, 0
+ * exactly where that is 0, and cheap to follow.
  */
 export function firstOrderTerm(deal: Deal, pitch_um: readonly [x: number, y: number]): CostTerm {
   const [px, py] = pitchNm(pitch_um);
@@ -15,8 +15,8 @@ export function firstOrderTerm(deal: Deal, pitch_um: readonly [x: number, y: num
 }
 
 /**
- * Half the sum of the nuclear norms of the bits' second-order residuals, LSB per ppm/um^2: an upper bound of the second order, tight
- * where the residuals line up, and cheap to follow.
+ * Half the sum of the nuclear norms of the bits' second-order residuals, LSB per ppm/um^2: an upper bound of the second
+ * order, tight where the residuals line up, and cheap to follow.
  */
 export function secondOrderTerm(deal: Deal, pitch_um: readonly [x: number, y: number]): CostTerm {
   const [px, py] = pitchNm(pitch_um);
@@ -29,8 +29,9 @@ export function secondOrderTerm(deal: Deal, pitch_um: readonly [x: number, y: nu
 /**
  * The kernel of both. Three components (a, b, c) a net, and the norm sqrt(max((a + r b)^2, (a - r b)^2 + q c^2)).
  *
- * `residual` holds W S_k - w_k sum_j S_j in whole numbers, W the bits' weights together: at most W * units * columns^2 in half-pitches, below 2^53 for
- * 16,383 units on cores of up to 5,700 columns or rows. So a swap and the same swap again leave it as it was, bit for bit.
+ * `residual` holds W S_k - w_k sum_j S_j in whole numbers, W the bits' weights together: at most W * units * columns^2 in
+ * half-pitches, below 2^53 for 16,383 units on cores of up to 5,700 columns or rows. So a swap and the same swap again leave
+ * it as it was, bit for bit.
  */
 class ResidualTerm implements CostTerm {
   readonly #netOfBlock: Uint8Array;

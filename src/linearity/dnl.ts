@@ -14,8 +14,9 @@ interface LargestSteps {
 /**
  * The largest DNL of each figure, over the steps of `stepsOf`.
  *
- * The residuals enter in half-pitches, `scale` times over: whole numbers, at most 2 W * units * columns^2 and so below 2^53 for 16,383
- * units on cores of up to 4,000 columns or rows. Their sums and differences are exact in doubles, and what is 0 comes out as 0.
+ * The residuals enter in half-pitches, `scale` times over: whole numbers, at most 2 W * units * columns^2 and so below 2^53
+ * for 16,383 units on cores of up to 4,000 columns or rows. Their sums and differences are exact in doubles, and what is 0
+ * comes out as 0.
  *
  * @param residuals of the end-point fit. @param half half a pitch in um.
  * @returns undefined beyond 14 capacitors that are not straight binary.

@@ -4,8 +4,11 @@ import { momentsOfDeal } from './moments.js';
 import { endPointResiduals } from './residuals.js';
 import { worstSecondOrder } from './worst-code.js';
 
-/** The second order of a deal over all codes: `squared`, to compare with a bound or another deal of the same bits, and LSB per ppm/um^2. */
-export interface ExactSecondOrder {
+/**
+ * The second order of a deal over all codes: `squared`, to compare with a bound or another deal of the same bits, and LSB
+ * per ppm/um^2.
+ */
+interface ExactSecondOrder {
   readonly squared: bigint;
   readonly inl_lsb_per_ppm_per_um2: number;
 }

@@ -23,7 +23,10 @@ export const perPpmPerUm = (squared: bigint, scale: bigint): number =>
 export const perPpmPerUm2 = (squared: bigint, scale: bigint): number =>
   squared === 0n ? 0 : PPM * HALF_NM * HALF_NM * root(squared, scale);
 
-/** What to multiply a figure per ppm/um (`order` 1) or per ppm/um^2 (2) by, for one per cent from the centre to the farthest cell. */
+/**
+ * What to multiply a figure per ppm/um (`order` 1) or per ppm/um^2 (2) by, for one per cent from the centre to the farthest
+ * cell.
+ */
 export function onePercent({ rows, columns, pitch_um }: Core, order: 1 | 2): number {
   const [px, py] = pitchNm(pitch_um);
   const [x, y] = [(columns - 1) * px, (rows - 1) * py];

@@ -5,7 +5,10 @@ export interface Spread {
   readonly yy: number;
 }
 
-/** Cells of a core by their places in half-pitches; an odd number of them, so that cell `cells - 1 - i` is the reflection of cell i. */
+/**
+ * Cells of a core by their places in half-pitches; an odd number of them, so that cell `cells - 1 - i` is the reflection of
+ * cell i.
+ */
 export interface Places {
   readonly rows: number;
   readonly columns: number;
@@ -14,8 +17,8 @@ export interface Places {
 }
 
 /**
- * Visits every set of `count` cells with zero sum that leaves the centre out. The last cell follows from the others, so there are about
- * choose(cells, count - 1) / count of them.
+ * Visits every set of `count` cells with zero sum that leaves the centre out. The last cell follows from the others, so
+ * there are about choose(cells, count - 1) / count of them.
  *
  * @param visit called with a mark per cell of the set (valid during the call) and the set's own second moments.
  */

@@ -17,13 +17,14 @@ export interface SecondOrderBound {
 const MOST_WORK = 4_000_000;
 
 /**
- * A bound below the second order of every placement of these bits on this core whose first order is exactly 0. The cells without a bit
- * are fill dummies.
+ * A bound below the second order of every placement of these bits on this core whose first order is exactly 0. The cells
+ * without a bit are fill dummies.
  *
- * Conditions: weights = units, one capacitor of 1 unit and one of 2, odd x odd core. Zero first order means W S_k = w_k S for all bits k,
- * S_k the sum of the bit's cell centres, S of all bits' cells: minus that of the fill's, since the core's is 0. In pitches the
- * coordinates are whole numbers, and where |S| < W on each axis the single unit, at S / W, sits at 0; so S = 0 and all S_k = 0: the 2-unit capacitor
- * is a reflected pair +-r, and the fill has zero sum. The second moments of the bits, T = core - fill, and r then fix
+ * Conditions: weights = units, one capacitor of 1 unit and one of 2, odd x odd core. Zero first order means W S_k = w_k S
+ * for all bits k, S_k the sum of the bit's cell centres, S of all bits' cells: minus that of the fill's, since the core's is
+ * 0. In pitches the coordinates are whole numbers, and where |S| < W on each axis the single unit, at S / W, sits at 0; so S
+ * = 0 and all S_k = 0: the 2-unit capacitor is a reflected pair +-r, and the fill has zero sum. The second moments of the
+ * bits, T = core - fill, and r then fix
  *
  *   B_0 = -T / W,   B_1 = 2 r r' - 2 T / W,   B_0 + B_1,
  *
@@ -75,8 +76,9 @@ function leastSquaredNorm(core: Core, total: number, fill: number): bigint | und
   const exactNorm2 = (xx: number, xy: number, yy: number): bigint =>
     4n * nuclearNormSquared(bx * bx * BigInt(xx), bx * by * BigInt(xy), by * by * BigInt(yy));
 
-  // A double is off by a few 2^-53, relatively: in the larger of trace and difference no cancellation goes below its own terms. So what is
-  // least exactly is among those within 1e-12 of the least double, and those are compared in whole numbers.
+  // A double is off by a few 2^-53, relatively: in the larger of trace and difference no cancellation goes below its own
+  // terms. So what is least exactly is among those within 1e-12 of the least double, and those are compared in whole
+  // numbers.
   let least = Infinity;
   let nearest: { readonly pair: number; readonly bits: Spread }[] = [];
   visitZeroSumSets(places, fill, (taken, spread) => {

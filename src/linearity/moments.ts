@@ -1,9 +1,9 @@
 import type { Deal } from '../array/cost-term.js';
 
 /**
- * First and second moments of every bit's cells about the core's centre, in half-pitches: x = 2 column - (columns - 1) to the right,
- * y = -(2 row - (rows - 1)) upwards (row 0 at the top). Whole numbers on odd and even cores alike, and exact in doubles: 16,383 units on a core of
- * 40,000 cells in one line add up to at most 16,383 * 40,000^2 = 2.6e13 < 2^53 = 9.0e15.
+ * First and second moments of every bit's cells about the core's centre, in half-pitches: x = 2 column - (columns - 1) to
+ * the right, y = -(2 row - (rows - 1)) upwards (row 0 at the top). Whole numbers on odd and even cores alike, and exact in
+ * doubles: 16,383 units on a core of 40,000 cells in one line add up to at most 16,383 * 40,000^2 = 2.6e13 < 2^53 = 9.0e15.
  */
 export interface Moments {
   /** LSB, by bit. */
@@ -19,13 +19,13 @@ export interface Moments {
 export const offset2 = (i: number, count: number): number => 2 * i - (count - 1);
 
 /** The moments of nobody's cells yet, for `add` to fill. */
-export function noMoments(weight: readonly number[]): Moments {
+function noMoments(weight: readonly number[]): Moments {
   const zeros = (): Float64Array => new Float64Array(weight.length);
   return { weight, x: zeros(), y: zeros(), xx: zeros(), xy: zeros(), yy: zeros() };
 }
 
 /** Counts one cell, at (x, y) half-pitches, to bit `k`. */
-export function add(moments: Moments, k: number, x: number, y: number): void {
+function add(moments: Moments, k: number, x: number, y: number): void {
   moments.x[k] += x;
   moments.y[k] += y;
   moments.xx[k] += x * x;
@@ -34,7 +34,8 @@ export function add(moments: Moments, k: number, x: number, y: number): void {
 }
 
 /**
- * @param names bits, by index. @param cells rows of capacitor names from the top; what is no bit (dummies, the termination) is left out.
+ * @param names bits, by index. @param cells rows of capacitor names from the top; what is no bit (dummies, the termination)
+ * is left out.
  */
 export function momentsOfCells(
   names: readonly string[],

@@ -40,13 +40,13 @@ export function ownError(gradient: OwnGradient, x: number, y: number, xx: number
 }
 
 /**
- * The largest INL under a gradient, LSB: `ownError` at its worst code. The residuals are those of the end-point fit, which add up to 0;
- * [hx, hy] is half a pitch in um.
+ * The largest INL under a gradient, LSB: `ownError` at its worst code. The residuals are those of the end-point fit, which
+ * add up to 0; [hx, hy] is half a pitch in um.
  *
- * With a direction the error of a bit is a number: all positive ones. Without: with b_k = q:B_k, a sum reaches
- * max over u of sum d_k (g u.a_k + b_k), so at the worst u the bits that are on are those with g u.a_k + b_k > 0 (the other sign of the bowl belongs
- * to the complement, turned about). As u turns, a bit goes on and off at the two angles where cos(angle to a_k) = -b_k / (g |a_k|); between such
- * angles nothing changes, so one code per interval, 2 K + 1 of them, holds the maximum.
+ * With a direction the error of a bit is a number: all positive ones. Without: with b_k = q:B_k, a sum reaches max over u of
+ * sum d_k (g u.a_k + b_k), so at the worst u the bits that are on are those with g u.a_k + b_k > 0 (the other sign of the
+ * bowl belongs to the complement, turned about). As u turns, a bit goes on and off at the two angles where cos(angle to a_k)
+ * = -b_k / (g |a_k|); between such angles nothing changes, so one code per interval, 2 K + 1 of them, holds the maximum.
  */
 export function worstOwnError(
   gradient: OwnGradient,

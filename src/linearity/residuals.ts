@@ -3,7 +3,8 @@ import type { Moments } from './moments.js';
 /**
  * What is left of every bit's moments when gain is taken out: whole numbers, `scale` times the residual in half-pitches (squared).
  *
- * An error delta_k of bit k that is in proportion to the weights is gain and bends nothing. Each fit takes out a multiple of the weights:
+ * An error delta_k of bit k that is in proportion to the weights is gain and bends nothing. Each fit takes out a multiple of
+ * the weights:
  *
  *   end-point      e_k = delta_k - w_k * (sum_j delta_j) / (sum_j w_j)
  *   least squares  e_k = delta_k - w_k * (sum_j w_j delta_j) / (sum_j w_j^2)

@@ -1,8 +1,9 @@
 /**
- * The steps between neighbouring distinct nominal levels, as differences of points. Point p has the components `points[i][p]`; every step of
- * group [a0, a1, b0, b1] (four entries of `groups` each) leads from a point a0 <= a < a1 to a point b0 <= b < b1.
+ * The steps between neighbouring distinct nominal levels, as differences of points. Point p has the components
+ * `points[i][p]`; every step of group [a0, a1, b0, b1] (four entries of `groups` each) leads from a point a0 <= a < a1 to a
+ * point b0 <= b < b1.
  */
-export interface Steps {
+interface Steps {
   readonly points: readonly Float64Array[];
   readonly groups: Int32Array;
 }
@@ -11,8 +12,8 @@ export interface Steps {
 const MOST_CAPACITORS = 14;
 
 /**
- * Straight binary weights (1, 2, 4, ...) have one step per bit: the bit goes on and all lower ones go off. With other weights several
- * subsets of bits may make a level, and a step leads from any of one level to any of the next.
+ * Straight binary weights (1, 2, 4, ...) have one step per bit: the bit goes on and all lower ones go off. With other
+ * weights several subsets of bits may make a level, and a step leads from any of one level to any of the next.
  *
  * @param weight LSB, ascending. @param vectors components of the end-point residuals, each by bit.
  * @returns undefined for more than 14 capacitors that are not straight binary.

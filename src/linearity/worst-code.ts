@@ -4,8 +4,8 @@ import { longestSumInPlane, longestSumOnLine } from './zonotope.js';
 import type { LongestSum } from './zonotope.js';
 
 /**
- * The largest first-order residual over all codes: `squared` is (2 scale |sum d_k a_k|)^2 with lengths in half-nanometres (a half-pitch
- * times a pitch in nm).
+ * The largest first-order residual over all codes (for least squares: over all signs, see `Residuals`): `squared` is (2
+ * scale |sum d_k a_k|)^2 with lengths in half-nanometres (a half-pitch times a pitch in nm).
  */
 export function worstFirstOrder(residuals: Residuals, [px, py]: PitchNm): LongestSum {
   const { x, y } = inNanometres(residuals, [px, py]);
@@ -13,10 +13,12 @@ export function worstFirstOrder(residuals: Residuals, [px, py]: PitchNm): Longes
 }
 
 /**
- * The largest second-order residual over all codes: `squared` is (2 scale ||sum d_k B_k||_*)^2 with areas in half-nanometres squared.
+ * The largest second-order residual over all codes: `squared` is (2 scale ||sum d_k B_k||_*)^2 with areas in half-nanometres
+ * squared.
  *
- * The nuclear norm of a symmetric 2x2 matrix is max(|xx + yy|, sqrt((xx - yy)^2 + (2 xy)^2)), and the largest of the larger of two is
- * the larger of the two largest: sums of numbers for the trace, sums of vectors in the plane for the rest. So 2^K codes need no visit.
+ * The nuclear norm of a symmetric 2x2 matrix is max(|xx + yy|, sqrt((xx - yy)^2 + (2 xy)^2)), and the largest of the larger
+ * of two is the larger of the two largest: sums of numbers for the trace, sums of vectors in the plane for the rest. So 2^K
+ * codes need no visit.
  */
 export function worstSecondOrder(residuals: Residuals, pitch: PitchNm): LongestSum {
   const { xx, xy, yy } = inNanometres(residuals, pitch);

@@ -5,7 +5,8 @@ const sumOf = (values: readonly bigint[], code: bigint): bigint =>
   values.reduce((sum, value, k) => ((code >> BigInt(k)) & 1n ? sum + value : sum), 0n);
 
 /**
- * The direction, in degrees from the x axis, counter-clockwise, 0 to 180, of the gradient that the code feels most: along its residual.
+ * The direction, in degrees from the x axis, counter-clockwise, 0 to 180, of the gradient that the code feels most: along
+ * its residual.
  *
  * @param residuals in lengths, the code's first-order residual not 0.
  */
@@ -17,8 +18,9 @@ export function worstDirection({ x, y }: Residuals, code: bigint): number {
 }
 
 /**
- * The quadratic gradient of spectral norm 1 that the code feels most: the matrix of the signs of its residual's eigenvalues, the first non-zero
- * entry positive. Eigenvalues of one sign (the trace is the norm): the identity. Of both: what is left without the trace, made a reflection.
+ * The quadratic gradient of spectral norm 1 that the code feels most: the matrix of the signs of its residual's eigenvalues,
+ * the first non-zero entry positive. Eigenvalues of one sign (the trace is the norm): the identity. Of both: what is left
+ * without the trace, made a reflection.
  *
  * @param residuals in areas, the code's second-order residual not 0.
  */

@@ -1,6 +1,7 @@
 /**
- * The longest sum of signed vectors. `squared` is the square of the length of sum_k s_k v_k, s_k = +-1, at its largest; `code` has bit
- * k set where s_k = +1 in the sum that is reached by the smallest such number, vectors of length 0 counting as s_k = -1.
+ * The longest sum of signed vectors. `squared` is the square of the length of sum_k s_k v_k, s_k = +-1, at its largest;
+ * `code` has bit k set where s_k = +1 in the sum that is reached by the smallest such number, vectors of length 0 counting
+ * as s_k = -1.
  */
 export interface LongestSum {
   readonly squared: bigint;
@@ -21,17 +22,17 @@ export function longestSumOnLine(values: readonly bigint[]): LongestSum {
 }
 
 /**
- * Of vectors in the plane, by a walk around their zonotope. With every vector turned into the upper half plane and in the order of
- * their angles, the sum of all is one vertex; reversing one direction after the other visits half the others, and the rest are their
- * negatives:
+ * Of vectors in the plane, by a walk around their zonotope. With every vector turned into the upper half plane and in the
+ * order of their angles, the sum of all is one vertex; reversing one direction after the other visits half the others, and
+ * the rest are their negatives:
  *
  *        __v3_
  *   -v1 /     \ -v1 reversed first, then v2, ...
  *      |       |
  *
- * No longest sum is missed. Let V be one. Reversing s_k v_k cannot make it longer: |V - 2 s_k v_k|^2 <= |V|^2, so
- * s_k v_k . V >= |v_k|^2 > 0. So s_k is the sign of v_k . V, with no vector at right angles to V: a vertex, and no other signs reach it. Everything
- * is compared in whole numbers.
+ * No longest sum is missed. Let V be one. Reversing s_k v_k cannot make it longer: |V - 2 s_k v_k|^2 <= |V|^2, so s_k v_k .
+ * V >= |v_k|^2 > 0. So s_k is the sign of v_k . V, with no vector at right angles to V: a vertex, and no other signs reach
+ * it. Everything is compared in whole numbers.
  */
 export function longestSumInPlane(xs: readonly bigint[], ys: readonly bigint[]): LongestSum {
   const upper = xs
@@ -57,20 +58,17 @@ export function longestSumInPlane(xs: readonly bigint[], ys: readonly bigint[]):
   }
   let squared = -1n;
   let code = 0n;
-  upper.forEach((v, i) => {
-    const previous = upper[i - 1];
-    // Vectors of one direction turn together: halfway is no vertex.
-    if (!previous || previous.x * v.y !== v.x * previous.y) {
-      const length2 = x * x + y * y;
-      const lesser = plus < (all ^ plus) ? plus : all ^ plus;
-      if (length2 > squared || (length2 === squared && lesser < code)) {
-        squared = length2;
-        code = lesser;
-      }
+  for (const v of upper) {
+    // Of vectors in one direction some turned and some not: a place along an edge, shorter than one of the edge's ends.
+    const length2 = x * x + y * y;
+    const lesser = plus < (all ^ plus) ? plus : all ^ plus;
+    if (length2 > squared || (length2 === squared && lesser < code)) {
+      squared = length2;
+      code = lesser;
     }
     x -= 2n * v.x;
     y -= 2n * v.y;
     plus ^= v.bit;
-  });
+  }
   return squared < 0n ? { squared: 0n, code: 0n } : { squared, code };
 }
