@@ -1,0 +1,73 @@
+import {
+  InputError,
+  checkFloorplan,
+  checkPolygons,
+  comparePolygons,
+  drawFloorplan,
+  formatJson,
+  parseFloorplan,
+  parsePolygons,
+} from '../index.js';
+import type { Finding } from '../index.js';
+import { UsageError, exit, shown } from './fault.js';
+import { formatOf, readText } from './input.js';
+import type { Io } from './io.js';
+import { findingLines, lines } from './summary.js';
+import { floorplanToDraw, valueOf } from './technology.js';
+
+/** The options of `check` as typed. */
+export interface CheckFlags {
+  readonly json?: boolean;
+}
+
+interface Verdict {
+  readonly findings: readonly Finding[];
+  readonly notes: readonly string[];
+}
+
+/** The floorplan's drawing, made for the purpose. */
+async function checkDrawn(io: Io, file: string, text: string): Promise<Verdict> {
+  const { floorplan, technology, notes } = await floorplanToDraw(io, file, text);
+  const drawn = drawFloorplan(floorplan, technology, { keepHookup: true });
+  return { findings: drawn.findings, notes: [...notes, ...drawn.notes] };
+}
+
+function checkBoth(file: string, text: string, polygonsFile: string, polygonsText: string): Verdict {
+  const floorplan = parseFloorplan(text, file);
+  const polygons = parsePolygons(polygonsText, polygonsFile);
+  if (!floorplan.ok || !polygons.ok) {
+    throw new InputError([floorplan, polygons].flatMap((result) => (result.ok ? [] : result.issues)));
+  }
+  const findings = [
+    ...checkFloorplan(floorplan.value),
+    ...checkPolygons(polygons.value),
+    ...comparePolygons(polygons.value, floorplan.value),
+  ];
+  return { findings, notes: [] };
+}
+
+async function verdict(io: Io, file: string, polygonsFile: string | undefined): Promise<Verdict> {
+  const text = await readText(io, file);
+  const isPolygons = formatOf(text) === 'polygons';
+  if (polygonsFile === undefined) {
+    return isPolygons
+      ? { findings: checkPolygons(valueOf(parsePolygons(text, file))), notes: [] }
+      : checkDrawn(io, file, text);
+  }
+  if (isPolygons) throw new UsageError(['check: found a polygons file first; wanted the floorplan, then its polygons']);
+  return checkBoth(file, text, polygonsFile, await readText(io, polygonsFile));
+}
+
+/** `check`: findings on a drawing, as a table or as JSON; exit code 1 where there are any. */
+export async function check(
+  io: Io,
+  file: string,
+  polygonsFile: string | undefined,
+  flags: CheckFlags,
+): Promise<number> {
+  const { findings, notes } = await verdict(io, file, polygonsFile);
+  if (notes.length > 0) await io.stderr(lines(notes.map(shown)));
+  if (flags.json === true) await io.stdout(formatJson({ findings }));
+  else await io.stdout(lines(findings.length === 0 ? ['no findings'] : findingLines(findings).map(shown)));
+  return findings.length > 0 ? exit.failedCheck : exit.done;
+}

@@ -1,0 +1,174 @@
+import { Command, CommanderError } from 'commander';
+import { options as settings, schemaNames } from '../index.js';
+import { printSchema, printTechnology } from './catalogue.js';
+import { check } from './check.js';
+import type { CheckFlags } from './check.js';
+import { exportFiles } from './export.js';
+import type { ExportFlags } from './export.js';
+import { UsageError, exit } from './fault.js';
+import { formats } from './files.js';
+import type { Io } from './io.js';
+import { place } from './place.js';
+import type { PlaceFlags } from './place.js';
+
+/** Commands and options that a later version brings: refused by name rather than taken for a slip of the pen. */
+const laterCommands = ['pattern', 'compare', 'size', 'simulate'];
+const laterOptions: Readonly<Record<string, readonly string[]>> = {
+  place: ['--candidates', '--samples', '--workers'],
+  export: ['--pins', '--flat', '--stub-cell', '--devices', '--dummies'],
+};
+
+const examples: Readonly<Record<string, readonly string[]>> = {
+  place: ['steelyard place --bits 8 --effort quick --out demo'],
+  check: ['steelyard place --bits 4 --out demo', 'steelyard check demo/cdac4.floorplan.json demo/cdac4.polygons.json'],
+  export: [
+    'steelyard place --bits 4 --out demo',
+    'steelyard export demo/cdac4.floorplan.json --to gds,svg --out handover',
+  ],
+  schema: ['steelyard schema array'],
+  technology: ['steelyard technology parallel-plate'],
+};
+
+const plain = (words: string): string => words.replace(/[`"]/g, '');
+
+/** The commands, their options and their help; `finish` receives what the chosen one ends with. */
+function build(io: Io, version: string, finish: (code: number) => void): Command {
+  const program = new Command('steelyard')
+    .description('Binary-weighted capacitor arrays: placed, wired, checked and drawn.')
+    .version(version, '--version', 'print the version')
+    .helpOption('--help', 'print this help')
+    .helpCommand(false)
+    .addHelpText(
+      'after',
+      "\nsteelyard COMMAND --help tells a command's options and shows an example.\nExample:\n  steelyard place --bits 8",
+    );
+  const command = (name: string, description: string): Command =>
+    program
+      .command(name)
+      .description(description)
+      .helpOption('--help', 'print this help')
+      .addHelpText('after', `\nExample:\n${(examples[name] ?? []).map((line) => `  ${line}`).join('\n')}`);
+
+  const placing = command('place', 'Places an array, wires and draws it, and writes its files.')
+    .argument('[FILE]', 'array file; or a floorplan file: its cells are kept and wired anew')
+    .option('--out <folder>', "where the files go (default: a folder of the array's name)");
+  for (const { flag, help, values, standard } of settings) {
+    if (flag === undefined) continue;
+    const choice = values.startsWith('`"') ? `: ${plain(values)}` : '';
+    placing.option(flag, help + choice + (standard === '-' ? '' : ` (default: ${plain(standard)})`));
+  }
+  placing
+    .option('--floorplan-only', 'place and analyse, draw no wires')
+    .option('--pitch <X,Y>', 'pitch in micrometres, with --floorplan-only')
+    .option('--json', 'print the metrics, and nothing else, as JSON')
+    .action(async (file: string | undefined, flags: PlaceFlags) => finish(await place(io, file, flags)));
+
+  command('check', 'Checks a drawing from its polygons alone; given a floorplan alone, draws it first.')
+    .argument('<FILE>', 'floorplan or polygons file')
+    .argument('[POLYGONS]', "polygons file that is meant to be this floorplan's drawing")
+    .option('--json', 'print the findings, and nothing else, as JSON')
+    .action(async (file: string, polygons: string | undefined, flags: CheckFlags) =>
+      finish(await check(io, file, polygons, flags)),
+    );
+
+  command('export', 'Draws a floorplan as it is and writes the drawing in other formats.')
+    .argument('<FLOORPLAN>', 'floorplan file')
+    .requiredOption('--to <formats>', `one or more of ${formats.join(', ')}, with commas between`)
+    .option('--out <folder>', "where the files go (default: a folder of the array's name)")
+    .option('--layers <file>', "layer map: stream numbers of one's own")
+    .option(
+      '--date <YYYY-MM-DD>',
+      'date in the stream file (default: a fixed one, so that equal drawings are equal files)',
+    )
+    .action(async (file: string, flags: ExportFlags) => finish(await exportFiles(io, file, flags)));
+
+  command('schema', 'Prints the JSON Schema of a file format; without a name, the names.')
+    .argument('[NAME]', `one of ${schemaNames.join(', ')}`)
+    .action(async (name: string | undefined) => finish(await printSchema(io, name)));
+
+  command('technology', 'Prints a shipped technology template; without a name, what there is.')
+    .argument('[NAME]', 'name of a template')
+    .action(async (name: string | undefined) => finish(await printTechnology(io, name)));
+  for (const each of program.commands) {
+    each.option('--debug', 'after a defect of the program, show its place in the code');
+  }
+  return program;
+}
+
+const longNames = (command: Command): string => command.options.flatMap(({ long }) => long ?? []).join(', ');
+
+function refuseWhatComesLater(argv: readonly string[], program: Command): void {
+  const name = argv.find((word) => !word.startsWith('-')) ?? '';
+  if (laterCommands.includes(name)) {
+    const existing = program.commands.map((command) => command.name()).join(', ');
+    throw new UsageError([`${name}: found a command that is not available yet; wanted one of ${existing}`]);
+  }
+  const later = laterOptions[name] ?? [];
+  const command = program.commands.find((candidate) => candidate.name() === name);
+  const lines = argv
+    .map((word) => word.replace(/=.*/s, ''))
+    .filter((word) => later.includes(word))
+    .map(
+      (word) =>
+        `${name} ${word}: found an option that is not available yet; wanted one of ${command === undefined ? '' : longNames(command)}`,
+    );
+  if (lines.length > 0) throw new UsageError(lines);
+}
+
+/** commander's report in our own form: what was found, what was wanted. */
+function inOurWords(error: CommanderError, program: Command, name: string): string {
+  const subject = /'([^']*)'/.exec(error.message)?.[1] ?? '';
+  const command = program.commands.find((candidate) => candidate.name() === name);
+  const commands = program.commands.map((candidate) => candidate.name()).join(', ');
+  const where = command === undefined ? 'steelyard' : name;
+  switch (error.code) {
+    case 'commander.help':
+      return `${where}: found no command; wanted one of ${commands} (steelyard --help)`;
+    case 'commander.unknownCommand':
+      return `${where}: found the command ${JSON.stringify(subject)}; wanted one of ${commands}`;
+    case 'commander.unknownOption':
+      return `${where} ${subject}: found an unknown option; wanted one of ${longNames(command ?? program)}`;
+    case 'commander.optionMissingArgument':
+      return `${where} ${subject}: found no value; wanted one`;
+    case 'commander.missingMandatoryOptionValue':
+      return `${where}: found no ${subject.split(' ')[0]}; wanted ${subject}`;
+    case 'commander.missingArgument':
+      return `${where}: found no ${subject}; wanted: steelyard ${name} ${command?.usage() ?? ''}`;
+    case 'commander.excessArguments':
+      return `${where}: found too many arguments; wanted: steelyard ${name} ${command?.usage() ?? ''}`;
+    default:
+      return `${where}: ${error.message}`;
+  }
+}
+
+/**
+ * Runs one command.
+ * @returns its exit code
+ * @throws UsageError for a command line that is none, and whatever the command throws
+ */
+export async function runCommand(argv: readonly string[], io: Io, version: string): Promise<number> {
+  let code: number = exit.done;
+  let help = '';
+  const program = build(io, version, (result) => {
+    code = result;
+  });
+  for (const command of [program, ...program.commands]) {
+    command.exitOverride().configureOutput({
+      writeOut: (text) => {
+        help += text;
+      },
+      writeErr: () => undefined,
+      outputError: () => undefined,
+      getOutHelpWidth: () => io.columns,
+    });
+  }
+  refuseWhatComesLater(argv, program);
+  try {
+    await program.parseAsync(argv, { from: 'user' });
+  } catch (error) {
+    if (!(error instanceof CommanderError)) throw error;
+    if (error.exitCode !== 0) throw new UsageError([inOurWords(error, program, argv[0] ?? '')]);
+  }
+  if (help !== '') await io.stdout(help);
+  return code;
+}

@@ -1,0 +1,78 @@
+import type { Problem } from '../index.js';
+
+/** What the process ends with. */
+export const exit = {
+  done: 0,
+  failedCheck: 1,
+  badInput: 2,
+  infeasible: 3,
+  file: 4,
+  defect: 5,
+  interrupted: 130,
+} as const;
+
+/** The command line itself is wrong (exit code 2). */
+export class UsageError extends Error {
+  constructor(readonly lines: readonly string[]) {
+    super(lines.join('\n'));
+    this.name = 'UsageError';
+  }
+}
+
+/** A file could not be read or written (exit code 4). */
+export class FileError extends Error {
+  constructor(
+    readonly path: string,
+    readonly deed: 'read' | 'written',
+    cause: unknown,
+  ) {
+    super(`${path} could not be ${deed}: ${reason(cause)}`, { cause });
+    this.name = 'FileError';
+  }
+}
+
+/** Ctrl-C before there was anything to save (exit code 130). */
+export class Interrupted extends Error {
+  constructor() {
+    super('interrupted before the first placement: nothing written');
+    this.name = 'Interrupted';
+  }
+}
+
+const reasons: Readonly<Record<string, string>> = {
+  ENOENT: 'no such file or folder',
+  EACCES: 'permission denied',
+  EPERM: 'permission denied',
+  EISDIR: 'it is a folder',
+  ENOTDIR: 'a part of its path is no folder',
+  EEXIST: 'a part of its path is no folder',
+  ENOSPC: 'no space left',
+  EDQUOT: 'the quota is used up',
+  EROFS: 'the file system is read-only',
+  ENAMETOOLONG: 'its name is too long',
+  ELOOP: 'its links run in a circle',
+  EMFILE: 'too many files are open',
+  EIO: 'the device failed',
+};
+
+function reason(cause: unknown): string {
+  if (!(cause instanceof Error)) return String(cause);
+  const code = 'code' in cause && typeof cause.code === 'string' ? cause.code : undefined;
+  if (code === undefined) return cause.message;
+  const words = reasons[code];
+  return words === undefined ? code : `${words} (${code})`;
+}
+
+// Control characters, and the marks that turn the direction of text or break a line, would let a file's content write on the terminal.
+const hostile = /[\p{Cc}\p{Cf}\p{Zl}\p{Zp}\p{Cs}]/gu;
+
+/** Text of a stranger on one line: whatever does not print stands there as its code. */
+export const shown = (text: string): string =>
+  text.replace(hostile, (character) => `\\u{${(character.codePointAt(0) ?? 0).toString(16)}}`);
+
+/** `FILE:LINE:COLUMN /pointer: found X; wanted Y`, the parts that are known. */
+export function problemLine(problem: Problem): string {
+  const place = [problem.file, problem.line, problem.column].filter((part) => part !== undefined).join(':');
+  const where = [place, problem.pointer].filter((part) => part !== '').join(' ');
+  return shown(`${where === '' ? 'input' : where}: found ${problem.found}; wanted ${problem.wanted}`);
+}

@@ -1,0 +1,170 @@
+import pc from 'picocolors';
+import type { Capacitor, Drawn, Finding, Floorplan, Metrics } from '../index.js';
+import { shown } from './fault.js';
+import type { Io } from './io.js';
+
+type Line = readonly [label: string, text: string, colour?: (text: string) => string];
+
+/** Texts as lines, each with its end. */
+export const lines = (texts: readonly string[]): string => texts.map((text) => `${text}\n`).join('');
+
+const counted = (count: number, noun: string): string => `${count} ${noun}${count === 1 ? '' : 's'}`;
+
+/** Four significant digits: enough to compare, short enough to read. The files hold all of them. */
+const brief = (value: number): string => String(Number(value.toPrecision(4)));
+
+const lsb = (figures: { readonly inl_lsb: number; readonly dnl_lsb?: number | undefined }): string =>
+  `INL ${brief(figures.inl_lsb)} LSB` + (figures.dnl_lsb === undefined ? '' : `, DNL ${brief(figures.dnl_lsb)} LSB`);
+
+// Rows that would fill more than a screen are better looked at in the picture.
+const mostRows = 40;
+const signs = '0123456789abcdefghijklmnopqrstuvwxyz';
+
+/**
+ * The core drawn in characters, bit k as the k-th digit or letter, the termination as T, fill as a dot; top row first.
+ * Empty where it is larger than `columns` characters a line or a screen of lines.
+ */
+export function coreInCharacters(floorplan: Floorplan, columns: number): readonly string[] {
+  const signOf = new Map<string, string>([['-', '.']]);
+  let next = 0;
+  for (const { name, role } of floorplan.capacitors) {
+    const sign = role === 'termination' ? 'T' : signs[next++];
+    if (sign === undefined) return [];
+    signOf.set(name, sign);
+  }
+  const width = floorplan.core.columns;
+  if (floorplan.core.rows > mostRows || width > columns) return [];
+  const gap = 2 * width - 1 <= columns ? ' ' : '';
+  return floorplan.cells.map((row) => row.map((name) => signOf.get(name) ?? '?').join(gap));
+}
+
+/** A symmetric shape of spectral norm 1 in the words of the trade: a bowl, or a saddle and where it rises. */
+function shapeInWords({ xx, xy, yy }: { readonly xx: number; readonly xy: number; readonly yy: number }): string {
+  const trace = xx + yy;
+  if (trace > 1.999999) return 'a bowl';
+  if (Math.abs(trace) > 0.000001) return `xx ${brief(xx)}, xy ${brief(xy)}, yy ${brief(yy)}`;
+  const direction = (Math.atan2(2 * xy, xx - yy) * 90) / Math.PI;
+  return `a saddle along ${brief(direction < 0 ? direction + 180 : direction)} degrees`;
+}
+
+function gradientInWords(floorplan: Floorplan): string {
+  const gradient = floorplan.array?.gradient ?? floorplan.technology?.gradient;
+  if (gradient === undefined) return '';
+  const parts: string[] = [];
+  if (gradient.linear_ppm_per_um !== undefined) {
+    const direction = gradient.direction_deg === undefined ? '' : ` at ${gradient.direction_deg} degrees`;
+    parts.push(`${gradient.linear_ppm_per_um} ppm/um${direction}`);
+  }
+  const quadratic = gradient.quadratic_ppm_per_um2;
+  if (typeof quadratic === 'number') parts.push(`${quadratic} ppm/um2`);
+  else if (quadratic !== undefined) {
+    parts.push(`xx ${quadratic.xx}, xy ${quadratic.xy}, yy ${quadratic.yy} ppm/um2`);
+  }
+  return parts.length === 0 ? '' : ` under ${parts.join(' and ')}`;
+}
+
+function gradientLines(floorplan: Floorplan, { gradient }: Metrics): readonly Line[] {
+  const { first, second, own } = gradient;
+  const lines: Line[] = [];
+  if (own !== undefined) lines.push(['gradient', `${lsb(own)}${gradientInWords(floorplan)}`]);
+  const scale = 'at 1 % to the farthest cell';
+  const firstWorst =
+    first.worstDirection_deg === undefined ? '' : `, worst at ${brief(first.worstDirection_deg)} degrees`;
+  lines.push([
+    'first order',
+    first.inl_lsb === 0 && (first.dnl_lsb ?? 0) === 0
+      ? 'exactly 0 in every direction'
+      : `${lsb(first)} ${scale}${firstWorst}`,
+  ]);
+  const secondWorst = second.worstShape === undefined ? '' : `, worst under ${shapeInWords(second.worstShape)}`;
+  lines.push(['second order', `${lsb(second)} ${scale}${secondWorst}`]);
+  const bound = second.lowerBound_inl_lsb;
+  if (bound !== undefined) {
+    const ratio = bound > 0 ? `; reached ${(second.inl_lsb / bound).toFixed(3)} times that` : '';
+    lines.push(['lower bound', `INL ${brief(bound)} LSB for any placement without first order${ratio}`]);
+  }
+  return lines;
+}
+
+const classes = {
+  'zero-first-order': 'all placements without first order',
+  'point-reflected': 'all point-reflected placements',
+};
+
+function placementLine({ placement }: Floorplan): readonly Line[] {
+  if (placement === undefined) return [];
+  const { method, status, proof, work } = placement;
+  const trials = `${method}, ${work} trials`;
+  if (status === 'proved' && proof !== undefined) {
+    return [['placement', `proved least ${proof.figure} of ${classes[proof.class]} (${trials})`]];
+  }
+  const words = { proved: 'proved', 'effort-spent': 'effort spent, not proved least', interrupted: 'interrupted' };
+  return [['placement', `${words[status]} (${trials})`]];
+}
+
+function hookupLines({ hookup, area_um2 }: Metrics): readonly Line[] {
+  const counts: readonly (readonly [number | undefined, string, string?])[] = [
+    [hookup.trunks, 'trunk'],
+    [hookup.tracksPerChannel, 'track', ' a channel'],
+    [hookup.crossovers, 'crossover'],
+    [hookup.bends, 'bend'],
+    [hookup.vias, 'via'],
+  ];
+  const parts = counts.flatMap(([count, noun, rest = '']) =>
+    count === undefined ? [] : [`${counted(count, noun)}${rest}`],
+  );
+  if (hookup.wireLength_um !== undefined) parts.push(`${brief(hookup.wireLength_um)} um of wire`);
+  if (parts.length === 0) parts.push(`${counted(hookup.columnNets, 'pair')} of a column and a bit in it`);
+  const lines: Line[] = [['hookup', parts.join(', ')]];
+  if (area_um2 !== undefined) lines.push(['area', `${brief(area_um2)} um2, rings and buses included`]);
+  return lines;
+}
+
+/** "10 bits" for binary weights, else the weights. */
+function arrayInWords(capacitors: readonly Capacitor[]): string {
+  const weights = capacitors.filter(({ role }) => role === 'bit').map(({ weight }) => weight);
+  return weights.every((weight, bit) => weight === 2 ** bit)
+    ? `${weights.length} bits`
+    : `weights ${weights.join(' ')}`;
+}
+
+/** One finding a line: rule, layer, place, what was found against the limit, in words. */
+export const findingLines = (findings: readonly Finding[]): readonly string[] => {
+  const rows = findings.map(({ rule, layer, at_um: [x, y], text }) => [rule, layer, `${x}, ${y}`, text]);
+  const widths = [0, 1, 2].map((column) => Math.max(...rows.map((row) => row[column]?.length ?? 0)));
+  return rows.map((row) => row.map((cell, column) => cell.padEnd(widths[column] ?? 0)).join('  '));
+};
+
+/** The summary of a finished run as lines of text, without line ends. */
+export function summaryOf(
+  drawn: Drawn,
+  files: readonly string[],
+  io: Pick<Io, 'columns' | 'colour'>,
+): readonly string[] {
+  const colours = pc.createColors(io.colour);
+  const { floorplan, metrics, findings } = drawn;
+  const { rows, columns, pitch_um } = metrics.core;
+  const head = [
+    metrics.name,
+    arrayInWords(floorplan.capacitors),
+    `${rows} rows x ${columns} columns`,
+    `pitch ${pitch_um.join(' x ')} um`,
+    ...(floorplan.technology === undefined ? [] : [floorplan.technology.name]),
+  ].join(', ');
+  const picture = coreInCharacters(floorplan, io.columns - 2);
+  const lines: Line[] = [...gradientLines(floorplan, metrics), ...placementLine(floorplan), ...hookupLines(metrics)];
+  if (drawn.polygons !== undefined) {
+    const { length } = findings;
+    lines.push(length === 0 ? ['check', 'no findings'] : ['check', counted(length, 'finding'), colours.red]);
+  }
+  for (const note of drawn.notes) lines.push(['note', note]);
+  for (const warning of drawn.warnings) lines.push(['warning', warning, colours.yellow]);
+  files.forEach((file, index) => lines.push([index === 0 ? 'files' : '', file]));
+  return [
+    colours.bold(shown(head)),
+    '',
+    ...(picture.length === 0 ? [] : [...picture.map((row) => `  ${row}`), '']),
+    ...lines.map(([label, text, colour = String]) => colour(`${label.padEnd(14)}${shown(text)}`)),
+    ...findingLines(findings).map(shown),
+  ];
+}

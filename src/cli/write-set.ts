@@ -1,0 +1,121 @@
+import {
+  chmodSync,
+  closeSync,
+  copyFileSync,
+  fsyncSync,
+  linkSync,
+  mkdirSync,
+  openSync,
+  realpathSync,
+  renameSync,
+  rmdirSync,
+  rmSync,
+  statSync,
+  writeFileSync,
+} from 'node:fs';
+import { basename, dirname, join } from 'node:path';
+import { FileError } from './fault.js';
+import type { OutputFile } from './io.js';
+
+interface Staged {
+  readonly path: string;
+  readonly target: string;
+  readonly temporary: string;
+  /** A second name of the file that stood there, until all are in place. */
+  former?: string;
+  placed: boolean;
+}
+
+function quietly(action: () => void): void {
+  try {
+    action();
+  } catch {
+    // Tidying up after a failure: the failure itself is what the user has to know.
+  }
+}
+
+function makeFolder(path: string, created: string[]): void {
+  try {
+    if (statSync(path).isDirectory()) return;
+  } catch {
+    makeFolder(dirname(path), created);
+  }
+  mkdirSync(path);
+  created.push(path);
+}
+
+// The file behind a link is replaced, not the link; what is no plain file is left alone.
+function targetOf(path: string): { target: string; mode?: number } {
+  let target: string;
+  try {
+    target = realpathSync(path);
+  } catch (error) {
+    if ((error as NodeJS.ErrnoException).code === 'ENOENT') return { target: path };
+    throw error;
+  }
+  const stats = statSync(target);
+  if (stats.isDirectory()) throw Object.assign(new Error(), { code: 'EISDIR' });
+  if (!stats.isFile()) throw new Error('it is no plain file');
+  return { target, mode: stats.mode & 0o777 };
+}
+
+function writeTemporary(temporary: string, content: string | Uint8Array, mode?: number): void {
+  const descriptor = openSync(temporary, 'wx');
+  try {
+    writeFileSync(descriptor, content);
+    if (mode !== undefined) chmodSync(temporary, mode);
+    fsyncSync(descriptor);
+  } finally {
+    closeSync(descriptor);
+  }
+}
+
+function keepFormer(target: string, former: string): string | undefined {
+  try {
+    linkSync(target, former);
+  } catch (error) {
+    if ((error as NodeJS.ErrnoException).code === 'ENOENT') return undefined;
+    copyFileSync(target, former);
+  }
+  return former;
+}
+
+/**
+ * Writes files as one set: each whole, and either all or none. Folders on the way are made.
+ *
+ * First every file is written beside its target under another name, then all are renamed in one go without a pause in which
+ * a signal could be answered. If one fails, those before it are put back.
+ * @throws FileError naming the first file that could not be written; everything is as it was then.
+ */
+export function writeSet(files: readonly OutputFile[]): void {
+  const created: string[] = [];
+  const staged: Staged[] = [];
+  let at = '';
+  try {
+    for (const [index, { path, content }] of files.entries()) {
+      at = path;
+      makeFolder(dirname(path), created);
+      const { target, mode } = targetOf(path);
+      const temporary = join(dirname(target), `.${basename(target)}.${process.pid}-${index}.new`);
+      staged.push({ path, target, temporary, placed: false });
+      writeTemporary(temporary, content, mode);
+    }
+    for (const file of staged) {
+      at = file.path;
+      const former = keepFormer(file.target, file.temporary.replace(/new$/, 'old'));
+      if (former !== undefined) file.former = former;
+      renameSync(file.temporary, file.target);
+      file.placed = true;
+    }
+    for (const { former } of staged) if (former !== undefined) quietly(() => rmSync(former));
+  } catch (cause) {
+    for (const file of staged.reverse()) {
+      const { former, target, temporary } = file;
+      if (former !== undefined) quietly(() => renameSync(former, target));
+      else if (file.placed) quietly(() => rmSync(target));
+      quietly(() => rmSync(temporary, { force: true }));
+    }
+    for (const folder of created.reverse()) quietly(() => rmdirSync(folder));
+    throw new FileError(at, 'written', cause);
+  }
+}
