@@ -19,6 +19,7 @@ import {
 } from './schema-parts.js';
 import type { Schema } from './schema-parts.js';
 import type { Technology } from './technology.js';
+import { either } from './words.js';
 
 /** One key of an array file. This table is its only description: schema, defaults, help and documentation come from it. */
 export interface Option {
@@ -40,7 +41,7 @@ export interface Option {
   readonly resolve?: (before: ArraySpec, technology: Technology) => unknown;
 }
 
-export const mostBits = 14;
+const mostBits = 14;
 export const mostWeights = 20;
 export const mostWeight = 16383;
 export const mostCells = 40000;
@@ -57,7 +58,7 @@ function hasStandardPins(value: unknown): boolean {
 
 const allBut = (later: string, ...now: string[]): NonNullable<Option['works']> => ({
   accepts: (value) => now.some((v) => v === value),
-  wanted: `${now.map((v) => `"${v}"`).join(' or ')} ("${later}" is not available yet)`,
+  wanted: `${either(now)} ("${later}" is not available yet)`,
 });
 
 /** Rings of dummies whose pitch, at least that of the plate and its wide spacing, add up to the proximity reach. */

@@ -24,7 +24,7 @@ export interface Rules {
 
 const aValue = 'a value: an object, a list, a text in double quotes, a number, true, false or null';
 const syntax: Readonly<Record<string, string>> = {
-  InvalidSymbol: aValue,
+  InvalidSymbol: 'a key or a text in double quotes, a number, true, false or null',
   InvalidNumberFormat: 'a decimal number',
   PropertyNameExpected: 'a key in double quotes, and no comma before a closing brace',
   ValueExpected: `${aValue}, and no comma before a closing bracket`,
@@ -45,9 +45,10 @@ const syntax: Readonly<Record<string, string>> = {
 function addSyntaxErrors(text: string, report: Report): void {
   const before = report.count;
   let last = -1;
-  const onError = (error: number, offset: number, length: number): void => {
-    if (offset === last) return; // one slip, said twice
-    last = offset;
+  // One slip upsets the parser several times: the first of a line counts.
+  const onError = (error: number, offset: number, length: number, line: number): void => {
+    if (line === last) return;
+    last = line;
     if (!report.open) return report.addUnlisted(1);
     const found =
       offset >= text.length ? 'the end of the file' : quoted(text.slice(offset, offset + Math.max(length, 1)));

@@ -69,7 +69,7 @@ export const object = (keys: Properties): Schema => {
 };
 
 /** A number for all directions alike, or the three entries of a symmetric form. */
-export const quadratic: Schema = { ...object({ xx: number, xy: number, yy: number }), type: ['number', 'object'] };
+const quadratic: Schema = { ...object({ xx: number, xy: number, yy: number }), type: ['number', 'object'] };
 export const gradient = object({
   'linear_ppm_per_um?': number,
   'quadratic_ppm_per_um2?': quadratic,

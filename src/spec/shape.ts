@@ -19,12 +19,16 @@ function validator(name: SchemaName): ValidateFunction {
   return validate;
 }
 
-function range({ minimum, maximum, exclusiveMinimum }: Schema): string {
-  const most = maximum === undefined || maximum >= 1e12 ? undefined : maximum;
-  if (exclusiveMinimum !== undefined)
+/** The limits of a number; those that only keep arithmetic exact are named where the value is beyond them. */
+function range({ minimum, maximum, exclusiveMinimum }: Schema, value: unknown): string {
+  const beyond = typeof value === 'number' ? value : 0;
+  const most = maximum !== undefined && (maximum < 1e12 || beyond > maximum) ? maximum : undefined;
+  const least = minimum !== undefined && (minimum > -1e12 || beyond < minimum) ? minimum : undefined;
+  if (exclusiveMinimum !== undefined) {
     return ` above ${exclusiveMinimum}${most === undefined ? '' : `, ${most} at most`}`;
-  if (minimum === undefined || minimum <= -1e12) return most === undefined ? '' : ` of ${most} at most`;
-  return most === undefined ? ` of ${minimum} or more` : ` from ${minimum} to ${most}`;
+  }
+  if (least === undefined) return most === undefined ? '' : ` of ${most} at most`;
+  return most === undefined ? ` of ${least} or more` : ` from ${least} to ${most}`;
 }
 
 function size({ items, minItems = 0, maxItems }: Schema): string {
@@ -37,7 +41,7 @@ function size({ items, minItems = 0, maxItems }: Schema): string {
 }
 
 /** What a schema wants, in words. */
-function wants(part: Schema): string {
+function wants(part: Schema, value?: unknown): string {
   if (part.const !== undefined) return JSON.stringify(part.const);
   if (part.enum !== undefined) return either(part.enum);
   if (part.pattern !== undefined && part.description !== undefined) return part.description;
@@ -45,10 +49,10 @@ function wants(part: Schema): string {
     switch (type) {
       case 'integer':
         return part.multipleOf === undefined
-          ? `a whole number${range(part)}`
-          : `a multiple of ${part.multipleOf}${range(part)}`;
+          ? `a whole number${range(part, value)}`
+          : `a multiple of ${part.multipleOf}${range(part, value)}`;
       case 'number':
-        return `a number${range(part)}`;
+        return `a number${range(part, value)}`;
       case 'string':
         return `a text of ${part.minLength ?? 0} to ${part.maxLength ?? 'any number of'} characters`;
       case 'array':
@@ -81,7 +85,7 @@ function addError(report: Report, error: ErrorObject): void {
     const { missingProperty: key } = error.params as { missingProperty: string };
     report.add(at, `no key ${quoted(key)}`, `${quoted(key)}: ${wants(part.properties?.[key] ?? {})}`);
   } else {
-    report.add(at, shown(error.data), wants(part));
+    report.add(at, shown(error.data), wants(part, error.data));
   }
 }
 

@@ -49,8 +49,9 @@ export class Examination {
 
   /** The via between two layers, whichever is the lower. */
   via(a: Drawn | undefined, b: Drawn | undefined): Drawn | undefined {
-    const ends = [a?.name, b?.name];
-    return this.vias.find(({ entry }) => ends.includes(word(entry.lower)) && ends.includes(word(entry.upper)));
+    const joins = (lower: Drawn | undefined, upper: Drawn | undefined, { entry }: Drawn): boolean =>
+      entry.lower === lower?.name && entry.upper === upper?.name;
+    return this.vias.find((via) => joins(a, b, via) || joins(b, a, via));
   }
 
   /** Adds a name that no layer has. */

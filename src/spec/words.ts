@@ -26,6 +26,7 @@ export function shown(value: unknown): string {
     const keys = Object.keys(value).length;
     return keys === 0 ? 'an empty object' : `an object of ${keys} ${keys === 1 ? 'key' : 'keys'}`;
   }
+  if (typeof value === 'number' && !Number.isFinite(value)) return 'a number too large for a double';
   return cut(JSON.stringify(value) ?? 'nothing');
 }
 
