@@ -247,7 +247,7 @@ interface Segment {
 }
 
 /** Runs of one group and net, where the group has another net to exchange with. */
-function segmentsOf(order: Int32Array, group: Uint8Array, nets: Uint8Array): Segment[] {
+function segmentsOf(order: Int32Array, group: Int32Array, nets: Uint8Array): Segment[] {
   const ends = (from: number, same: (a: number, b: number) => boolean): number => {
     let end = from + 1;
     while (end < order.length && same(order[from], order[end])) end++;

@@ -2,6 +2,7 @@ import type { Deal } from '../array/cost-term.js';
 import { oddDeal } from '../array/core-grid.js';
 import { mirroredTriples } from '../array/mirrored-triples.js';
 import type { Random } from '../core/random.js';
+import { columnQuotas } from './column-quotas.js';
 import { leastSinglesOrder } from './singles.js';
 
 /** A capacitor as the search sees it. Without weight (0: a termination inside the core) its cells are dealt as fill. */
@@ -16,7 +17,7 @@ export interface DealtNet {
 export type Dealing = {
   readonly deal: Deal;
   /** group[block]: only blocks of one group (always of one size) are exchanged; `exactZero` holds whatever is exchanged within groups. */
-  readonly group: Uint8Array;
+  readonly group: Int32Array;
   /** Nets without weight: no figure of linearity knows them from fill, so they are searched as fill and named at the end. */
   readonly unweighted: readonly { readonly net: number; readonly units: number }[];
 } & (
@@ -24,13 +25,21 @@ export type Dealing = {
   | { readonly exactZero: false; /** A sentence. */ readonly because: string }
 );
 
+/**
+ * "scattered": pairs anywhere, exchanged with any other. `columns`: each column gets few nets (planned first, see `columnQuotas`) and pairs
+ * are exchanged within their columns only, so that what the search does leaves the (column, net) pairs as few as they are. Its
+ * `momentPrice` says how many such pairs a second moment across the columns is worth that is off by as much as the LSB's is anyhow: 1
+ * wants few, 4 costs next to nothing of the second order.
+ */
+export type Arrangement = 'scattered' | { readonly columns: { readonly momentPrice: number } };
+
 export interface DealRequest {
   readonly rows: number;
   readonly columns: number;
   readonly nets: readonly DealtNet[];
   readonly random: Random;
-  /** "columns": the large capacitors start in whole columns, from the left and right edges inwards. */
-  readonly arrangement?: 'scattered' | 'columns';
+  /** "scattered" if not given. */
+  readonly arrangement?: Arrangement;
 }
 
 /** A net with all its cells to be dealt; the fill, with every net without weight in it, is the last. */
@@ -47,7 +56,7 @@ interface Frame {
   readonly columns: number;
 }
 
-// Cores of up to so many cells are dealt cell by cell where nothing better than a search among all deals is known.
+// Cores of up to so many cells are dealt cell by cell where first order 0 is out of reach: the search then has all placements to choose from.
 const ALL_SINGLES = 36;
 const FILL = 'the fill';
 
@@ -60,9 +69,9 @@ const FILL = 'the fill';
  * about the centre of an odd x odd part of itself.
  *
  * Otherwise the odd units are dealt singly, on cells about the centre, by the least first order found; small cores are dealt
- * wholly in single cells where more than one odd capacitor competes.
+ * wholly in single cells. The first order then changes with what is exchanged: it belongs among the terms of the search.
  *
- * @throws RangeError if the nets have more cells than the core, or there are more than 255 of them.
+ * @throws RangeError if the nets have more cells than the core, or there are more than 254 of them.
  */
 export function dealBlocks(request: DealRequest): Dealing {
   const { rows, columns, nets, random } = request;
@@ -115,6 +124,8 @@ const SINGLES = 1;
 const TRIPLES = 2;
 const CENTRE = 3;
 const BORDER = 4;
+/** Pairs of a class of columns are a group of their own where nets keep to their columns. */
+const FIRST_CLASS = 5;
 
 function add(blocks: Blocks, cells: number[], net: number, group: number): void {
   blocks.cells.push(cells);
@@ -122,12 +133,7 @@ function add(blocks: Blocks, cells: number[], net: number, group: number): void 
   blocks.group.push(group);
 }
 
-function dealExactly(
-  frame: Frame,
-  shares: Share[],
-  random: Random,
-  arrangement: 'scattered' | 'columns',
-): Blocks | undefined {
+function dealExactly(frame: Frame, shares: Share[], random: Random, arrangement: Arrangement): Blocks | undefined {
   const cells = frame.rows * frame.columns;
   const last = cells - 1;
   const blocks: Blocks = { cells: [], net: [], group: [] };
@@ -174,41 +180,66 @@ function dealPairs(
   taken: Uint8Array,
   blocks: Blocks,
   random: Random,
-  arrangement: 'scattered' | 'columns',
+  arrangement: Arrangement,
 ): void {
   const last = frame.rows * frame.columns - 1;
   const pairs: number[] = [];
   for (let cell = 0; 2 * cell < last; cell++) if (!taken[cell]) pairs.push(cell);
   shuffle(pairs, random);
-  const order = [...shares];
-  if (arrangement === 'columns') {
-    // Of a pair (cell, last - cell) the column further left stands for both.
-    const column = (cell: number): number => Math.min(cell % frame.columns, frame.columns - 1 - (cell % frame.columns));
-    pairs.sort((a, b) => column(a) - column(b) || a - b);
-    order.sort((a, b) => b.left - a.left || a.net - b.net);
+  if (arrangement === 'scattered') {
+    const nets = shares.flatMap((share) => Array<number>(share.left / 2).fill(share.net));
+    pairs.forEach((cell, i) => add(blocks, [cell, last - cell], nets[i], PAIRS));
+    return;
   }
-  let next = 0;
-  for (const share of order) {
-    for (; share.left > 0; share.left -= 2) {
-      const cell = pairs[next++];
-      if (cell === undefined) throw new Error('a frame has as many cells as its shares');
-      add(blocks, [cell, last - cell], share.net, PAIRS);
+  // A pair stands in a column and its mirror image: column c and columns - 1 - c are class c.
+  const classOf = (cell: number): number => {
+    const column = cell % frame.columns;
+    return Math.min(column, frame.columns - 1 - column);
+  };
+  const classes = Math.ceil(frame.columns / 2);
+  const inClass = Array.from({ length: classes }, (_, c) => pairs.filter((cell) => classOf(cell) === c));
+  const square = inClass.map((_, c) => offset2(frame, c)[0] * offset2(frame, c)[0]);
+  const present = new Uint8Array(shares.length * classes);
+  const moment = shares.map(() => 0);
+  const dealt = new Set<number>();
+  blocks.cells.forEach((cells, block) => {
+    const net = blocks.net[block];
+    for (const cell of cells) {
+      const column = cell % frame.columns;
+      moment[net] += square[classOf(cell)];
+      if (!dealt.has(net * frame.columns + column)) present[net * classes + classOf(cell)]++;
+      dealt.add(net * frame.columns + column);
     }
-  }
+  });
+  const quota = columnQuotas({
+    capacity: inClass.map(({ length }) => length),
+    width: inClass.map((_, c) => (2 * c === frame.columns - 1 ? 1 : 2)),
+    square,
+    pairs: shares.map((share) => share.left / 2),
+    weight: shares.map((share) => share.weight),
+    present,
+    moment,
+    price: arrangement.columns.momentPrice,
+    random,
+  });
+  inClass.forEach((cells, c) => {
+    const nets = shares.flatMap((share, i) => Array<number>(quota[i * classes + c]).fill(share.net));
+    cells.forEach((cell, i) => add(blocks, [cell, last - cell], nets[i], FIRST_CLASS + c));
+  });
 }
 
 /** Pairs for the even part; the odd units singly (three of a capacitor that has them, so that they can balance each other). */
-function dealNearly(frame: Frame, shares: Share[], random: Random, arrangement: 'scattered' | 'columns'): Blocks {
+function dealNearly(frame: Frame, shares: Share[], random: Random, arrangement: Arrangement): Blocks {
   const cells = frame.rows * frame.columns;
   const last = cells - 1;
   const blocks: Blocks = { cells: [], net: [], group: [] };
   const taken = new Uint8Array(cells);
   const odd = shares.filter((share) => share.left % 2 === 1);
-  // One odd capacitor stands half a pitch from the centre and what is odd beside it, the fill, opposite: nothing is to be gained. Where
-  // several compete, more cells may trade places.
+  // One odd capacitor stands half a pitch from the centre and what is odd beside it, the fill, opposite. Where several compete, more cells
+  // may trade places. In small cores a shift of the large capacitors can do better still.
   const several = odd.filter((share) => share.weight > 0).length > 1;
   const single = shares.map((share) => {
-    if (several && cells <= ALL_SINGLES) return share.left;
+    if (cells <= ALL_SINGLES) return share.left;
     return share.left % 2 === 0 ? 0 : several ? Math.min(share.left, 3) : 1;
   });
   const count = single.reduce((sum, n) => sum + n, 0);
@@ -304,7 +335,7 @@ function assemble(
       cells: Int32Array.from(all.flat()),
       netOfBlock: Uint8Array.from(net),
     },
-    group: Uint8Array.from(group),
+    group: Int32Array.from(group),
     unweighted: nets.flatMap(({ weight, units }, i) => (weight === 0 && units > 0 ? [{ net: i, units }] : [])),
   };
 }

@@ -7,9 +7,9 @@ export interface Work {
 }
 
 const EFFORTS: Readonly<Record<Effort, Work & { readonly perUnit: number }>> = {
-  quick: { starts: 1, workPerStart: 200_000, perUnit: 200 },
-  normal: { starts: 2, workPerStart: 1_000_000, perUnit: 1000 },
-  thorough: { starts: 8, workPerStart: 4_000_000, perUnit: 4000 },
+  quick: { starts: 1, workPerStart: 100_000, perUnit: 60 },
+  normal: { starts: 3, workPerStart: 600_000, perUnit: 150 },
+  thorough: { starts: 12, workPerStart: 2_000_000, perUnit: 500 },
 };
 
 /** How much a search does on one core: a count of work, not of seconds, so that every machine finds the same. */
