@@ -71,11 +71,13 @@ function planOf(deal: Deal, pitch_um: [number, number]): Plan {
   return { core: { rows, columns, pitch_um }, capacitors, cells };
 }
 
-/** Half the sum of the bits' own residuals: the errors of the codes with one bit on. */
-function halfSum(given: Plan, measure: typeof length): number {
-  const errors = endPointErrors(given);
-  return given.capacitors.reduce((sum, _, k) => sum + 0.5e-6 * measure(errors[2 ** k]), 0);
-}
+/** The largest over all codes, LSB per ppm/um or ppm/um^2. */
+const worst = (given: Plan, measure: typeof length): number =>
+  1e-6 * Math.max(...endPointErrors(given).map((error) => measure(error)));
+
+/** Twelve angles over half a turn see at least the cosine of half a step of the largest; a twentieth of a mean comes on top. */
+const SEEN = Math.cos(Math.PI / 24);
+const SURPLUS = 1.05;
 
 const exchange = ({ netOfBlock }: Deal, a: number, b: number): void => {
   [netOfBlock[a], netOfBlock[b]] = [netOfBlock[b], netOfBlock[a]];
@@ -90,7 +92,7 @@ describe.each([
       fc.property(cases, ({ deal, pitch, swaps }) => {
         const kernel = term(deal, pitch);
         expect(kernel.name).toBe(name);
-        const size = kernel.value() + halfSum(planOf(deal, pitch), measure) + 1e-6;
+        const size = kernel.value() + 1e-6;
         for (const [a, b] of swaps) {
           const before = kernel.value();
           const delta = kernel.delta(a, b);
@@ -98,9 +100,10 @@ describe.each([
           kernel.apply(a, b);
           exchange(deal, a, b);
           expect(Math.abs(kernel.value() - before - delta)).toBeLessThanOrEqual(1e-12 * (size + kernel.value()));
-          expect(Math.abs(kernel.value() - halfSum(planOf(deal, pitch), measure))).toBeLessThanOrEqual(
-            1e-12 * (size + kernel.value()),
-          );
+          const largest = worst(planOf(deal, pitch), measure);
+          const slack = 1e-12 * (size + kernel.value());
+          expect(kernel.value()).toBeGreaterThanOrEqual(SEEN * largest - slack);
+          expect(kernel.value()).toBeLessThanOrEqual(SURPLUS * largest + slack);
         }
         // What was followed is what would have been found afresh, bit for bit.
         expect(kernel.value()).toBe(term(deal, pitch).value());
@@ -125,15 +128,18 @@ describe.each([
 });
 
 describe('terms and figures', () => {
-  it('bound the exact figures from above; the first order is 0 with its figure', () => {
+  it('stay within what the probes see of the exact figures; the first order is 0 with its figure', () => {
     fc.assert(
       fc.property(cases, ({ deal, pitch }) => {
         const { first, second } = analyseGradient(planOf(deal, pitch));
-        const bound1 = firstOrderTerm(deal, pitch).value();
-        const bound2 = secondOrderTerm(deal, pitch).value();
-        expect(bound1).toBeGreaterThanOrEqual(first.inl_lsb_per_ppm_per_um * (1 - 1e-12));
-        expect(bound2).toBeGreaterThanOrEqual(second.inl_lsb_per_ppm_per_um2 * (1 - 1e-12));
-        expect(bound1 === 0).toBe(first.inl_lsb_per_ppm_per_um === 0);
+        for (const [term, exact] of [
+          [firstOrderTerm(deal, pitch), first.inl_lsb_per_ppm_per_um],
+          [secondOrderTerm(deal, pitch), second.inl_lsb_per_ppm_per_um2],
+        ] as const) {
+          expect(term.value()).toBeGreaterThanOrEqual(SEEN * exact * (1 - 1e-12));
+          expect(term.value()).toBeLessThanOrEqual(SURPLUS * exact * (1 + 1e-12));
+          expect(term.value() === 0).toBe(exact === 0);
+        }
       }),
       { numRuns: 200 },
     );
