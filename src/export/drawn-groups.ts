@@ -1,4 +1,6 @@
-import type { Point } from '../core/layout.js';
+import { streamKey } from '../core/flatten.js';
+import type { Label, Point } from '../core/layout.js';
+import { InputError } from '../core/problem.js';
 import type { Layer, Technology } from '../spec/technology.js';
 import type { Polygons } from '../spec/polygons.js';
 import { visitDrawn } from './drawn-shapes.js';
@@ -28,15 +30,19 @@ export interface Drawn {
   /** In the order of drawing: plates, then wires from the lowest metal up, each with the vias that end on it. */
   readonly groups: readonly DrawnGroup[];
   readonly plates: readonly NamedPlate[];
+  readonly labels: readonly Label[];
   /** The longest step on which every corner lies. */
   readonly step: number;
-  /** Bounding box of all outlines. */
+  /** Bounding box of all outlines and of the block's boundary. */
   readonly extent: { readonly x0: number; readonly y0: number; readonly x1: number; readonly y1: number };
 }
 
 const order: readonly GroupKind[] = ['cover', 'plate', 'topPlate', 'lower', 'middle', 'upper', 'via', 'topVia'];
 
-/** Sorts what conducts into groups to be painted alike. Layers that the technology does not know are left out. */
+/**
+ * Sorts what conducts into groups to be painted alike. Layers that the technology does not know are left out.
+ * @throws InputError if nothing is left, or a structure is missing.
+ */
 export function drawnGroups(p: Polygons): Drawn {
   const layers = paintedLayers(p.technology);
   const capacitors = new Set(p.capacitors.map((c) => c.name));
@@ -45,18 +51,7 @@ export function drawnGroups(p: Polygons): Drawn {
   let step = 0;
   let [x0, y0, x1, y1] = [Infinity, Infinity, -Infinity, -Infinity];
 
-  visitDrawn(p, ({ layer, datatype, part }, net, xy) => {
-    const painted = layers.get(`${layer}/${datatype}`);
-    if (painted === undefined) return;
-    const { height } = painted;
-    const kind =
-      painted.kind !== 'middle' ? painted.kind : part === 'plate' ? 'plate' : part === 'shield' ? 'cover' : 'middle';
-    const alike = kind === 'via' || kind === 'topVia' || kind === 'topPlate';
-    const key = `${kind} ${height} ${alike ? '' : net}`;
-    const group = groups.get(key);
-    if (group) group.outlines.push(xy);
-    else groups.set(key, { kind, net, height, outlines: [xy] });
-
+  const reach = (xy: readonly Point[]) => {
     for (const [x, y] of xy) {
       step = greatestCommonDivisor(greatestCommonDivisor(x, y), step);
       x0 = Math.min(x0, x);
@@ -64,9 +59,38 @@ export function drawnGroups(p: Polygons): Drawn {
       x1 = Math.max(x1, x);
       y1 = Math.max(y1, y);
     }
+  };
+  const { roles, layers: known } = p.technology;
+  const boundary = known.find((l) => l.name === roles.boundary);
+  for (const { polygons } of p.structures.filter((s) => s.name === p.topStructure))
+    for (const q of polygons) if (boundary && streamKey(q) === streamKey(boundary.stream)) reach(q.xy);
+
+  const labels = visitDrawn(p, (polygon, net, xy) => {
+    const painted = layers.get(streamKey(polygon));
+    if (painted === undefined) return;
+    const { height } = painted;
+    const kind =
+      painted.kind !== 'middle'
+        ? painted.kind
+        : polygon.part === 'plate'
+          ? 'plate'
+          : polygon.part === 'shield'
+            ? 'cover'
+            : 'middle';
+    const alike = kind === 'via' || kind === 'topVia' || kind === 'topPlate';
+    const key = `${kind} ${height} ${alike ? '' : net}`;
+    const group = groups.get(key);
+    if (group) group.outlines.push(xy);
+    else groups.set(key, { kind, net, height, outlines: [xy] });
+
+    reach(xy);
     if (kind === 'plate' && capacitors.has(net)) plates.push(namedPlate(net, xy));
   });
 
+  if (groups.size === 0)
+    throw new InputError([
+      { pointer: '/structures', found: 'no metal with a net', wanted: 'a drawing of plates and wires' },
+    ]);
   const rank = new Map(['', ...p.capacitors.map((c) => c.name), 'VSS', 'TOP'].map((net, i) => [net, i]));
   const sorted = [...groups.values()].sort(
     (a, b) =>
@@ -74,7 +98,7 @@ export function drawnGroups(p: Polygons): Drawn {
       a.height - b.height ||
       (rank.get(a.net) ?? -1) - (rank.get(b.net) ?? -1),
   );
-  return { groups: sorted, plates, step: step || 1, extent: { x0, y0, x1, y1 } };
+  return { groups: sorted, plates, labels, step: step || 1, extent: { x0, y0, x1, y1 } };
 }
 
 /** The widest level part of a plate's top edge, so that tabs do not count. */
@@ -109,5 +133,3 @@ function paintedLayers(technology: Technology): Map<string, PaintedLayer> {
     painted.set(streamKey(v.stream), { kind: v.lower === roles.topPlate ? 'topVia' : 'via', height: height(v.upper) });
   return painted;
 }
-
-const streamKey = ({ layer, datatype }: { layer: number; datatype: number }): string => `${layer}/${datatype}`;

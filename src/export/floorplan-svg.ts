@@ -1,4 +1,3 @@
-import { nm } from '../core/units.js';
 import type { Floorplan } from '../spec/floorplan.js';
 import { cellMarks } from './cell-marks.js';
 import { frame } from './frame.js';
@@ -73,7 +72,7 @@ interface Grid extends CellSize {
   readonly rings: number;
 }
 
-/** The pitch in lowest terms, times the least whole number that leaves lines and gaps whole. */
+/** The pitch, to a nanometre, in lowest terms, times the least whole number that leaves lines and gaps whole. */
 function cellSize(pitchX: number, pitchY: number, cells: number): CellSize {
   const [a, b] = wholePitch(pitchX, pitchY);
   const longer = Math.min(LARGEST_CELL, LONGER_SIDE / cells);
@@ -83,7 +82,7 @@ function cellSize(pitchX: number, pitchY: number, cells: number): CellSize {
 }
 
 function wholePitch(pitchX: number, pitchY: number): [number, number] {
-  const [x, y] = [nm(pitchX), nm(pitchY)];
+  const [x, y] = [pitchX, pitchY].map((pitch) => Math.max(1, Math.round(pitch * 1000))) as [number, number];
   const divisor = greatestCommonDivisor(x, y);
   return [x / divisor, y / divisor];
 }

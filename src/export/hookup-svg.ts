@@ -28,6 +28,7 @@ const EDGE = 44;
  *
  * @param p the drawing; shapes without a net (markers, outlines) are left out. @param f the floorplan that it was drawn from.
  * @returns an SVG file; same drawing, same bytes.
+ * @throws InputError if the list holds no metal with a net, or refers to a structure that it does not hold.
  */
 export async function drawHookupSvg(p: Polygons, f: Floorplan): Promise<string> {
   const drawn = drawnGroups(p);
@@ -68,7 +69,7 @@ export async function drawHookupSvg(p: Polygons, f: Floorplan): Promise<string> 
       lookOf(group, paints.get(group.net) ?? groundPaint, 1000 * scale),
     );
   drawNames(sheet, drawn, paints, letter, { px, scale, toSheet });
-  const pins = pinsOf(p, extent.y0 + extent.y1);
+  const pins = pinsOf(drawn.labels, p.technology, extent.y0 + extent.y1);
   for (const side of ['top', 'bottom'] as const)
     drawPins(
       sheet,

@@ -4,15 +4,17 @@ export const fontFamily = 'DejaVu Sans, Verdana, Helvetica, Arial, sans-serif';
 
 const LONGEST = 32;
 
-// Controls, surrogates without a partner, invisible spaces and everything that turns the direction of writing; then the noncharacters.
-const unwanted = /[\p{Cc}\p{Cf}\p{Cs}\p{Co}\p{Cn}\p{Zl}\p{Zp}]/u;
+// Controls, invisible spaces and joiners, everything that turns the direction of writing, halves of pairs, tags and noncharacters.
+// Written out, for the classes of an engine grow with its Unicode version.
+const unwanted =
+  /[\u0000-\u001f\u007f-\u009f\u00ad\u061c\u180e\u200b-\u200f\u2028-\u202e\u2060-\u206f\ud800-\udfff\ufdd0-\ufdef\ufeff\ufff0-\uffff\u{e0000}-\u{e0fff}]/u;
 
 /** The text on one line, without characters that cannot be seen, cut to a length that a legend can hold. */
 export function plainText(text: string): string {
   let plain = '';
   let length = 0;
   for (const character of text) {
-    const shown = /\s/u.test(character) ? ' ' : unwanted.test(character) ? '' : character;
+    const shown = /\s/.test(character) ? ' ' : unwanted.test(character) ? '' : character;
     if (shown === '') continue;
     if (++length > LONGEST) return `${plain.trim()}…`;
     plain += shown;

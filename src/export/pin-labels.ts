@@ -1,4 +1,6 @@
-import type { Polygons } from '../spec/polygons.js';
+import { streamKey } from '../core/flatten.js';
+import type { Label } from '../core/layout.js';
+import type { Technology } from '../spec/technology.js';
 import { faintInk, ink } from './palette.js';
 import { line } from './path-data.js';
 import { plainText, textWidth } from './picture-text.js';
@@ -12,14 +14,11 @@ export interface Pin {
   readonly side: 'top' | 'bottom';
 }
 
-/** Pin labels of the top structure, each at the nearer of the upper and the lower edge. */
-export function pinsOf(p: Polygons, height: number): Pin[] {
-  const pinLayers = new Set(
-    p.technology.layers.filter((l) => l.kind === 'pin').map((l) => `${l.stream.layer}/${l.stream.datatype}`),
-  );
-  const labels = p.structures.find((s) => s.name === p.topStructure)?.labels ?? [];
+/** Those of the labels that lie on pin layers, each at the nearer of the upper and the lower edge of a block that starts at 0. */
+export function pinsOf(labels: readonly Label[], technology: Technology, height: number): Pin[] {
+  const pinLayers = new Set(technology.layers.filter((l) => l.kind === 'pin').map((l) => streamKey(l.stream)));
   return labels
-    .filter((l) => pinLayers.has(`${l.layer}/${l.texttype}`))
+    .filter((l) => pinLayers.has(streamKey({ layer: l.layer, datatype: l.texttype })))
     .map(({ text, xy: [x, y] }) => ({
       text: plainText(text),
       x,
