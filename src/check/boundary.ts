@@ -1,4 +1,5 @@
 import type { Boxes } from '../core/boxes.js';
+import { orderBy } from '../core/order.js';
 
 /** Boundary segments of one side of a region, sorted by `at`, then `from`: x of left and right sides, y of bottoms and tops. */
 export interface Side {
@@ -27,9 +28,9 @@ export interface Boundary {
   readonly reflex: Quadrants<Corners>;
 }
 
-function sortedSide(at: readonly number[], from: readonly number[], to: readonly number[]): Side {
-  const order = new Uint32Array(at.length).map((_, i) => i);
-  order.sort((a, b) => at[a] - at[b] || from[a] - from[b]);
+/** Segments in order, those that continue each other made one. */
+function sortedSide(at: Int32Array, from: Int32Array, to: Int32Array): Side {
+  const order = orderBy(at, from);
   const side = { at: new Int32Array(at.length), from: new Int32Array(at.length), to: new Int32Array(at.length) };
   let count = 0;
   for (const i of order) {
@@ -65,7 +66,7 @@ function remaining(a: Side, b: Side): Side {
       to.push(a.to[i]);
     }
   }
-  return sortedSide(at, from, to);
+  return sortedSide(Int32Array.from(at), Int32Array.from(from), Int32Array.from(to));
 }
 
 /** What two sides have in common, line by line. */
@@ -89,15 +90,14 @@ export function common(a: Side, b: Side): Side {
     if (a.to[i] < b.to[j]) i++;
     else j++;
   }
-  return sortedSide(at, from, to);
+  return sortedSide(Int32Array.from(at), Int32Array.from(from), Int32Array.from(to));
 }
 
 const size = 0x400_0000; // coordinates span at most 2^26, so a point fits one exact number
 
 /** The boundary of a region given as slabs (`unitedSlabs`: maximal along x, so that their left and right sides are boundary). */
 export function boundaryOf(slabs: Boxes): Boundary {
-  const list = (values: Int32Array) => Array.from(values);
-  const [x0, y0, x1, y1] = [list(slabs.x0), list(slabs.y0), list(slabs.x1), list(slabs.y1)];
+  const { x0, y0, x1, y1 } = slabs;
   const left = sortedSide(x0, y0, y1);
   const right = sortedSide(x1, y0, y1);
   const lower = sortedSide(y0, x0, x1);

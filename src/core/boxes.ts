@@ -10,17 +10,26 @@ export interface Boxes {
 
 /** Collects boxes whose number is not known beforehand. */
 export class BoxList {
-  readonly #values: number[] = [];
+  #values = new Int32Array(64);
+  #count = 0;
 
   push(x0: number, y0: number, x1: number, y1: number): void {
-    this.#values.push(x0, y0, x1, y1);
+    const at = 4 * this.#count++;
+    if (at === this.#values.length) {
+      const longer = new Int32Array(2 * at);
+      longer.set(this.#values);
+      this.#values = longer;
+    }
+    this.#values[at] = x0;
+    this.#values[at + 1] = y0;
+    this.#values[at + 2] = x1;
+    this.#values[at + 3] = y1;
   }
 
   finish(): Boxes {
-    const count = this.#values.length / 4;
     const column = (offset: number) => {
-      const column = new Int32Array(count);
-      for (let i = 0; i < count; i++) column[i] = this.#values[4 * i + offset];
+      const column = new Int32Array(this.#count);
+      for (let i = 0; i < column.length; i++) column[i] = this.#values[4 * i + offset];
       return column;
     };
     return { x0: column(0), y0: column(1), x1: column(2), y1: column(3) };

@@ -174,6 +174,7 @@ export function flatten(structures: readonly Structure[], topStructure: string):
   const refuse = (pointer: string, found: string, wanted: string): never => {
     throw new InputError([{ pointer, found, wanted }]);
   };
+  const tooMany = (pointer: string) => refuse(pointer, `more than ${mostShapes} shapes`, 'a smaller drawing');
   const layerOf = (p: Polygon): Gathered => {
     const key = streamKey(p);
     let layer = gathered.get(key);
@@ -190,7 +191,7 @@ export function flatten(structures: readonly Structure[], topStructure: string):
     open.add(name);
     const { structure, number } = entry;
     visited += structure.polygons.length + structure.labels.length + 1;
-    if (visited > mostShapes) refuse(pointer, `more than ${mostShapes} shapes`, 'a smaller drawing');
+    if (visited > mostShapes) tooMany(pointer);
     const rectangles = decomposed.get(structure)!;
     for (let i = 0; i < structure.polygons.length; i++) {
       const layer = layerOf(structure.polygons[i]);
@@ -206,7 +207,9 @@ export function flatten(structures: readonly Structure[], topStructure: string):
       places.push(place);
     }
     for (const label of structure.labels) labels.push({ ...label, xy: placed(place, label.xy[0], label.xy[1]) });
-    for (const [index, reference] of structure.references.entries())
+    for (const [index, reference] of structure.references.entries()) {
+      // Refused before the first of them is placed: an array can ask for more instances than there is time to count.
+      if (visited + reference.columns * reference.rows > mostShapes) tooMany(pointer);
       for (let row = 0; row < reference.rows; row++)
         for (let column = 0; column < reference.columns; column++) {
           const inner = within(place, instancePlace(reference, column, row));
@@ -227,6 +230,7 @@ export function flatten(structures: readonly Structure[], topStructure: string):
           }
           add(reference.structure, inner, innerCell, `/structures/${number}/references/${index}/structure`);
         }
+    }
     open.delete(name);
   };
   add(topStructure, { xx: 1, xy: 0, yx: 0, yy: 1, dx: 0, dy: 0 }, -1, '/topStructure');

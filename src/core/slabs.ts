@@ -1,5 +1,6 @@
 import type { Boxes } from './boxes.js';
 import { BoxList } from './boxes.js';
+import { orderBy } from './order.js';
 
 /**
  * Horizontal edges in flat arrays: edge `i` runs from x0[i] to x1[i] (x0 < x1) at height y[i] and changes the winding number of all
@@ -81,12 +82,6 @@ class BitTree {
   }
 }
 
-/** Order of the edges from the lowest up, in each height from the left. */
-function upward(edges: WindingEdges): Uint32Array {
-  const order = new Uint32Array(edges.y.length).map((_, i) => i);
-  return order.sort((a, b) => edges.y[a] - edges.y[b] || edges.x0[a] - edges.x0[b] || a - b);
-}
-
 function distinctSorted(a: Int32Array, b: Int32Array): Int32Array {
   const all = new Int32Array(a.length + b.length);
   all.set(a);
@@ -118,7 +113,7 @@ function position(sorted: Int32Array, value: number): number {
 export function slabsOf(edges: WindingEdges): Boxes {
   const slabs = new BoxList();
   const xs = distinctSorted(edges.x0, edges.x1);
-  const order = upward(edges);
+  const order = orderBy(edges.y, edges.x0); // from the lowest up, in each height from the left
   // Breakpoints of the winding number along x; winding[i] holds from breakpoint i to the next one.
   const breaks = new BitTree(xs.length);
   const winding = new Int32Array(xs.length);
