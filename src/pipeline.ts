@@ -1,3 +1,4 @@
+import { bentTerm } from './array/bent-term.js';
 import { candidateCores, type CoreGrid } from './array/core-grid.js';
 import { checkFloorplan } from './check/floorplan.js';
 import { checkPolygons } from './check/polygons.js';
@@ -87,14 +88,24 @@ interface Setting {
 }
 
 /**
- * What the search weighs: the second order against what emphasis `gradient` reaches on the same core and pitch, the column nets against
- * the fewest that any placement could have.
+ * What the search weighs: the second order against what emphasis `gradient` reaches on the same core and pitch, hardly above `limit` times
+ * that; the column nets against the fewest that any placement could have.
  */
-const weights: Readonly<Record<Exclude<Emphasis, 'dispersed'>, { second: number; nets: number; heat: number }>> = {
-  gradient: { second: 1, nets: 1e-5, heat: 1 },
-  balanced: { second: 1, nets: 1.5, heat: 1 },
-  wiring: { second: 1, nets: 6, heat: 0.3 },
+interface Weights {
+  readonly second: number;
+  readonly limit: number;
+  readonly nets: number;
+  readonly heat: number;
+}
+
+const weights: Readonly<Record<Exclude<Emphasis, 'dispersed'>, Weights>> = {
+  gradient: { second: 1, limit: Infinity, nets: 0, heat: 1 },
+  balanced: { second: 0.5, limit: 1.25, nets: 3, heat: 1 },
+  wiring: { second: 0.2, limit: 1.35, nets: 6, heat: 0.5 },
 };
+const BEYOND_LIMIT = 30;
+/** One um of first order against one um^2 of second. */
+const FIRST_BEFORE_ALL = 1e3;
 
 /** Full searches at a pitch before the tracks that the wires turn out to need are taken as they are. */
 const mostRounds = 2;
@@ -204,7 +215,7 @@ class Run implements PlaceRun {
  */
 function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
   const { spec, rules, inCore, wired } = setting;
-  const { second, nets, heat } = weights[spec.emphasis as keyof typeof weights];
+  const emphasis = weights[spec.emphasis as keyof typeof weights];
   const bits = setting.capacitors.filter((capacitor) => capacitor.role === 'bit');
   const total = inCore.reduce((sum, capacitor) => sum + capacitor.units, 0);
   const dealt = dealtNets(inCore);
@@ -215,7 +226,8 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
   const stage = (
     grid: CoreGrid,
     tracks: number,
-    cost: { second: number; nets: number; heat: number },
+    cost: Weights,
+    reference: number,
     effort: { starts: number; workPerStart: number },
     share: number,
   ): Stage => {
@@ -225,9 +237,12 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
       deals: (start) => dealBlocks({ ...grid, nets: dealt, random: new Random(spec.seed, 1000 + start) }),
       terms: (deal) => [
         // Where the first order is 0 by the deal this term stays 0; elsewhere it comes before all others.
-        { term: firstOrderTerm(deal, pitch), weight: 1e3 * cost.second },
-        { term: secondOrderTerm(deal, pitch), weight: cost.second },
-        { term: columnNetsTerm(deal), weight: cost.nets },
+        { term: firstOrderTerm(deal, pitch), weight: FIRST_BEFORE_ALL / reference },
+        {
+          term: bentTerm(secondOrderTerm(deal, pitch), cost.limit * reference, BEYOND_LIMIT),
+          weight: cost.second / reference,
+        },
+        { term: columnNetsTerm(deal), weight: cost.nets / fewestNets(grid) },
       ],
       ...effort,
       seed: spec.seed,
@@ -236,6 +251,8 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
     });
     return { grid, pitch, tracks, search, share };
   };
+
+  const fewestNets = ({ rows }: CoreGrid) => bits.reduce((sum, bit) => sum + Math.ceil(bit.units / rows), 0);
 
   let tracks = spec.tracksPerChannel ?? Math.min(6, 1 + Math.floor(inCore.length / 4));
   const grids = spec.core
@@ -247,29 +264,27 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
       );
   const quick = workFor('quick', total);
   let grid = grids[0];
-  let reference = 0;
+  let reference = 1;
   let least = Infinity;
   for (const candidate of grids) {
-    const probe = stage(candidate, tracks, { second: 1, nets: 0, heat: 1 }, quick, 0.15 / grids.length);
+    const probe = stage(candidate, tracks, weights.gradient, 1, quick, 0.15 / grids.length);
     yield probe;
-    const { dealing, cost } = probe.search.best();
+    const { dealing } = probe.search.best();
     const found = secondOrderInl(dealing.deal, probe.pitch).inl_lsb_per_ppm_per_um2;
     if (found >= least) continue;
     least = found;
     grid = candidate;
-    reference = dealing.exactZero ? cost : found;
+    reference = found > 0 ? found : 1;
   }
-  const fewestNets = bits.reduce((sum, bit) => sum + Math.ceil(bit.units / grid.rows), 0);
-  const cost = { second: reference > 0 ? second / reference : 1, nets: nets / fewestNets, heat };
   const needed = (of: Stage) =>
     wired ? planHookup(placedOf(setting, of), spec.tracksPerChannel).channels[0].length : of.tracks;
   if (wired && spec.tracksPerChannel === undefined) {
-    const scout = stage(grid, tracks, cost, quick, 0.1);
+    const scout = stage(grid, tracks, emphasis, reference, quick, 0.1);
     yield scout;
     tracks = needed(scout);
   }
   for (let round = 1; ; round++) {
-    const full = stage(grid, tracks, cost, workFor(spec.effort, total), 0.75 / mostRounds);
+    const full = stage(grid, tracks, emphasis, reference, workFor(spec.effort, total), 0.75 / mostRounds);
     yield full;
     const actual = needed(full);
     if (actual === tracks || round === mostRounds) return full;
