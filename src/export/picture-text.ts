@@ -15,7 +15,7 @@ export function plainText(text: string): string {
   let length = 0;
   for (const character of text) {
     const shown = /\s/.test(character) ? ' ' : unwanted.test(character) ? '' : character;
-    if (shown === '') continue;
+    if (shown === '' || (shown === ' ' && plain.endsWith(' '))) continue;
     if (++length > LONGEST) return `${plain.trim()}…`;
     plain += shown;
   }
