@@ -31,7 +31,7 @@ const CHOICES = 4096;
  *     order     | pairs of B1 | pairs of B2 . . . . | pairs of fill | triples of B3 | ...
  *     segment     0             1                     2               3
  *
- * A trial takes a segment with a chance that grows as the square root of its length (small capacitors have few blocks, and where those
+ * A trial takes a segment with a chance that grows as the fourth root of its length (small capacitors have few blocks, and where those
  * are matters most), a block of it, and a block of another segment of the same group. The way back is as likely as the way there,
  * since lengths do not change.
  */
@@ -65,7 +65,7 @@ export class AnnealedStart {
   #j = 0;
   #sinceGain = 0;
 
-  constructor(dealing: Dealing, terms: readonly WeightedTerm[], work: number, random: Random, heat: number) {
+  constructor(dealing: Dealing, terms: readonly WeightedTerm[], work: number, random: Random) {
     this.dealing = dealing;
     this.#terms = terms.map(({ term }) => term);
     this.#weights = Float64Array.from(terms, ({ weight }) => weight);
@@ -90,7 +90,7 @@ export class AnnealedStart {
     this.#cost = this.#bestCost = this.#recount();
     this.#best = nets.slice();
     this.#done = this.#cost === 0 || segments.length === 0;
-    this.#temperature = this.#done ? 0 : heat * this.#meanChange();
+    this.#temperature = this.#done ? 0 : this.#meanChange();
   }
 
   get done(): boolean {
@@ -266,10 +266,10 @@ function segmentsOf(order: Int32Array, group: Int32Array, nets: Uint8Array): Seg
   return segments;
 }
 
-/** A table of segments, each as often as the square root of its length asks, at least once. */
+/** A table of segments, each as often as the fourth root of its length asks, at least once. */
 function choices(segments: readonly Segment[]): Uint16Array {
   const table = new Uint16Array(CHOICES);
-  const share = segments.map((s) => Math.sqrt(s.end - s.first));
+  const share = segments.map((s) => Math.sqrt(Math.sqrt(s.end - s.first)));
   const total = share.reduce((sum, s) => sum + s, 0);
   let upTo = 0;
   share.forEach((s, i) => {

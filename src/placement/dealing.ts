@@ -2,6 +2,7 @@ import type { Deal } from '../array/cost-term.js';
 import { oddDeal } from '../array/core-grid.js';
 import { mirroredTriples } from '../array/mirrored-triples.js';
 import type { Random } from '../core/random.js';
+import { offset2 } from '../linearity/moments.js';
 import { columnQuotas } from './column-quotas.js';
 import { leastSinglesOrder } from './singles.js';
 
@@ -198,7 +199,7 @@ function dealPairs(
   };
   const classes = Math.ceil(frame.columns / 2);
   const inClass = Array.from({ length: classes }, (_, c) => pairs.filter((cell) => classOf(cell) === c));
-  const square = inClass.map((_, c) => offset2(frame, c)[0] * offset2(frame, c)[0]);
+  const square = inClass.map((_, c) => offset2(c, frame.columns) * offset2(c, frame.columns));
   const present = new Uint8Array(shares.length * classes);
   const moment = shares.map(() => 0);
   const dealt = new Set<number>();
@@ -253,7 +254,7 @@ function dealNearly(frame: Frame, shares: Share[], random: Random, arrangement: 
   if (central.length !== count) throw new Error('singles are as many as their cells');
   const nets = single.flatMap((n, i) => Array.from({ length: n }, () => i));
   const chosen = leastSinglesOrder(
-    central.map((cell) => offset2(frame, cell)),
+    central.map((cell) => offsets2(frame, cell)),
     nets,
     shares.map((share) => share.weight),
     random,
@@ -269,15 +270,14 @@ function dealNearly(frame: Frame, shares: Share[], random: Random, arrangement: 
   return blocks;
 }
 
-/** Offset from the frame's centre in half-pitches, whole numbers; x to the right, y upwards. */
-function offset2(frame: Frame, cell: number): readonly [x: number, y: number] {
+/** A cell's offset from the frame's centre in half-pitches; x to the right, y upwards. */
+function offsets2(frame: Frame, cell: number): readonly [x: number, y: number] {
   const row = Math.floor(cell / frame.columns);
-  const column = cell - row * frame.columns;
-  return [2 * column - (frame.columns - 1), frame.rows - 1 - 2 * row];
+  return [offset2(cell - row * frame.columns, frame.columns), -offset2(row, frame.rows)];
 }
 
 function distance4(frame: Frame, cell: number): number {
-  const [x, y] = offset2(frame, cell);
+  const [x, y] = offsets2(frame, cell);
   return x * x + y * y;
 }
 

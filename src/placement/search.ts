@@ -14,8 +14,6 @@ export interface SearchOptions {
   /** Trial exchanges of each start. */
   readonly workPerStart: number;
   readonly seed: number;
-  /** The first temperature as a share of the mean change of an exchange in the deal: 1 (the default) forgets the deal, 0.01 keeps its outlines. */
-  readonly heat?: number;
   /** Asked after each start about the best so far; true (no better one exists) leaves out the starts of higher numbers. */
   readonly stopWhen?: (best: Best) => boolean;
 }
@@ -23,6 +21,7 @@ export interface SearchOptions {
 export interface Best {
   readonly start: number;
   readonly cost: number;
+  /** The start's deal, with the nets as they are in the best of it. */
   readonly dealing: Dealing;
   /** Net of every cell, row by row from the top. */
   readonly netOfCell: Uint8Array;
@@ -88,13 +87,16 @@ export class Search {
   /** The best so far; there is one from the beginning. */
   best(): Best {
     const { start, cost, dealing, netOfBlock } = this.#least();
-    return { start, cost, dealing, netOfCell: netsOfCells(dealing, netOfBlock) };
+    // The start's own deal moves on; this one stays.
+    const still = { ...dealing, deal: { ...dealing.deal, netOfBlock } };
+    return { start, cost, dealing: still, netOfCell: netsOfCells(dealing, netOfBlock) };
   }
 
   #begin(): AnnealedStart {
-    const { deals, terms, workPerStart, seed, heat } = this.#options;
+    const { deals, terms, workPerStart, seed } = this.#options;
     const dealing = deals(this.#number);
-    return new AnnealedStart(dealing, terms(dealing.deal), workPerStart, new Random(seed, this.#number), heat ?? 1);
+    // Streams from -1 down: those from 0 up are left to whoever deals the numbered starts from the same seed.
+    return new AnnealedStart(dealing, terms(dealing.deal), workPerStart, new Random(seed, -1 - this.#number));
   }
 
   /** Of equal costs the one of the lower number, so what is kept of earlier starts goes first. */

@@ -9,7 +9,7 @@ import { dealBlocks } from '../../src/placement/dealing.js';
 import { workFor } from '../../src/placement/effort.js';
 import type { Best, SearchOptions } from '../../src/placement/search.js';
 import { Search } from '../../src/placement/search.js';
-import { binaryNets, columnNets, firstOrder, leastFirstOrder, recounted, weightedNets } from './brute.js';
+import { binaryNets, columnNets, firstOrder, leastFirstOrder, netsOfBlocks, recounted, weightedNets } from './brute.js';
 
 const SQUARE = [1, 1] as const;
 
@@ -146,7 +146,10 @@ describe('Search', () => {
     );
     expect(kept.length).toBe(3);
     for (const { deal, term } of kept) expect(term.value()).toBeCloseTo(secondOrderTerm(deal, SQUARE).value(), 12);
-    expect(search.best().cost).toBeLessThanOrEqual(Math.min(...kept.map(({ term }) => term.value())));
+    const best = search.best();
+    expect(best.cost).toBeLessThanOrEqual(Math.min(...kept.map(({ term }) => term.value())));
+    expect(best.cost).toBe(secondOrderTerm(best.dealing.deal, SQUARE).value());
+    expect([...best.netOfCell]).toEqual(netsOfBlocks(best.dealing.deal));
   });
 
   it('swapping twice is nothing', () => {
