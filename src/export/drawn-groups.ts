@@ -19,7 +19,7 @@ export interface DrawnGroup {
 }
 
 /** A plate that belongs to a capacitor: where its name may stand. */
-export interface NamedPlate {
+interface NamedPlate {
   readonly net: string;
   readonly left: number;
   readonly right: number;

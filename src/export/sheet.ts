@@ -8,7 +8,7 @@ export interface Look {
   readonly opacity?: number;
 }
 
-export interface Writing {
+interface Writing {
   readonly size: number;
   readonly colour: string;
   readonly bold?: boolean;

@@ -124,7 +124,7 @@ describe('hookup', () => {
     for (const pin of ['B0', 'TERM', 'TOP', 'VSS']) expect(found).toContain(pin);
     expect(found).toContain('4 bits · 5 rows × 3 columns · block 36.12 × 44.2 µm');
     const subpaths = [...root.querySelectorAll('path')].map((path) => path.getAttribute('d')!.match(/M/g)!.length);
-    // 35 top plates in one path; the 22 + 2 + 1 + 19 + 6 ... paths of the rest in few.
+    // All 35 top plates in one path, and the 387 shapes of the drawing with the legend in few.
     expect(subpaths).toContain(35);
     expect(subpaths.length).toBeLessThan(80);
   });
