@@ -193,7 +193,7 @@ describe('Search', () => {
       const { ratio, first } = secondOverBound(rows, columns, nets, best);
       expect(first).toBe(0);
       expect(ratio).toBeGreaterThanOrEqual(1 - 1e-12);
-      expect(ratio).toBeLessThanOrEqual(1.5);
+      expect(ratio).toBeLessThanOrEqual(1.25);
     }
   });
 
