@@ -10,7 +10,7 @@ import {
 } from '../index.js';
 import type { Finding } from '../index.js';
 import { UsageError, exit, shown } from './fault.js';
-import { formatOf, readText } from './input.js';
+import { formatOf, inFile, readText } from './input.js';
 import type { Io } from './io.js';
 import { findingLines, lines } from './summary.js';
 import { floorplanToDraw, valueOf } from './technology.js';
@@ -28,7 +28,7 @@ interface Verdict {
 /** The floorplan's drawing, made for the purpose. */
 async function checkDrawn(io: Io, file: string, text: string): Promise<Verdict> {
   const { floorplan, technology, notes } = await floorplanToDraw(io, file, text);
-  const drawn = drawFloorplan(floorplan, technology, { keepHookup: true });
+  const drawn = inFile(file, () => drawFloorplan(floorplan, technology, { keepHookup: true }));
   return { findings: drawn.findings, notes: [...notes, ...drawn.notes] };
 }
 
@@ -40,7 +40,7 @@ function checkBoth(file: string, text: string, polygonsFile: string, polygonsTex
   }
   const findings = [
     ...checkFloorplan(floorplan.value),
-    ...checkPolygons(polygons.value),
+    ...inFile(polygonsFile, () => checkPolygons(polygons.value)),
     ...comparePolygons(polygons.value, floorplan.value),
   ];
   return { findings, notes: [] };
@@ -50,9 +50,9 @@ async function verdict(io: Io, file: string, polygonsFile: string | undefined): 
   const text = await readText(io, file);
   const isPolygons = formatOf(text) === 'polygons';
   if (polygonsFile === undefined) {
-    return isPolygons
-      ? { findings: checkPolygons(valueOf(parsePolygons(text, file))), notes: [] }
-      : checkDrawn(io, file, text);
+    if (!isPolygons) return checkDrawn(io, file, text);
+    const polygons = valueOf(parsePolygons(text, file));
+    return { findings: inFile(file, () => checkPolygons(polygons)), notes: [] };
   }
   if (isPolygons) throw new UsageError(['check: found a polygons file first; wanted the floorplan, then its polygons']);
   return checkBoth(file, text, polygonsFile, await readText(io, polygonsFile));

@@ -3,7 +3,7 @@ import type { Technology } from '../index.js';
 import { UsageError, exit, shown } from './fault.js';
 import { drawingFiles, formats } from './files.js';
 import type { Format } from './files.js';
-import { readText } from './input.js';
+import { inFile, readText } from './input.js';
 import type { Io } from './io.js';
 import { findingLines, lines } from './summary.js';
 import { floorplanToDraw, valueOf } from './technology.js';
@@ -45,7 +45,7 @@ export async function exportFiles(io: Io, file: string, flags: ExportFlags): Pro
   const chosen = chosenFormats(flags.to);
   const own = await floorplanToDraw(io, file, await readText(io, file));
   const technology = flags.layers === undefined ? own.technology : await withLayers(io, own.technology, flags.layers);
-  const drawn = drawFloorplan(own.floorplan, technology, { keepHookup: true });
+  const drawn = inFile(file, () => drawFloorplan(own.floorplan, technology, { keepHookup: true }));
   const files = await drawingFiles(drawn, chosen, flags.out ?? drawn.metrics.name, flags.date);
   const output = lines(files.map(({ path }) => shown(path)));
   io.writeFiles(files);

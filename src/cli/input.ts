@@ -48,6 +48,16 @@ export async function readText(io: Io, path: string): Promise<string> {
   return decoder.decode(bytes);
 }
 
+/** Runs what knows no files on the content of one: problems that it reports are the file's. */
+export function inFile<T>(file: string, action: () => T): T {
+  try {
+    return action();
+  } catch (error) {
+    if (!(error instanceof InputError) || file === '') throw error;
+    throw new InputError(error.problems.map((problem) => ({ file, ...problem })));
+  }
+}
+
 /** What a file says it is: the part of its top-level `format` after "steelyard/". Text that does not parse is judged by its first format. */
 export function formatOf(text: string): string | undefined {
   let format: unknown;

@@ -9,9 +9,9 @@ import {
   startPlacement,
 } from '../index.js';
 import type { ArraySpec, Drawn, PlaceRequest, PlaceRun, Problem } from '../index.js';
-import { Interrupted, UsageError, exit } from './fault.js';
+import { Interrupted, UsageError, exit, shown } from './fault.js';
 import { allFiles } from './files.js';
-import { formatOf, readText } from './input.js';
+import { formatOf, inFile, readText } from './input.js';
 import type { Io } from './io.js';
 import { findingLines, lines, summaryOf } from './summary.js';
 import { floorplanToDraw, standardTechnology, technologyNamed, valueOf } from './technology.js';
@@ -46,13 +46,17 @@ function coreOf(text: string, problems: Problem[]): unknown {
   return undefined;
 }
 
-function pitchOf({ pitch: text }: PlaceFlags): [number, number] | undefined {
+/** The pitch that the command line gives, judged by the rules of an array file. */
+function pitchOf({ pitch: text }: PlaceFlags): readonly [number, number] | undefined {
   if (text === undefined) return undefined;
-  const numbers = text.split(',').map((part) => (/^\d+(\.\d+)?$/.test(part) ? Number(part) : NaN));
-  const [x = NaN, y = NaN] = numbers;
-  if (numbers.length === 2 && x > 0 && y > 0) return [x, y];
+  const pitch_um = text.split(',').map((part) => (/^\d{1,15}(\.\d{1,3})?$/.test(part) ? Number(part) : part));
+  const whole = { format: 'steelyard/array', version: 1, bits: 8, core: { rows: 1, columns: 1, pitch_um } };
+  const parsed = parseArray(JSON.stringify(whole), '');
+  const pitch = parsed.ok ? parsed.value.core?.pitch_um : undefined;
+  if (pitch !== undefined) return pitch;
+  const wanted = parsed.ok ? '' : (parsed.issues[0]?.wanted ?? '');
   throw new InputError([
-    { pointer: '--pitch', found: JSON.stringify(text), wanted: 'X,Y in micrometres, such as 7.2,5.7' },
+    { pointer: '--pitch', found: JSON.stringify(text), wanted: `X,Y in micrometres, such as 7.2,5.7: ${wanted}` },
   ]);
 }
 
@@ -83,20 +87,22 @@ function overlaid(file: ArraySpec, given: Partial<ArraySpec>, technology: string
   return spec;
 }
 
-async function search(io: Io, run: PlaceRun): Promise<boolean> {
-  let interrupted = false;
-  const release = io.onInterrupt(() => {
-    interrupted = true;
-  });
+/** Whether Ctrl-C was pressed. Heard from the first moment to the last, so that it never leaves half a result. */
+interface Ear {
+  readonly heard: boolean;
+}
+
+/** Runs the search to its end or to Ctrl-C. Returns whether it was cut short. */
+async function search(io: Io, run: PlaceRun, ear: Ear): Promise<boolean> {
   const bar = io.stderrIsTerminal ? await io.progressBar('placing') : undefined;
   try {
     // How much is done between two looks at the signals follows the clock; what comes out does not depend on it.
     let work = 20_000;
     for (;;) {
       await io.breath();
-      if (interrupted) break;
+      if (ear.heard) break;
       const start = io.now();
-      if (!run.step(work)) break;
+      if (!run.step(work)) return false;
       const spent = io.now() - start;
       if (spent < 20 && work < 1e8) work *= 2;
       else if (spent > 50 && work > 1) work = Math.ceil(work / 2);
@@ -104,10 +110,9 @@ async function search(io: Io, run: PlaceRun): Promise<boolean> {
     }
   } finally {
     bar?.stop();
-    release();
   }
-  if (interrupted && !run.started) throw new Interrupted();
-  return interrupted;
+  if (!run.started) throw new Interrupted();
+  return true;
 }
 
 async function arrayRequest(io: Io, file: string, text: string | undefined, flags: PlaceFlags): Promise<PlaceRequest> {
@@ -133,18 +138,11 @@ async function arrayRequest(io: Io, file: string, text: string | undefined, flag
   return { array, floorplanOnly: pitch_um === undefined ? {} : { pitch_um } };
 }
 
-async function placed(io: Io, file: string, text: string | undefined, flags: PlaceFlags) {
+async function placed(io: Io, file: string, text: string | undefined, flags: PlaceFlags, ear: Ear) {
   const request = await arrayRequest(io, file, text, flags);
-  let run: PlaceRun;
-  try {
-    run = startPlacement(request);
-  } catch (error) {
-    // The pipeline knows no files.
-    if (error instanceof InputError) throw new InputError(error.problems.map((problem) => ({ file, ...problem })));
-    throw error;
-  }
-  const interrupted = await search(io, run);
-  return { drawn: run.finish(interrupted), code: interrupted ? exit.interrupted : exit.done };
+  const run = inFile(file, () => startPlacement(request));
+  const interrupted = await search(io, run, ear);
+  return { drawn: run.finish(interrupted), interrupted };
 }
 
 /** A floorplan's cells with new wires. */
@@ -157,33 +155,46 @@ async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): P
   const { floorplan, technology, notes } = await floorplanToDraw(io, file, text, flags.technology);
   const pitch_um = pitchOf(flags) ?? floorplan.core.pitch_um;
   const wired = flags.floorplanOnly !== true;
-  const drawn = drawFloorplan({ ...floorplan, core: { ...floorplan.core, pitch_um } }, technology, { wired });
+  const onPitch = { ...floorplan, core: { ...floorplan.core, pitch_um } };
+  const drawn = inFile(file, () => drawFloorplan(onPitch, technology, { wired }));
   return { ...drawn, notes: [...notes, ...drawn.notes] };
+}
+
+async function deliver(io: Io, drawn: Drawn, flags: PlaceFlags): Promise<void> {
+  const files = await allFiles(drawn, flags.out ?? drawn.metrics.name);
+  const paths = files.map(({ path }) => path);
+  const remarks = [...drawn.warnings, ...findingLines(drawn.findings)].map(shown);
+  const output = flags.json === true ? formatMetrics(drawn.metrics) : lines(summaryOf(drawn, paths, io));
+  io.writeFiles(files);
+  await io.stdout(output);
+  if (flags.json === true && remarks.length > 0) await io.stderr(lines(remarks));
 }
 
 /** `place`: an array file, a floorplan file or --bits becomes a set of files and a summary. */
 export async function place(io: Io, file: string | undefined, flags: PlaceFlags): Promise<number> {
   if (flags.pitch !== undefined && flags.floorplanOnly !== true) {
-    throw new UsageError([
-      'place --pitch: found without --floorplan-only; wanted both: wires decide the pitch of what is drawn',
-    ]);
+    const wanted = 'both: wires decide the pitch of what is drawn';
+    throw new UsageError([`place --pitch: found without --floorplan-only; wanted ${wanted}`]);
   }
   const text = file === undefined ? undefined : await readText(io, file);
-  const { drawn, code } =
-    file !== undefined && text !== undefined && formatOf(text) === 'floorplan'
-      ? { drawn: await rewired(io, file, text, flags), code: exit.done }
-      : await placed(io, file ?? '', text, flags);
-  const files = await allFiles(drawn, flags.out ?? drawn.metrics.name);
-  const paths = files.map(({ path }) => path);
-  const found = findingLines(drawn.findings);
-  const output = flags.json === true ? formatMetrics(drawn.metrics) : lines(summaryOf(drawn, paths, io));
-  io.writeFiles(files);
-  await io.stdout(output);
-  if (flags.json === true && found.length + drawn.warnings.length > 0)
-    await io.stderr(lines([...drawn.warnings, ...found]));
-  if (code === exit.interrupted) {
-    await io.stderr(lines(['steelyard: interrupted; the best so far is saved']));
-    return code;
+  if (file !== undefined && text !== undefined && formatOf(text) === 'floorplan') {
+    const drawn = await rewired(io, file, text, flags);
+    await deliver(io, drawn, flags);
+    return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
   }
-  return found.length > 0 ? exit.failedCheck : exit.done;
+  const ear = { heard: false };
+  const release = io.onInterrupt(() => {
+    ear.heard = true;
+  });
+  try {
+    const { drawn, interrupted } = await placed(io, file ?? '', text, flags, ear);
+    await deliver(io, drawn, flags);
+    if (interrupted) {
+      await io.stderr('steelyard: interrupted; the best so far is saved\n');
+      return exit.interrupted;
+    }
+    return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
+  } finally {
+    release();
+  }
 }

@@ -1,5 +1,6 @@
 import { join } from 'node:path';
 import { FileError, Interrupted, UsageError, exit, problemLine, shown } from './fault.js';
+import { guarded } from './guard.js';
 import type { Io } from './io.js';
 
 async function version(io: Io): Promise<string> {
@@ -41,7 +42,7 @@ export async function run(argv: readonly string[], io: Io): Promise<number> {
       return exit.done;
     }
     const { runCommand } = await import('./commands.js');
-    return await runCommand(argv, io, await version(io));
+    return await runCommand(argv, guarded(io), await version(io));
   } catch (error) {
     const { code, lines } = await verdict(error, argv.includes('--debug'));
     await say(lines);

@@ -34,7 +34,7 @@ export class MachineInMemory implements Io {
 
   put(path: string, content: string | Uint8Array | object): this {
     const text = typeof content === 'string' || content instanceof Uint8Array ? content : JSON.stringify(content);
-    this.files.set(path, typeof text === 'string' ? new TextEncoder().encode(text) : text);
+    this.files.set(join(path), typeof text === 'string' ? new TextEncoder().encode(text) : text);
     return this;
   }
 
@@ -53,7 +53,7 @@ export class MachineInMemory implements Io {
     if (path.startsWith(root)) return readFile(path);
     const code = this.broken.get(path);
     if (code !== undefined) throw Object.assign(new Error(code), { code });
-    const bytes = this.files.get(path);
+    const bytes = this.files.get(join(path));
     if (bytes === undefined) throw missing(path);
     return bytes.subarray(0, limit);
   };
@@ -96,7 +96,7 @@ export class MachineInMemory implements Io {
     };
   };
 
-  readonly breath = (): Promise<void> => {
+  breath = (): Promise<void> => {
     if (++this.#breaths === this.interruptAtBreath) this.#handler?.();
     return Promise.resolve();
   };
