@@ -34,7 +34,10 @@ export interface Conductors {
 export function conductorsOf(drawing: Drawing): Conductors {
   const { technology } = drawing;
   const layers = technology.layers.filter(conducts);
-  const sheets = [...layers, ...technology.vias].map((one) => drawing.sheet(one.name));
+  const sheets = [
+    ...layers.map((layer) => drawing.sheet(layer.name)),
+    ...technology.vias.map((via) => drawing.viaSheet(via.name)),
+  ];
   const base: number[] = [];
   let count = 0;
   for (const sheet of sheets) {

@@ -66,7 +66,8 @@ export function meetingPlace(
     const last = search(true);
     if (last < 0) break;
     const states: number[] = [];
-    for (let state = 2 * last; state >= 0; state = cameFrom.get(state)!) states.unshift(state);
+    for (let state = 2 * last; state >= 0; state = cameFrom.get(state)!) states.push(state);
+    states.reverse();
     const added: [number, number][] = [];
     const taken: number[] = [];
     for (let i = 0; i + 1 < states.length; i++) {

@@ -29,23 +29,35 @@ export interface Sheet {
 export class Drawing {
   readonly technology: Technology;
   readonly flat: FlatDrawing;
-  /** By layer name and by via name. */
-  readonly #sheets = new Map<string, Sheet>();
+  readonly #layerSheets: ReadonlyMap<string, Sheet>;
+  readonly #viaSheets: ReadonlyMap<string, Sheet>;
 
   constructor(p: Polygons) {
     this.technology = p.technology;
     this.flat = flatten(p.structures, p.topStructure);
-    for (const one of [...p.technology.layers, ...p.technology.vias]) {
-      const boxes = this.flat.layers.get(streamKey(one.stream)) ?? noBoxes();
-      const slabs = unitedSlabs(boxes);
-      this.#sheets.set(one.name, { boxes, index: new BoxIndex(boxes), slabs, slabIndex: new BoxIndex(slabs) });
-    }
+    const sheets = (ofAll: readonly (Layer | Via)[]) =>
+      new Map(
+        ofAll.map(({ name, stream }) => {
+          const boxes = this.flat.layers.get(streamKey(stream)) ?? noBoxes();
+          const slabs = unitedSlabs(boxes);
+          return [name, { boxes, index: new BoxIndex(boxes), slabs, slabIndex: new BoxIndex(slabs) }];
+        }),
+      );
+    this.#layerSheets = sheets(p.technology.layers);
+    this.#viaSheets = sheets(p.technology.vias);
   }
 
-  /** @throws RangeError for a name that the technology does not have. */
-  sheet(name: string): Sheet {
-    const sheet = this.#sheets.get(name);
-    if (!sheet) throw new RangeError(`the technology has no layer or via "${name}"`);
+  /** What is drawn on a layer. @throws RangeError for a name that the technology does not have. */
+  sheet(layer: string): Sheet {
+    const sheet = this.#layerSheets.get(layer);
+    if (!sheet) throw new RangeError(`the technology has no layer "${layer}"`);
+    return sheet;
+  }
+
+  /** What is drawn of a via. @throws RangeError for a name that the technology does not have. */
+  viaSheet(via: string): Sheet {
+    const sheet = this.#viaSheets.get(via);
+    if (!sheet) throw new RangeError(`the technology has no via "${via}"`);
     return sheet;
   }
 
@@ -67,13 +79,10 @@ export function liesBelow(a: Layer, b: Layer, technology: Technology): boolean {
 
 /** The conducting layers that a via meets from its lower to its upper one. */
 export function crossedLayers(via: Via, drawing: Drawing): Layer[] {
-  const lower = drawing.layer(via.lower);
-  const upper = drawing.layer(via.upper);
   const { technology } = drawing;
-  return technology.layers.filter(
-    (l) =>
-      l === lower || l === upper || (conducts(l) && liesBelow(lower, l, technology) && liesBelow(l, upper, technology)),
-  );
+  const [lower, upper] = [drawing.layer(via.lower), drawing.layer(via.upper)];
+  const between = (l: Layer) => liesBelow(lower, l, technology) && liesBelow(l, upper, technology);
+  return technology.layers.filter((l) => conducts(l) && (l === lower || l === upper || between(l)));
 }
 
 /** The area (nm2) of a window that a layer covers. */

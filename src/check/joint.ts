@@ -26,6 +26,7 @@ export class JointFinder {
   /** For each layer the layers that a via joins it to, with the side of that via. */
   readonly #across: readonly (readonly (readonly [layer: number, side: number])[])[];
   readonly #reach: number;
+  readonly #loose: ReadonlyMap<number, Joint>;
 
   constructor(c: Conductors, drawing: Drawing) {
     this.#c = c;
@@ -36,8 +37,10 @@ export class JointFinder {
         .map((via) => {
           const other = via.lower === layer.name ? via.upper : via.lower;
           return [c.layers.findIndex((l) => l.name === other), nm(via.size_um)] as const;
-        }),
+        })
+        .filter(([l]) => l >= 0),
     );
+    this.#loose = new Map(c.looseVias.flatMap((via) => via.meets.map((node) => [c.piece[node], via] as const)));
     this.#reach = 10 * Math.max(...c.layers.map((layer) => nm(layer.minSpacing_um ?? 0)), 1000);
   }
 
@@ -45,7 +48,7 @@ export class JointFinder {
   find(nodes: readonly number[], wanted: (piece: number) => boolean): Joint | undefined {
     const c = this.#c;
     const piece = c.piece[nodes[0]];
-    const loose = c.looseVias.find((via) => via.meets.length > 0 && c.piece[via.meets[0]] === piece);
+    const loose = this.#loose.get(piece);
     if (loose) return loose;
     const other = (node: number) => c.piece[node] !== piece && wanted(c.piece[node]);
     return this.#overlap(nodes, other) ?? this.#gap(nodes, other);

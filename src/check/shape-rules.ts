@@ -186,16 +186,18 @@ function maxWidth(slabs: Boxes, layer: string, limit: number): Finding[] {
 export function checkShapes(slabs: Boxes, layer: Layer): Finding[] {
   const { name } = layer;
   const boundary = boundaryOf(slabs);
-  const findings: Finding[] = [];
   const plain = nm(layer.minSpacing_um ?? 0);
-  if (layer.minWidth_um !== undefined) findings.push(...width(boundary, name, nm(layer.minWidth_um)));
-  if (plain > 0) findings.push(...spacing(boundary, name, plain));
-  if (layer.wideFrom_um !== undefined && layer.wideSpacing_um !== undefined)
-    findings.push(...wideSpacing(slabs, boundary, name, plain, nm(layer.wideFrom_um), nm(layer.wideSpacing_um)));
-  if (layer.maxWidth_um !== undefined) findings.push(...maxWidth(slabs, name, nm(layer.maxWidth_um)));
-  if (layer.minArea_um2 !== undefined) findings.push(...area(slabs, name, layer.minArea_um2));
-  if (layer.minEnclosedArea_um2 !== undefined) findings.push(...enclosedArea(slabs, name, layer.minEnclosedArea_um2));
-  return findings;
+  const { minWidth_um, wideFrom_um, wideSpacing_um, maxWidth_um, minArea_um2, minEnclosedArea_um2 } = layer;
+  return [
+    minWidth_um === undefined ? [] : width(boundary, name, nm(minWidth_um)),
+    plain === 0 ? [] : spacing(boundary, name, plain),
+    wideFrom_um === undefined || wideSpacing_um === undefined
+      ? []
+      : wideSpacing(slabs, boundary, name, plain, nm(wideFrom_um), nm(wideSpacing_um)),
+    maxWidth_um === undefined ? [] : maxWidth(slabs, name, nm(maxWidth_um)),
+    minArea_um2 === undefined ? [] : area(slabs, name, minArea_um2),
+    minEnclosedArea_um2 === undefined ? [] : enclosedArea(slabs, name, minEnclosedArea_um2),
+  ].flat();
 }
 
 /** Spacing alone, for the shapes of a via layer. */

@@ -1,4 +1,4 @@
-import { BoxIndex } from '../core/boxes.js';
+import type { BoxIndex } from '../core/boxes.js';
 import { boxesOverlap, componentsOf } from '../core/components.js';
 import { nm } from '../core/units.js';
 import type { Capacitor } from '../spec/floorplan.js';
@@ -167,7 +167,9 @@ function countFindings(
   for (const unit of units) {
     const net = netOf(unit.bottom);
     if (net === undefined || netOf(unit.top) !== commonPlate) continue;
-    counted.set(net, [...(counted.get(net) ?? []), unit]);
+    const own = counted.get(net);
+    if (own) own.push(unit);
+    else counted.set(net, [unit]);
   }
   for (const capacitor of capacitors) {
     if (shorted.has(capacitor.name)) continue;

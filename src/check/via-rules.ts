@@ -8,7 +8,7 @@ import { placeUm } from './finding.js';
 import { checkViaSpacing } from './shape-rules.js';
 
 function size(drawing: Drawing, via: Via): Finding[] {
-  const { slabs } = drawing.sheet(via.name);
+  const { slabs } = drawing.viaSheet(via.name);
   const shapes = componentsOf(slabs);
   const side = nm(via.size_um);
   const pieces = new Int32Array(shapes.count);
@@ -53,7 +53,7 @@ function meant(drawing: Drawing, via: Via, x0: number, y0: number, x1: number, y
 }
 
 function enclosure(drawing: Drawing, via: Via): Finding[] {
-  const { boxes } = drawing.sheet(via.name);
+  const { boxes } = drawing.viaSheet(via.name);
   const limit = nm(via.enclosure_um);
   const findings: Finding[] = [];
   for (let i = 0; i < boxes.x0.length; i++) {
@@ -86,7 +86,7 @@ function underPlate(drawing: Drawing, via: Via): Finding[] {
   const { technology } = drawing;
   const plate = drawing.layer(technology.roles.topPlate);
   if (technology.viaUnderTopPlate || !liesBelow(drawing.layer(via.upper), plate, technology)) return [];
-  const { boxes } = drawing.sheet(via.name);
+  const { boxes } = drawing.viaSheet(via.name);
   const plates = drawing.sheet(plate.name);
   const findings: Finding[] = [];
   for (let i = 0; i < boxes.x0.length; i++) {
@@ -104,7 +104,7 @@ function underPlate(drawing: Drawing, via: Via): Finding[] {
 /** Rules of one via: its size, spacing and enclosure, and where it may be. */
 export const checkVia = (drawing: Drawing, via: Via): Finding[] => [
   ...size(drawing, via),
-  ...checkViaSpacing(drawing.sheet(via.name).slabs, via.name, nm(via.spacing_um)),
+  ...checkViaSpacing(drawing.viaSheet(via.name).slabs, via.name, nm(via.spacing_um)),
   ...enclosure(drawing, via),
   ...underPlate(drawing, via),
 ];

@@ -9,7 +9,7 @@ import { slabsOf } from './slabs.js';
 const mostShapes = 0x100_0000;
 
 /** One instance of a reference that says which capacitors its instances are meant to be. */
-export interface FlatCell {
+interface FlatCell {
   /** The capacitor's name, "-" or "=" as in the reference; undefined where the reference's list is too short. */
   readonly name: string | undefined;
   readonly structure: string;

@@ -31,6 +31,24 @@ describe('a sound drawing', () => {
   });
 });
 
+it('a sound drawing stays sound mirrored and turned within another', () => {
+  for (const mirrored of [false, true])
+    for (const angle_deg of [90, 180, 270]) {
+      const reference = {
+        structure: 'kiln4',
+        origin: [50_000, 70_000] as const,
+        columns: 1,
+        rows: 1,
+        columnStep: [0, 0] as const,
+        rowStep: [0, 0] as const,
+        mirrored,
+        angle_deg,
+      };
+      const frame = { name: 'frame', polygons: [], references: [reference], labels: [] };
+      expect(checkPolygons({ ...kiln4, topStructure: 'frame', structures: [...kiln4.structures, frame] })).toEqual([]);
+    }
+});
+
 describe('a planted fault is found, by its kind and within a pitch of its place', () => {
   for (const [kind, plant] of Object.entries(faults))
     it(kind, () => {
