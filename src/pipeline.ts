@@ -89,23 +89,29 @@ interface Setting {
 
 /**
  * What the search weighs: the second order against what emphasis `gradient` reaches on the same core and pitch, hardly above `limit` times
- * that; the column nets against the fewest that any placement could have.
+ * that; the column nets against the fewest that any placement could have. With `momentPrices` the nets of every column are planned first, at
+ * those prices of second moments in turn, and the rows are searched afterwards; every start after them is dealt freely.
  */
 interface Weights {
   readonly second: number;
   readonly limit: number;
   readonly nets: number;
-  readonly heat: number;
+  readonly momentPrices: readonly number[];
 }
 
 const weights: Readonly<Record<Exclude<Emphasis, 'dispersed'>, Weights>> = {
-  gradient: { second: 1, limit: Infinity, nets: 0, heat: 1 },
-  balanced: { second: 0.5, limit: 1.25, nets: 3, heat: 1 },
-  wiring: { second: 0.2, limit: 1.35, nets: 6, heat: 0.5 },
+  gradient: { second: 1, limit: Infinity, nets: 0, momentPrices: [] },
+  balanced: { second: 0.5, limit: 1.25, nets: 3, momentPrices: [4, 2] },
+  wiring: { second: 0.2, limit: 1.35, nets: 6, momentPrices: [1, 4] },
 };
-const BEYOND_LIMIT = 30;
+const BEYOND_LIMIT = 200;
 /** One um of first order against one um^2 of second. */
 const FIRST_BEFORE_ALL = 1e3;
+
+function arrangementOf({ momentPrices }: Weights, start: number) {
+  const momentPrice = momentPrices[start % (momentPrices.length + 1)];
+  return momentPrice !== undefined && { arrangement: { columns: { momentPrice } } };
+}
 
 /** Full searches at a pitch before the tracks that the wires turn out to need are taken as they are. */
 const mostRounds = 2;
@@ -227,14 +233,21 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
     grid: CoreGrid,
     tracks: number,
     cost: Weights,
-    reference: number,
+    relative: number,
     effort: { starts: number; workPerStart: number },
     share: number,
   ): Stage => {
     const pitch = pitchFor(tracks);
+    const reference = relative * spread(grid, pitch);
     const bound = lowerBound({ ...grid, pitch_um: pitch }, bits);
     const search = new Search({
-      deals: (start) => dealBlocks({ ...grid, nets: dealt, random: new Random(spec.seed, 1000 + start) }),
+      deals: (start) =>
+        dealBlocks({
+          ...grid,
+          nets: dealt,
+          random: new Random(spec.seed, start),
+          ...arrangementOf(cost, start),
+        }),
       terms: (deal) => [
         // Where the first order is 0 by the deal this term stays 0; elsewhere it comes before all others.
         { term: firstOrderTerm(deal, pitch), weight: FIRST_BEFORE_ALL / reference },
@@ -246,7 +259,6 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
       ],
       ...effort,
       seed: spec.seed,
-      heat: cost.heat,
       stopWhen: ({ dealing }) => cost.nets === 0 && bound?.squared === secondOrderInl(dealing.deal, pitch).squared,
     });
     return { grid, pitch, tracks, search, share };
@@ -264,7 +276,7 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
       );
   const quick = workFor('quick', total);
   let grid = grids[0];
-  let reference = 1;
+  let relative = 1;
   let least = Infinity;
   for (const candidate of grids) {
     const probe = stage(candidate, tracks, weights.gradient, 1, quick, 0.15 / grids.length);
@@ -274,23 +286,27 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
     if (found >= least) continue;
     least = found;
     grid = candidate;
-    reference = found > 0 ? found : 1;
+    if (found > 0) relative = found / spread(candidate, probe.pitch);
   }
   const needed = (of: Stage) =>
     wired ? planHookup(placedOf(setting, of), spec.tracksPerChannel).channels[0].length : of.tracks;
   if (wired && spec.tracksPerChannel === undefined) {
-    const scout = stage(grid, tracks, emphasis, reference, quick, 0.1);
+    const scout = stage(grid, tracks, emphasis, relative, quick, 0.1);
     yield scout;
     tracks = needed(scout);
   }
   for (let round = 1; ; round++) {
-    const full = stage(grid, tracks, emphasis, reference, workFor(spec.effort, total), 0.75 / mostRounds);
+    const full = stage(grid, tracks, emphasis, relative, workFor(spec.effort, total), 0.75 / mostRounds);
     yield full;
     const actual = needed(full);
     if (actual === tracks || round === mostRounds) return full;
     tracks = actual;
   }
 }
+
+/** What the second order scales with from pitch to pitch: twelve times the mean square distance of a cell from the centre. */
+const spread = ({ rows, columns }: CoreGrid, [x, y]: Pitch): number =>
+  x * x * (columns * columns - 1) + y * y * (rows * rows - 1) || 1;
 
 const dealtNets = (capacitors: readonly Capacitor[]): DealtNet[] =>
   capacitors.map(({ name, role, weight, units }) => ({ name, weight: role === 'bit' ? weight : 0, units }));

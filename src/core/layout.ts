@@ -4,19 +4,7 @@ export type Point = readonly [x: number, y: number];
 
 /** What a shape is there for. Absent on markers and outlines. */
 export type Part =
-  | 'plate'
-  | 'tab'
-  | 'pad'
-  | 'trunk'
-  | 'stub'
-  | 'bus'
-  | 'drop'
-  | 'strap'
-  | 'spine'
-  | 'ring'
-  | 'shield'
-  | 'pin'
-  | 'via';
+  'plate' | 'tab' | 'pad' | 'trunk' | 'stub' | 'bus' | 'drop' | 'strap' | 'spine' | 'ring' | 'shield' | 'pin' | 'via';
 
 /** Counter-clockwise outline, first point not repeated. `net` is what the shape is meant to carry (inside a unit: TOP or BOTTOM). */
 export interface Polygon {

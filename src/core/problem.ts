@@ -12,8 +12,7 @@ export interface Problem {
 }
 
 export type Result<T> =
-  | { readonly ok: true; readonly value: T }
-  | { readonly ok: false; readonly issues: readonly Problem[] };
+  { readonly ok: true; readonly value: T } | { readonly ok: false; readonly issues: readonly Problem[] };
 
 /** Bad input or usage: every problem at once (exit code 2). */
 export class InputError extends Error {

@@ -8,9 +8,6 @@ export interface Rectangle {
 
 export const rectangle = (x0: number, y0: number, x1: number, y1: number): Rectangle => ({ x0, y0, x1, y1 });
 
-/** The rectangle grown by `by` on all sides. */
-export const grown = (r: Rectangle, by: number): Rectangle => rectangle(r.x0 - by, r.y0 - by, r.x1 + by, r.y1 + by);
-
 /** The outline, counter-clockwise from the lower left corner. */
 export const outline = (r: Rectangle): [number, number][] => [
   [r.x0, r.y0],

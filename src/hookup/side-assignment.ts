@@ -33,7 +33,7 @@ const width = 96;
 /** How many transitions may be weighed by crossovers before the search narrows. */
 const exactTransitions = 400_000;
 
-export const popcount = (value: number): number => {
+const popcount = (value: number): number => {
   let v = value - ((value >>> 1) & 0x55555555);
   v = (v & 0x33333333) + ((v >>> 2) & 0x33333333);
   return (((v + (v >>> 4)) & 0x0f0f0f0f) * 0x01010101) >>> 24;

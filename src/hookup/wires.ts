@@ -17,14 +17,14 @@ export interface Wire {
 }
 
 /** A joint of a horizontal and a vertical wire of one net. */
-export interface Joint {
+interface Joint {
   readonly net: string;
   readonly x: number;
   readonly y: number;
 }
 
 /** Stubs cut the shield of their channel where they stand. */
-export interface StubCut {
+interface StubCut {
   readonly channel: number;
   readonly side: Side;
   readonly track: number;
@@ -48,7 +48,7 @@ export interface Hookup {
 }
 
 /** Pin order from left to right: the termination where there is one, then the bits from the least. */
-export const pinOrder = (capacitors: readonly Capacitor[]): string[] => [
+const pinOrder = (capacitors: readonly Capacitor[]): string[] => [
   ...capacitors.filter((capacitor) => capacitor.role === 'termination').map((capacitor) => capacitor.name),
   ...capacitors.filter((capacitor) => capacitor.role === 'bit').map((capacitor) => capacitor.name),
 ];

@@ -1,6 +1,6 @@
 /** Types of a technology template. Lengths in micrometres as in the file; keys are the file's. */
 
-export type LayerKind = 'metal' | 'plate' | 'diffusion' | 'implant' | 'well' | 'outline' | 'marker' | 'label' | 'pin';
+type LayerKind = 'metal' | 'plate' | 'diffusion' | 'implant' | 'well' | 'outline' | 'marker' | 'label' | 'pin';
 
 export interface Stream {
   readonly layer: number;
@@ -39,13 +39,13 @@ export interface Via {
   readonly resistance_ohm?: number;
 }
 
-export interface Terminal {
+interface Terminal {
   readonly layer: string;
   readonly at_um: readonly [number, number];
 }
 
 /** A bottom plate with a smaller top plate on it; tabs left (upper level) and right (lower level) of the bottom plate. */
-export interface ParallelPlateUnit {
+interface ParallelPlateUnit {
   readonly kind: 'parallel-plate';
   readonly topPlate_um: readonly [number, number];
   readonly plateEnclosure_um: number;
@@ -61,7 +61,7 @@ export interface Gradient {
   readonly direction_deg?: number;
 }
 
-export interface Device {
+interface Device {
   readonly model: string;
   readonly prefix: 'C' | 'X';
   readonly terminals: readonly string[];
