@@ -23,10 +23,18 @@ async function readFile(path: string, limit: number): Promise<Uint8Array> {
   }
 }
 
+function identity(path: string): string | undefined {
+  try {
+    const { dev, ino } = statSync(path, { bigint: true });
+    return `${dev}:${ino}`;
+  } catch {
+    return undefined;
+  }
+}
+
 function isSameFile(a: string, b: string): boolean {
-  const first = statSync(a, { bigint: true, throwIfNoEntry: false });
-  const second = statSync(b, { bigint: true, throwIfNoEntry: false });
-  return first !== undefined && second !== undefined && first.dev === second.dev && first.ino === second.ino;
+  const first = identity(a);
+  return first !== undefined && first === identity(b);
 }
 
 /** Resolves when the text is out, or when nobody reads any more. */

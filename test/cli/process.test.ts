@@ -1,0 +1,162 @@
+import { execFileSync, spawnSync } from 'node:child_process';
+import { mkdirSync, openSync, readFileSync, rmSync, symlinkSync, writeFileSync } from 'node:fs';
+import { writeFile } from 'node:fs/promises';
+import { join } from 'node:path';
+import { afterEach, beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { buildTool, filesBelow, finished, remove, start, temporaryFolder, tool } from './built-tool.js';
+
+let folder: string;
+beforeAll(buildTool);
+beforeEach(() => {
+  folder = temporaryFolder();
+});
+afterEach(() => {
+  remove(folder);
+});
+
+const quick = ['place', '--bits', '4', '--effort', 'quick'];
+const endings = ['floorplan.json', 'floorplan.svg', 'gds', 'hookup.svg', 'metrics.json', 'polygons.json'];
+const text = (path: string) => readFileSync(join(folder, path), 'utf8');
+const write = (path: string, content: string) => {
+  writeFileSync(join(folder, path), content);
+};
+
+describe('the built tool as a process', () => {
+  it('places an array into a folder beside it', async () => {
+    const { code, out, err } = await finished(folder, quick);
+    expect({ code, err }).toEqual({ code: 0, err: '' });
+    expect(out).toMatch(/^cdac4, 4 bits/);
+    expect(filesBelow(folder)).toEqual(endings.map((ending) => `cdac4/cdac4.${ending}`));
+  });
+
+  it('prints nothing but JSON with --json', async () => {
+    const { code, out, err } = await finished(folder, [...quick, '--json']);
+    expect({ code, err }).toEqual({ code: 0, err: '' });
+    expect(JSON.parse(out)).toMatchObject({ format: 'steelyard/metrics', name: 'cdac4' });
+    expect(out).toBe(text('cdac4/cdac4.metrics.json'));
+  });
+
+  it('replaces the files of an earlier run', async () => {
+    await finished(folder, [...quick, '--out', 'o']);
+    const before = text('o/cdac4.floorplan.json');
+    const { code } = await finished(folder, [...quick, '--out', 'o', '--seed', '2']);
+    expect(code).toBe(0);
+    expect(text('o/cdac4.floorplan.json')).not.toBe(before);
+    expect(filesBelow(folder)).toEqual(endings.map((ending) => `o/cdac4.${ending}`));
+  });
+
+  it.each([
+    [['place', 'missing.json'], 4, /^steelyard: missing\.json could not be read: no such file or folder \(ENOENT\)\n$/],
+    [['place', '.'], 4, /^steelyard: \. could not be read: it is a folder \(EISDIR\)\n$/],
+    [[...quick, '--out', 'plain/x'], 4, /^steelyard: plain\/x\/.* could not be written: .*no folder/],
+    [['place', 'plain'], 2, /^plain:1:1: found an empty file; wanted a JSON object\n$/],
+    [['place', '/dev/zero'], 2, /^\/dev\/zero: found more than 128 MiB/],
+    [['place', '--bits', '4', '--core', '2x2'], 3, /^steelyard: impossible as asked: /],
+    [['plaice'], 2, /^steelyard: found the command "plaice"/],
+  ])('steelyard %j ends with %i, says why, and changes nothing', async (args, wanted, said) => {
+    write('plain', '');
+    const { code, out, err } = await finished(folder, args);
+    expect({ code, out }).toEqual({ code: wanted, out: '' });
+    expect(err).toMatch(said);
+    expect(filesBelow(folder)).toEqual(['plain']);
+  });
+
+  it('a set that fails in the middle leaves the former set as it was', async () => {
+    await finished(folder, [...quick, '--out', 'o']);
+    remove(join(folder, 'o', 'cdac4.hookup.svg'));
+    mkdirSync(join(folder, 'o', 'cdac4.hookup.svg'));
+    const kept = filesBelow(folder);
+    const before = kept.map(text);
+    const { code, err } = await finished(folder, [...quick, '--out', 'o', '--seed', '2']);
+    expect(code).toBe(4);
+    expect(err).toBe('steelyard: o/cdac4.hookup.svg could not be written: it is a folder (EISDIR)\n');
+    expect(filesBelow(folder)).toEqual(kept);
+    expect(kept.map(text)).toEqual(before);
+  });
+
+  it('never writes over its input, whatever name it goes by', async () => {
+    await finished(folder, [...quick, '--out', 'o']);
+    symlinkSync(join(folder, 'o'), join(folder, 'alias'));
+    const before = text('o/cdac4.floorplan.json');
+    const { code, err } = await finished(folder, ['place', 'o/cdac4.floorplan.json', '--out', 'alias']);
+    expect(code).toBe(2);
+    expect(err).toMatch(/^alias\/cdac4\.floorplan\.json: found an input of this run/);
+    expect(text('o/cdac4.floorplan.json')).toBe(before);
+  });
+
+  it('colours only where a terminal or FORCE_COLOR asks for it, and NO_COLOR wins', async () => {
+    const escape = '\u001b[';
+    const args = ['place', '--bits', '2', '--floorplan-only'];
+    expect((await finished(folder, args)).out).not.toContain(escape);
+    expect((await finished(folder, args, { FORCE_COLOR: '1' })).out).toContain(escape);
+    expect((await finished(folder, args, { FORCE_COLOR: '1', NO_COLOR: '1' })).out).not.toContain(escape);
+  });
+});
+
+describe('a reader that goes away', () => {
+  it('ends the tool quietly', async () => {
+    const { child, ended } = start(folder, ['schema', 'polygons']);
+    child.stdout.destroy();
+    expect(await ended).toMatchObject({ code: 0, signal: null, err: '' });
+  });
+
+  it('takes nothing from the files', async () => {
+    const { child, ended } = start(folder, quick);
+    child.stdout.destroy();
+    expect(await ended).toMatchObject({ code: 0, signal: null, err: '' });
+    expect(filesBelow(folder).length).toBe(endings.length);
+  });
+
+  it('is not a full disk: that is 4', () => {
+    const full = openSync('/dev/full', 'w');
+    const { status, stderr } = spawnSync(process.execPath, [tool, 'schema', 'polygons'], {
+      stdio: ['ignore', full, 'pipe'],
+      encoding: 'utf8',
+    });
+    expect(status).toBe(4);
+    expect(stderr).toBe('steelyard: standard output could not be written: no space left (ENOSPC)\n');
+  });
+});
+
+const pause = (milliseconds: number) => new Promise((resolve) => setTimeout(resolve, milliseconds));
+
+/** Starts a long search, and resolves when it is surely under way: the array comes through a pipe, so that its reading is seen. */
+async function searching() {
+  const pipe = join(folder, 'pipe');
+  execFileSync('mkfifo', [pipe]);
+  const run = start(folder, ['place', 'pipe', '--out', 'o']);
+  await writeFile(pipe, '{"format": "steelyard/array", "version": 1, "bits": 12, "effort": "thorough"}');
+  await pause(1000);
+  rmSync(pipe);
+  return run;
+}
+
+describe('Ctrl-C', () => {
+  it(
+    'in a run of 12 bits gives 130 and a whole set of files, which the check accepts',
+    { timeout: 180_000 },
+    async () => {
+      const { child, ended } = await searching();
+      child.kill('SIGINT');
+      expect(await ended).toMatchObject({
+        code: 130,
+        signal: null,
+        err: 'steelyard: interrupted; the best so far is saved\n',
+      });
+      expect(filesBelow(folder)).toEqual(endings.map((ending) => `o/cdac12.${ending}`));
+      expect(JSON.parse(text('o/cdac12.metrics.json')).status).toBe('interrupted');
+      const checked = await finished(folder, ['check', 'o/cdac12.floorplan.json', 'o/cdac12.polygons.json']);
+      expect(checked).toMatchObject({ code: 0, out: 'no findings\n', err: '' });
+    },
+  );
+
+  it('twice ends at once; what is there is whole or not there', { timeout: 180_000 }, async () => {
+    const { child, ended } = await searching();
+    child.kill('SIGINT');
+    await pause(400);
+    child.kill('SIGINT');
+    const { code, signal } = await ended;
+    expect(code === 130 || signal === 'SIGINT').toBe(true);
+    expect([0, endings.length]).toContain(filesBelow(folder).length);
+  });
+});
