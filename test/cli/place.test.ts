@@ -189,6 +189,15 @@ describe('Ctrl-C', () => {
     expect(await machine.run('check o/cdac6.floorplan.json o/cdac6.polygons.json')).toBe(0);
   });
 
+  it('before the first placement: 130, and nothing is written', async () => {
+    const machine = new MachineInMemory();
+    machine.interruptAtBreath = 1;
+    expect(await machine.run('place --bits 6 --out o')).toBe(130);
+    expect(machine.err).toBe('steelyard: interrupted before the first placement: nothing written\n');
+    expect(machine.out).toBe('');
+    expect(machine.written).toEqual([]);
+  });
+
   it('stops the progress bar', async () => {
     const machine = new MachineInMemory();
     machine.stderrIsTerminal = true;
