@@ -1,11 +1,25 @@
 import type { Result } from '../core/problem.js';
+import { nm } from '../core/units.js';
 import type { ArraySpec } from './array-spec.js';
-import { integer, items, record } from './loose.js';
+import { integer, items, real, record } from './loose.js';
 import { mostCells, mostWeight, options } from './options.js';
 import { read } from './read.js';
 import type { Refusal } from './read.js';
 import type { Report } from './report.js';
 import { quoted, shown } from './words.js';
+
+/** Coordinates are whole nanometres, and so is what they are made of. */
+export function checkPitch(core: unknown, report: Report, at: string): void {
+  items(record(core).pitch_um).forEach((pitch, axis) => {
+    const length_um = real(pitch);
+    if (length_um === undefined) return;
+    try {
+      nm(length_um);
+    } catch {
+      report.add(`${at}/pitch_um/${axis}`, `${length_um} um`, 'a whole number of nanometres: three decimals at most');
+    }
+  });
+}
 
 /** What the shape of an array file, or of the array in a floorplan, does not say. */
 export function checkArray(value: unknown, report: Report, at: string): void {
@@ -16,6 +30,7 @@ export function checkArray(value: unknown, report: Report, at: string): void {
   const total = items(array.weights).reduce<number>((sum, weight) => sum + (integer(weight) ?? 0), 0);
   if (total > mostWeight) report.add(`${at}/weights`, `weights of ${total} in all`, `${mostWeight} in all at most`);
   const core = record(array.core);
+  checkPitch(core, report, `${at}/core`);
   const cells = (integer(core.rows) ?? 0) * (integer(core.columns) ?? 0);
   if (cells > mostCells) report.add(`${at}/core`, `a core of ${cells} cells`, `${mostCells} cells at most`);
 }

@@ -2,7 +2,7 @@ import type { Result } from '../core/problem.js';
 import type { Floorplan } from './floorplan.js';
 import { integer, items, record, word } from './loose.js';
 import { mostCells, mostRings, mostWeights } from './options.js';
-import { checkArray } from './parse-array.js';
+import { checkArray, checkPitch } from './parse-array.js';
 import { checkTechnology, technologyRefusals } from './parse-technology.js';
 import { read } from './read.js';
 import type { Refusal } from './read.js';
@@ -101,6 +101,7 @@ function check(value: unknown, report: Report): void {
   const floorplan = record(value);
   const names = checkCapacitors(floorplan.capacitors, report, '/capacitors');
   const core = record(floorplan.core);
+  checkPitch(core, report, '/core');
   const cells = (integer(core.rows) ?? 0) * (integer(core.columns) ?? 0);
   if (cells > mostCells) report.add('/core', `a core of ${cells} cells`, `${mostCells} cells at most`);
   const count = checkCells(floorplan, names, report);

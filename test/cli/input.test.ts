@@ -47,6 +47,11 @@ describe('a broken file ends with its code, is named with the place of each prob
       new Uint8Array([0x7b, 0x0a, 0xc3, 0x28]),
       [/^a\.json:2: found bytes that are no UTF-8; wanted/m],
     ],
+    [
+      'a floorplan off every grid',
+      '{"format": "steelyard/floorplan", "version": 1, "core": {"rows": 1, "columns": 1, "pitch_um": [7.20005, 1]}, "capacitors": [{"name": "B0", "role": "bit", "weight": 1, "units": 1}], "cells": [["B0"]]}',
+      [/\/core\/pitch_um\/0: found 7.20005 um; wanted a whole/],
+    ],
     ['another format', '{"format": "steelyard/polygons", "version": 1}', [/this is a file of another kind/]],
   ];
   it.each(cases)('%s', async (_, content, said) => {

@@ -123,7 +123,7 @@ const pause = (milliseconds: number) => new Promise((resolve) => setTimeout(reso
 /** Starts a long search, and resolves when it is surely under way: the array comes through a pipe, so that its reading is seen. */
 async function searching() {
   const pipe = join(folder, 'pipe');
-  execFileSync('mkfifo', [pipe]);
+  execFileSync('sh', ['-c', 'mkfifo "$0"', pipe]);
   const run = start(folder, ['place', 'pipe', '--out', 'o']);
   await writeFile(pipe, '{"format": "steelyard/array", "version": 1, "bits": 12, "effort": "thorough"}');
   await pause(1000);

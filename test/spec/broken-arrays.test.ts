@@ -37,6 +37,11 @@ const cases: [name: string, text: string, problems: string[]][] = [
   ['version as a text', '{"format": "steelyard/array", "version": "1", "bits": 10}', ['/version | "1" | 1']],
   ['bits as a text', withKeys('"bits": "10"'), ['/bits | "10" | a whole number from 2 to 14']],
   ['bits too many', withKeys('"bits": 15'), ['/bits | 15 | a whole number from 2 to 14']],
+  [
+    'a pitch off every grid',
+    withKeys('"bits": 4, "core": {"rows": 5, "columns": 3, "pitch_um": [1.00005, 2]}'),
+    ['/core/pitch_um/0 | 1.00005 um | a whole number of nanometres: three decimals at most'],
+  ],
   ['bits too few', withKeys('"bits": 1'), ['/bits | 1 | a whole number from 2 to 14']],
   ['half a bit', withKeys('"bits": 2.5'), ['/bits | 2.5 | a whole number from 2 to 14']],
   ['bits null', withKeys('"bits": null'), ['/bits | null | a whole number from 2 to 14']],
