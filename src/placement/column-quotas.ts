@@ -1,6 +1,14 @@
 import { exp, ln } from '../core/exponential.js';
 import type { Random } from '../core/random.js';
 
+/** Correlation between columns, and what it costs in (column, net) pairs. */
+export interface Dispersion {
+  /** [class * classes + class]: sum of the correlations of a pair in the one class with a pair in the other. */
+  readonly kernel: Float64Array;
+  /** Of 1 LSB of sigma INL, the root mean square over all codes, per sigma of a unit. */
+  readonly price: number;
+}
+
 export interface ColumnQuotaRequest {
   /** Pairs to deal in each class of columns; class c is column c and its mirror image. */
   readonly capacity: readonly number[];
@@ -18,6 +26,8 @@ export interface ColumnQuotaRequest {
   readonly moment: readonly number[];
   /** What a unit of LSB moment, as a share of the LSB's own, costs in (column, net) pairs. */
   readonly price: number;
+  /** What random mismatch costs, where it counts. */
+  readonly dispersion?: Dispersion;
   readonly random: Random;
 }
 
@@ -30,6 +40,9 @@ const MOVES_PER_ENTRY = 1500;
  * How many pairs of each net to put into each class of columns, so that few columns hold a net while the second moment across the
  * columns stays near what the weights ask for. Every (column, net) pair costs 1; the moment costs `price` times half the sum of the nets'
  * residuals, over the mean moment of one unit (what the LSB at the centre lacks anyhow).
+ *
+ * Random mismatch, where it counts, costs the root of 1/4 sum_k q_k' K q_k, q_k = the net's pairs by class minus its share of all pairs, K
+ * the correlation between classes: that of a placement whose columns have each net's cells evenly spread.
  *
  * Annealed on the table of quotas itself, where a whole lot of a net changes places with as much of another in one move; where in their
  * columns the cells stand is left to the search.
@@ -69,6 +82,28 @@ export function columnQuotas(request: ColumnQuotaRequest): Int32Array {
     moment[p] += shift;
     moment[q] -= shift;
   };
+  const kernel = request.dispersion?.kernel;
+  const sigmaPrice = request.dispersion?.price ?? 0;
+  // field[net * classes + c] = (K q_net)_c; the fill disturbs nobody.
+  const field = new Float64Array(nets * classes);
+  const addToField = (net: number, c: number, count: number): void => {
+    if (kernel === undefined || net === fill) return;
+    for (let d = 0; d < classes; d++) field[net * classes + d] += count * kernel[c * classes + d];
+  };
+  let variance = 0;
+  for (let net = 0; net < fill; net++) {
+    if (weight[net] === 0) continue;
+    const pairsOff = (c: number) => quota[net * classes + c] - (weight[net] / total) * capacity[c];
+    for (let c = 0; c < classes; c++) addToField(net, c, pairsOff(c));
+    for (let c = 0; c < classes; c++) variance += pairsOff(c) * field[net * classes + c];
+  }
+  /** What the variance changes by if `count` pairs of a net go from class c to class d. */
+  const varianceOf = (net: number, c: number, d: number, count: number): number => {
+    if (kernel === undefined || net === fill || weight[net] === 0) return 0;
+    const within = kernel[c * classes + c] + kernel[d * classes + d] - 2 * kernel[c * classes + d];
+    return count * (2 * (field[net * classes + d] - field[net * classes + c]) + count * within);
+  };
+  const sigma = (v: number): number => sigmaPrice * 0.5 * Math.sqrt(v > 0 ? v : 0);
   const around = (p: number, c: number, q: number, d: number): number =>
     holds(p, c) + holds(p, d) + holds(q, c) + holds(q, d);
 
@@ -90,15 +125,22 @@ export function columnQuotas(request: ColumnQuotaRequest): Int32Array {
       if (p === q || c === d || most === 0) continue;
       const count = random.below(2) === 0 ? most : 1 + random.below(most);
       const before = around(p, c, q, d);
+      const moved = varianceOf(p, c, d, count) + varianceOf(q, d, c, count);
       move(p, c, q, d, count);
       const change = around(p, c, q, d) - before;
       const now = residue();
-      const more = change + now - spread;
+      const more = change + now - spread + sigma(variance + moved) - sigma(variance);
       if (more <= 0 || more <= -temperature * ln((random.bits() + 0.5) / 0x1_0000_0000)) {
         columnNets += change;
         spread = now;
-        if (columnNets + spread < least) {
-          least = columnNets + spread;
+        variance += moved;
+        addToField(p, c, -count);
+        addToField(p, d, count);
+        addToField(q, d, -count);
+        addToField(q, c, count);
+        const cost = columnNets + spread + sigma(variance);
+        if (cost < least) {
+          least = cost;
           best = quota.slice();
         }
       } else move(p, d, q, c, count);

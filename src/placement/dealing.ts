@@ -3,7 +3,7 @@ import { oddDeal } from '../array/core-grid.js';
 import { mirroredTriples } from '../array/mirrored-triples.js';
 import type { Random } from '../core/random.js';
 import { offset2 } from '../linearity/moments.js';
-import { columnQuotas } from './column-quotas.js';
+import { columnQuotas, type Dispersion } from './column-quotas.js';
 import { leastSinglesOrder } from './singles.js';
 
 /** A capacitor as the search sees it. Without weight (0: a termination inside the core) its cells are dealt as fill. */
@@ -32,7 +32,8 @@ export type Dealing = {
  * `momentPrice` says how many such pairs a second moment across the columns is worth that is off by as much as the LSB's is anyhow: 1
  * wants few, 4 costs next to nothing of the second order.
  */
-export type Arrangement = 'scattered' | { readonly columns: { readonly momentPrice: number } };
+export type Arrangement =
+  'scattered' | { readonly columns: { readonly momentPrice: number; readonly dispersion?: Dispersion } };
 
 export interface DealRequest {
   readonly rows: number;
@@ -221,6 +222,7 @@ function dealPairs(
     present,
     moment,
     price: arrangement.columns.momentPrice,
+    ...(arrangement.columns.dispersion && { dispersion: arrangement.columns.dispersion }),
     random,
   });
   inClass.forEach((cells, c) => {
