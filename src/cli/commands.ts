@@ -15,7 +15,7 @@ import type { PlaceFlags } from './place.js';
 const laterCommands = ['pattern', 'compare', 'size', 'simulate'];
 const laterOptions: Readonly<Record<string, readonly string[]>> = {
   place: ['--candidates', '--samples', '--workers'],
-  export: ['--pins', '--flat', '--stub-cell', '--devices', '--dummies'],
+  export: ['--stub-cell'],
 };
 
 const examples: Readonly<Record<string, readonly string[]>> = {
@@ -23,7 +23,7 @@ const examples: Readonly<Record<string, readonly string[]>> = {
   check: ['steelyard place --bits 4 --out demo', 'steelyard check demo/cdac4.floorplan.json demo/cdac4.polygons.json'],
   export: [
     'steelyard place --bits 4 --out demo',
-    'steelyard export demo/cdac4.floorplan.json --to gds,svg --out handover',
+    'steelyard export demo/cdac4.floorplan.json --to gds,lef,spice --flat --devices merged --out handover',
   ],
   schema: ['steelyard schema array'],
   technology: ['steelyard technology parallel-plate'],
@@ -75,7 +75,11 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
     .argument('<FLOORPLAN>', 'floorplan file')
     .requiredOption('--to <formats>', `one or more of ${formats.join(', ')}, with commas between`)
     .option('--out <folder>', "where the files go (default: a folder of the array's name)")
-    .option('--layers <file>', "layer map: stream numbers of one's own")
+    .option('--layers <file>', "layer map: stream numbers of one's own in the stream file and the polygon list")
+    .option('--pins <file>', "pin names of one's own in the stream file, the netlists, the abstract and the picture")
+    .option('--flat', 'stream file: everything in one structure')
+    .option('--devices <units|merged>', '.lvs.cir: one device a unit, or one a capacitor (default: units)')
+    .option('--dummies <include|omit>', 'netlists: with dummies or without (default: include)')
     .option(
       '--date <YYYY-MM-DD>',
       'date in the stream file (default: a fixed one, so that equal drawings are equal files)',

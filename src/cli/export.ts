@@ -1,5 +1,5 @@
-import { InputError, applyLayerMap, drawFloorplan, parseLayerMap } from '../index.js';
-import type { Technology } from '../index.js';
+import { InputError, applyLayerMap, drawFloorplan, parseLayerMap, parsePins } from '../index.js';
+import type { Floorplan, PinMap, Technology } from '../index.js';
 import { UsageError, exit, shown } from './fault.js';
 import { drawingFiles, formats } from './files.js';
 import type { Format } from './files.js';
@@ -13,25 +13,72 @@ export interface ExportFlags {
   readonly to: string;
   readonly out?: string;
   readonly layers?: string;
+  readonly pins?: string;
+  readonly flat?: boolean;
+  readonly devices?: string;
+  readonly dummies?: string;
   readonly date?: string;
 }
 
 // Known by name so that they are not taken for a slip of the pen.
-const laterFormats = ['spice', 'lef', 'report'];
+const laterFormats = ['report'];
 
-function chosenFormats(list: string): readonly Format[] {
+const choices = { devices: ['units', 'merged'], dummies: ['include', 'omit'] } as const;
+/** The formats that each option has a say in. */
+const concerns: Readonly<Record<'layers' | 'pins' | 'flat' | 'devices' | 'dummies' | 'date', readonly Format[]>> = {
+  layers: ['gds', 'polygons'],
+  pins: ['gds', 'svg', 'spice', 'lef'],
+  flat: ['gds'],
+  devices: ['spice'],
+  dummies: ['spice'],
+  date: ['gds'],
+};
+
+function chosenFormats(list: string, problems: string[]): readonly Format[] {
   const existing = formats.join(', ');
   const chosen = new Set<Format>();
-  const lines: string[] = [];
   for (const word of list.split(',')) {
     const format = formats.find((each) => each === word);
     if (format !== undefined) chosen.add(format);
     else if (laterFormats.includes(word))
-      lines.push(`export --to: found ${word}, not available yet; wanted one or more of ${existing}`);
-    else lines.push(`export --to: found ${JSON.stringify(word)}; wanted one or more of ${existing}`);
+      problems.push(`export --to: found ${word}, not available yet; wanted one or more of ${existing}`);
+    else problems.push(`export --to: found ${JSON.stringify(word)}; wanted one or more of ${existing}`);
   }
-  if (lines.length > 0) throw new UsageError(lines);
   return [...chosen];
+}
+
+function choiceOf<K extends keyof typeof choices>(
+  flags: ExportFlags,
+  key: K,
+  problems: string[],
+): (typeof choices)[K][number] | undefined {
+  const known: readonly (typeof choices)[K][number][] = choices[key];
+  const choice = known.find((each) => each === flags[key]);
+  if (flags[key] !== undefined && choice === undefined)
+    problems.push(`export --${key}: found ${JSON.stringify(flags[key])}; wanted ${known.join(' or ')}`);
+  return choice;
+}
+
+/** What the options say, all slips at once. */
+function settled(flags: ExportFlags) {
+  const problems: string[] = [];
+  const chosen = chosenFormats(flags.to, problems);
+  const devices = choiceOf(flags, 'devices', problems);
+  const dummies = choiceOf(flags, 'dummies', problems);
+  for (const [key, of] of Object.entries(concerns))
+    if (flags[key as keyof typeof concerns] !== undefined && !of.some((format) => chosen.includes(format)))
+      problems.push(`export --${key}: found no file that it changes; wanted --to with ${of.join(' or ')}`);
+  if (problems.length > 0) throw new UsageError(problems);
+  const { date, flat } = flags;
+  return {
+    chosen,
+    options: {
+      ...(date !== undefined && { date }),
+      ...(flat !== undefined && { flat }),
+      ...(devices !== undefined && { devices }),
+      ...(dummies !== undefined && { dummies }),
+    },
+  };
 }
 
 async function withLayers(io: Io, technology: Technology, path: string): Promise<Technology> {
@@ -40,13 +87,27 @@ async function withLayers(io: Io, technology: Technology, path: string): Promise
   return mapped.value;
 }
 
+async function pinsFrom(io: Io, { capacitors }: Floorplan, path: string): Promise<PinMap> {
+  const known = [...capacitors.map(({ name }) => name), 'TOP', 'VSS'];
+  return valueOf(parsePins(await readText(io, path), path, known));
+}
+
 /** `export`: the drawing of a floorplan in other formats. */
 export async function exportFiles(io: Io, file: string, flags: ExportFlags): Promise<number> {
-  const chosen = chosenFormats(flags.to);
+  const { chosen, options } = settled(flags);
   const own = await floorplanToDraw(io, file, await readText(io, file));
   const technology = flags.layers === undefined ? own.technology : await withLayers(io, own.technology, flags.layers);
-  const drawn = inFile(file, () => drawFloorplan(own.floorplan, technology, { keepHookup: true }));
-  const files = await drawingFiles(drawn, chosen, flags.out ?? drawn.metrics.name, flags.date);
+  const pins = flags.pins === undefined ? undefined : await pinsFrom(io, own.floorplan, flags.pins);
+  const draw = (on: Technology) => inFile(file, () => drawFloorplan(own.floorplan, on, { keepHookup: true }));
+  const drawn = draw(technology);
+  // A map may put two layers on one number: what is told apart by it is taken from the technology's own numbers.
+  const byNumber = flags.layers !== undefined && (chosen.includes('spice') || chosen.includes('lef'));
+  const onOwnLayers = byNumber ? draw(own.technology).polygons : undefined;
+  const files = await drawingFiles(drawn, chosen, flags.out ?? drawn.metrics.name, {
+    ...options,
+    ...(pins && { pins }),
+    ...(onOwnLayers && { onOwnLayers }),
+  });
   const output = lines(files.map(({ path }) => shown(path)));
   io.writeFiles(files);
   await io.stdout(output);

@@ -1,46 +1,103 @@
 import { join } from 'node:path';
 import {
+  InputError,
   drawFloorplanSvg,
   drawHookupSvg,
   formatFloorplan,
   formatMetrics,
   formatPolygons,
+  withPinNames,
+  writeAbstract,
+  writeCapacitorNetlist,
+  writeDeviceNetlist,
   writeStream,
 } from '../index.js';
-import type { Drawn } from '../index.js';
+import type { Drawn, Floorplan, PinMap, Polygons } from '../index.js';
 import type { OutputFile } from './io.js';
 
-/** The kinds of files that a drawing is written as, as `export --to` names them. */
-export const formats = ['gds', 'polygons', 'svg'] as const;
-export type Format = (typeof formats)[number];
+/** What the writers can be told. */
+export interface WriterOptions {
+  readonly date?: string;
+  readonly flat?: boolean;
+  readonly pins?: PinMap;
+  readonly devices?: 'units' | 'merged';
+  readonly dummies?: 'include' | 'omit';
+  /** The same drawing on the technology's own stream numbers, where it was drawn on others. */
+  readonly onOwnLayers?: Polygons;
+}
 
-/** The drawing in the chosen formats; without one drawn, what of it the floorplan alone gives. */
+type Written = readonly (readonly [ending: string, content: string | Uint8Array])[];
+type Writer = (
+  floorplan: Floorplan,
+  polygons: Polygons | undefined,
+  options: WriterOptions,
+) => Written | Promise<Written>;
+
+const labelled = (polygons: Polygons, { pins }: WriterOptions): Polygons =>
+  pins === undefined ? polygons : withPinNames(polygons, pins);
+
+/** The kinds of files that a drawing is written as, as `export --to` names them. Without a drawing only the floorplan's picture is left. */
+const writers = {
+  gds: (_, polygons, options) =>
+    polygons === undefined ? [] : [['.gds', writeStream(labelled(polygons, options), options)]],
+  polygons: (_, polygons) => (polygons === undefined ? [] : [['.polygons.json', formatPolygons(polygons)]]),
+  svg: async (floorplan, polygons, options) => [
+    ['.floorplan.svg', await drawFloorplanSvg(floorplan)],
+    ...(polygons === undefined
+      ? []
+      : [['.hookup.svg', await drawHookupSvg(labelled(polygons, options), floorplan)] as const]),
+  ],
+  spice: (_, polygons, options) =>
+    polygons === undefined
+      ? []
+      : [
+          ['.cir', writeCapacitorNetlist(options.onOwnLayers ?? polygons, options)],
+          ['.lvs.cir', writeDeviceNetlist(options.onOwnLayers ?? polygons, options)],
+        ],
+  lef: (_, polygons, options) =>
+    polygons === undefined ? [] : [['.lef', writeAbstract(options.onOwnLayers ?? polygons, options)]],
+} satisfies Record<string, Writer>;
+
+export type Format = keyof typeof writers;
+export const formats = Object.keys(writers) as readonly Format[];
+
+/**
+ * The drawing in the chosen formats; without one drawn, what of it the floorplan alone gives.
+ * @param refused receives what a format cannot hold; without it that ends the run
+ */
 export async function drawingFiles(
   { floorplan, polygons, metrics: { name } }: Drawn,
   chosen: readonly Format[],
   folder: string,
-  date?: string,
+  options: WriterOptions = {},
+  refused?: (format: Format, error: InputError) => void,
 ): Promise<OutputFile[]> {
   const files: OutputFile[] = [];
-  const add = (ending: string, content: string | Uint8Array) =>
-    files.push({ path: join(folder, name + ending), content });
-  if (chosen.includes('polygons') && polygons !== undefined) add('.polygons.json', formatPolygons(polygons));
-  if (chosen.includes('gds') && polygons !== undefined) {
-    add('.gds', writeStream(polygons, date === undefined ? {} : { date }));
-  }
-  if (chosen.includes('svg')) {
-    add('.floorplan.svg', await drawFloorplanSvg(floorplan));
-    if (polygons !== undefined) add('.hookup.svg', await drawHookupSvg(polygons, floorplan));
+  for (const format of formats) {
+    if (!chosen.includes(format)) continue;
+    const write: Writer = writers[format];
+    try {
+      for (const [ending, content] of await write(floorplan, polygons, options))
+        files.push({ path: join(folder, name + ending), content });
+    } catch (error) {
+      if (refused === undefined || !(error instanceof InputError)) throw error;
+      refused(format, error);
+    }
   }
   return files;
 }
 
-/** All that `place` writes. */
-export async function allFiles(drawn: Drawn, folder: string): Promise<OutputFile[]> {
+/** All that `place` writes, and a sentence on each format that cannot hold this array. */
+export async function allFiles(drawn: Drawn, folder: string): Promise<{ files: OutputFile[]; left: string[] }> {
   const { floorplan, metrics } = drawn;
-  return [
+  const left: string[] = [];
+  const refused = (format: Format, { problems }: InputError) => {
+    for (const { found, wanted } of problems) left.push(`No ${format} files: found ${found}; wanted ${wanted}.`);
+  };
+  const files = [
     { path: join(folder, `${metrics.name}.floorplan.json`), content: formatFloorplan(floorplan) },
     { path: join(folder, `${metrics.name}.metrics.json`), content: formatMetrics(metrics) },
-    ...(await drawingFiles(drawn, formats, folder)),
+    ...(await drawingFiles(drawn, formats, folder, {}, refused)),
   ];
+  return { files, left };
 }

@@ -161,10 +161,12 @@ async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): P
 }
 
 async function deliver(io: Io, drawn: Drawn, flags: PlaceFlags): Promise<void> {
-  const files = await allFiles(drawn, flags.out ?? drawn.metrics.name);
+  const { files, left } = await allFiles(drawn, flags.out ?? drawn.metrics.name);
   const paths = files.map(({ path }) => path);
-  const remarks = [...drawn.warnings, ...findingLines(drawn.findings)].map(shown);
-  const output = flags.json === true ? formatMetrics(drawn.metrics) : lines(summaryOf(drawn, paths, io));
+  const warnings = [...drawn.warnings, ...left];
+  const remarks = [...warnings, ...findingLines(drawn.findings)].map(shown);
+  const output =
+    flags.json === true ? formatMetrics(drawn.metrics) : lines(summaryOf({ ...drawn, warnings }, paths, io));
   io.writeFiles(files);
   await io.stdout(output);
   if (flags.json === true && remarks.length > 0) await io.stderr(lines(remarks));

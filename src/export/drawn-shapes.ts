@@ -1,5 +1,6 @@
 import { flatten, placed } from '../core/flatten.js';
-import type { Label, Point, Polygon } from '../core/layout.js';
+import type { Place } from '../core/flatten.js';
+import type { Label, Point, Polygon, Structure } from '../core/layout.js';
 import type { Polygons } from '../spec/polygons.js';
 
 /** Called for each polygon of each instance: its net in the array as a whole and its outline in the top structure. */
@@ -21,16 +22,25 @@ export function visitDrawn(p: Polygons, visit: Visit): readonly Label[] {
   for (const { shape, cell } of layers.values()) shape.forEach((number, i) => (cellOf[number] = cell[i]));
   shapes.polygon.forEach((polygon, i) => {
     if (polygon.net === undefined) return;
-    const place = shapes.place[i];
-    const xy = polygon.xy.map(([x, y]) => placed(place, x, y));
-    if (place.xx * place.yy - place.xy * place.yx < 0) xy.reverse();
-    visit(polygon, unitNet(polygon.net, cells[cellOf[i]]?.name), xy);
+    visit(polygon, unitNet(polygon.net, cells[cellOf[i]]?.name), placedOutline(polygon, shapes.place[i]));
   });
   return labels;
 }
 
+function placedOutline({ xy }: Polygon, place: Place): Point[] {
+  const outline = xy.map(([x, y]) => placed(place, x, y));
+  return place.xx * place.yy - place.xy * place.yx < 0 ? outline.reverse() : outline;
+}
+
+/** The drawing in one structure: every shape and every label of it where it lies. */
+export function inOneStructure(p: Polygons): Structure {
+  const { labels, shapes } = flatten(p.structures, p.topStructure);
+  const polygons = shapes.polygon.map((q, i) => ({ ...q, xy: placedOutline(q, shapes.place[i]) }));
+  return { name: p.topStructure, polygons, references: [], labels };
+}
+
 /** "-" has both plates on ground, "=" its top plate on TOP; every other cell is a capacitor with its top plate on TOP. */
-function unitNet(net: string, cell: string | undefined): string {
+export function unitNet(net: string, cell: string | undefined): string {
   if (net === 'TOP' && cell === '-') return VSS;
   if (net !== 'BOTTOM' || cell === undefined) return net;
   return cell === '-' || cell === '=' ? VSS : cell;

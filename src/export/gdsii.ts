@@ -1,6 +1,7 @@
 import type { Label, Point, Polygon, Reference, Structure } from '../core/layout.js';
 import { InputError } from '../core/problem.js';
 import type { Polygons } from '../spec/polygons.js';
+import { inOneStructure } from './drawn-shapes.js';
 import { isStreamName, latticeEnds, libraryNameWanted, streamProblems } from './stream-limits.js';
 import * as record from './stream-records.js';
 
@@ -8,6 +9,8 @@ export interface StreamOptions {
   /** YYYY-MM-DD, written as the date of the library and of each structure. */
   readonly date?: string;
   readonly libraryName?: string;
+  /** Everything in the top structure, without references. */
+  readonly flat?: boolean;
 }
 
 const VERSION = 600;
@@ -15,7 +18,8 @@ const VERSION = 600;
 const NO_DATE = '2000-01-01';
 
 /**
- * The drawing as a GDSII stream file: the same structures, one reference record per reference (an array record where it repeats).
+ * The drawing as a GDSII stream file: the same structures, one reference record per reference (an array record where it repeats); or,
+ * flat, one structure.
  *
  * @param p whole database units; polygons not closed, the writer closes them.
  * @param options the library is named after the top structure unless told otherwise.
@@ -36,6 +40,11 @@ export function writeStream(p: Polygons, options: StreamOptions = {}): Uint8Arra
   const date = dateParts(options.date ?? NO_DATE);
   if (date === undefined)
     problems.push({ pointer: '', found: `date ${JSON.stringify(options.date)}`, wanted: 'a day as YYYY-MM-DD' });
+  let { structures } = p;
+  if (options.flat === true && problems.length === 0) {
+    structures = [inOneStructure(p)];
+    problems.push(...streamProblems({ ...p, structures }));
+  }
   if (problems.length > 0 || date === undefined) throw new InputError(problems);
 
   const out = new record.StreamRecords();
@@ -47,7 +56,7 @@ export function writeStream(p: Polygons, options: StreamOptions = {}): Uint8Arra
     .real(p.databaseUnit_m / p.userUnit_m)
     .real(p.databaseUnit_m)
     .end();
-  for (const s of p.structures) writeStructure(out, s, date);
+  for (const s of structures) writeStructure(out, s, date);
   out.bare(record.ENDLIB);
   return out.bytes();
 }

@@ -5,7 +5,7 @@ import type { Polygons } from '../spec/polygons.js';
 /** A record holds 8191 points; one of them closes the outline. */
 const MOST_CORNERS = 8190;
 const MOST_REPEATS = 0x7fff;
-const LONGEST_NAME = 32;
+export const LONGEST_NAME = 32;
 const LONGEST_LABEL = 512;
 const MOST_NUMBER = 255;
 

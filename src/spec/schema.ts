@@ -3,6 +3,7 @@ import { floorplanSchema } from './schema-floorplan.js';
 import { layersSchema } from './schema-layers.js';
 import { metricsSchema } from './schema-metrics.js';
 import type { Schema } from './schema-parts.js';
+import { pinsSchema } from './schema-pins.js';
 import { polygonsSchema } from './schema-polygons.js';
 import { technologySchema } from './schema-technology.js';
 
@@ -13,6 +14,7 @@ const schemas = {
   metrics: metricsSchema,
   technology: technologySchema,
   layers: layersSchema,
+  pins: pinsSchema,
 } satisfies Record<string, Schema>;
 
 /** Names of the file formats: `format` is `steelyard/NAME`. */

@@ -5,6 +5,7 @@ import { applyLayerMap } from '../../src/spec/layer-map.js';
 import { parseArray } from '../../src/spec/parse-array.js';
 import { parseFloorplan } from '../../src/spec/parse-floorplan.js';
 import { parseLayerMap } from '../../src/spec/parse-layer-map.js';
+import { parsePins } from '../../src/spec/parse-pins.js';
 import { parsePolygons } from '../../src/spec/parse-polygons.js';
 import { parseTechnology } from '../../src/spec/parse-technology.js';
 import { schema, schemaNames } from '../../src/spec/schema.js';
@@ -19,6 +20,7 @@ const files = {
   metrics: kiln4('kiln4.metrics.json'),
   technology: kiln4('parallel-plate.technology.json'),
   layers: map,
+  pins: '{"format": "steelyard/pins", "version": 1, "pins": [{"pin": "B0", "name": "dac_d[0]"}]}',
 };
 
 describe('files drawn by other code', () => {
@@ -28,6 +30,7 @@ describe('files drawn by other code', () => {
     expect(linesOf(parsePolygons(files.polygons, 'p'))).toEqual([]);
     expect(linesOf(parseTechnology(files.technology, 't'))).toEqual([]);
     expect(linesOf(parseLayerMap(files.layers, 'l'))).toEqual([]);
+    expect(linesOf(parsePins(files.pins, 'n', ['B0', 'B1', 'TOP']))).toEqual([]);
   });
 
   it('are read to the value that JSON.parse gives, a byte-order mark or not', () => {
