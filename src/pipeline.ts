@@ -16,14 +16,17 @@ import { drawingRules, pitchOf, type Rules } from './hookup/rules.js';
 import { type Hookup, layWires } from './hookup/wires.js';
 import { analyseGradient, type GradientFigures } from './linearity/analyse-gradient.js';
 import { firstOrderTerm, secondOrderTerm } from './linearity/cost-terms.js';
+import { columnCorrelation, comparisonLength, correlationOf } from './linearity/correlation.js';
+import { mismatchTerm } from './linearity/mismatch-term.js';
 import { secondOrderInl } from './linearity/exact-inl.js';
 import { lowerBound } from './linearity/lower-bound.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
 import { ringsToReach } from './spec/options.js';
 import { workFor } from './placement/effort.js';
+import { arrangementOf, type Weighing, weighings, workOf } from './placement/emphasis.js';
 import { firstOrderBound } from './placement/first-order-bound.js';
 import { Search } from './placement/search.js';
-import type { Emphasis } from './spec/array-spec.js';
+import type { Effort } from './spec/array-spec.js';
 import type { Capacitor, Core, Floorplan, Placement, RingUnit } from './spec/floorplan.js';
 import type { Metrics } from './spec/metrics.js';
 import type { Polygons } from './spec/polygons.js';
@@ -87,34 +90,14 @@ interface Setting {
   readonly wired: boolean;
 }
 
-/**
- * What the search weighs: the second order against what emphasis `gradient` reaches on the same core and pitch, hardly above `limit` times
- * that; the column nets against the fewest that any placement could have. With `momentPrices` the nets of every column are planned first, at
- * those prices of second moments in turn, and the rows are searched afterwards; every start after them is dealt freely.
- */
-interface Weights {
-  readonly second: number;
-  readonly limit: number;
-  readonly nets: number;
-  readonly momentPrices: readonly number[];
-}
-
-const weights: Readonly<Record<Exclude<Emphasis, 'dispersed'>, Weights>> = {
-  gradient: { second: 1, limit: Infinity, nets: 0, momentPrices: [] },
-  balanced: { second: 0.5, limit: 1.25, nets: 3, momentPrices: [4, 2] },
-  wiring: { second: 0.2, limit: 1.35, nets: 6, momentPrices: [1, 4] },
-};
-const BEYOND_LIMIT = 200;
+const BEYOND_LIMIT = 60;
+/** Sigma of INL, rms over all codes, of a well dispersed placement: this times the root of its units, per sigma of one unit. */
+const DISPERSED = 0.13;
 /** One um of first order against one um^2 of second. */
 const FIRST_BEFORE_ALL = 1e3;
 
-function arrangementOf({ momentPrices }: Weights, start: number) {
-  const momentPrice = momentPrices[start % (momentPrices.length + 1)];
-  return momentPrice !== undefined && { arrangement: { columns: { momentPrice } } };
-}
-
-/** Full searches at a pitch before the tracks that the wires turn out to need are taken as they are. */
-const mostRounds = 2;
+/** Full searches at a pitch before the tracks that the wires turn out to need are taken as they are; only one where it is long. */
+const roundsFor = (units: number): number => (units < 2000 ? 2 : 1);
 
 /**
  * Starts a placement.
@@ -221,7 +204,7 @@ class Run implements PlaceRun {
  */
 function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
   const { spec, rules, inCore, wired } = setting;
-  const emphasis = weights[spec.emphasis as keyof typeof weights];
+  const emphasis = weighings[spec.emphasis];
   const bits = setting.capacitors.filter((capacitor) => capacitor.role === 'bit');
   const total = inCore.reduce((sum, capacitor) => sum + capacitor.units, 0);
   const dealt = dealtNets(inCore);
@@ -232,21 +215,24 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
   const stage = (
     grid: CoreGrid,
     tracks: number,
-    cost: Weights,
+    cost: Weighing,
     relative: number,
-    effort: { starts: number; workPerStart: number },
+    effort: Effort,
     share: number,
   ): Stage => {
     const pitch = pitchFor(tracks);
     const reference = relative * spread(grid, pitch);
     const bound = lowerBound({ ...grid, pitch_um: pitch }, bits);
+    const { starts, workPerStart } = workOf(cost, workFor(effort, total), total);
+    const dispersed = DISPERSED * Math.sqrt(total);
+    const correlation = correlationOf(grid.rows, grid.columns, pitch, comparisonLength(pitch));
     const search = new Search({
       deals: (start) =>
         dealBlocks({
           ...grid,
           nets: dealt,
           random: new Random(spec.seed, start),
-          ...arrangementOf(cost, start),
+          arrangement: arrangementOf(cost, start, () => columnCorrelation(correlation)),
         }),
       terms: (deal) => [
         // Where the first order is 0 by the deal this term stays 0; elsewhere it comes before all others.
@@ -255,11 +241,21 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
           term: bentTerm(secondOrderTerm(deal, pitch), cost.limit * reference, BEYOND_LIMIT),
           weight: cost.second / reference,
         },
-        { term: columnNetsTerm(deal), weight: cost.nets / fewestNets(grid) },
+        ...(cost.nets > 0 ? [{ term: columnNetsTerm(deal), weight: cost.nets / fewestNets(grid) }] : []),
+        ...(cost.mismatch > 0
+          ? [
+              {
+                term: bentTerm(mismatchTerm(deal, correlation), cost.mismatchLimit * dispersed, BEYOND_LIMIT),
+                weight: cost.mismatch / dispersed,
+              },
+            ]
+          : []),
       ],
-      ...effort,
+      starts,
+      workPerStart,
       seed: spec.seed,
-      stopWhen: ({ dealing }) => cost.nets === 0 && bound?.squared === secondOrderInl(dealing.deal, pitch).squared,
+      stopWhen: ({ dealing }) =>
+        cost === weighings.gradient && bound?.squared === secondOrderInl(dealing.deal, pitch).squared,
     });
     return { grid, pitch, tracks, search, share };
   };
@@ -274,12 +270,12 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
         total - bits.reduce((sum, bit) => sum + bit.units, 0),
         pitchFor(tracks),
       );
-  const quick = workFor('quick', total);
+  const mostRounds = roundsFor(total);
   let grid = grids[0];
   let relative = 1;
   let least = Infinity;
   for (const candidate of grids) {
-    const probe = stage(candidate, tracks, weights.gradient, 1, quick, 0.15 / grids.length);
+    const probe = stage(candidate, tracks, weighings.gradient, 1, 'quick', 0.15 / grids.length);
     yield probe;
     const { dealing } = probe.search.best();
     const found = secondOrderInl(dealing.deal, probe.pitch).inl_lsb_per_ppm_per_um2;
@@ -291,12 +287,12 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
   const needed = (of: Stage) =>
     wired ? planHookup(placedOf(setting, of), spec.tracksPerChannel).channels[0].length : of.tracks;
   if (wired && spec.tracksPerChannel === undefined) {
-    const scout = stage(grid, tracks, emphasis, relative, quick, 0.1);
+    const scout = stage(grid, tracks, emphasis, relative, 'quick', 0.1);
     yield scout;
     tracks = needed(scout);
   }
   for (let round = 1; ; round++) {
-    const full = stage(grid, tracks, emphasis, relative, workFor(spec.effort, total), 0.75 / mostRounds);
+    const full = stage(grid, tracks, emphasis, relative, spec.effort, 0.75 / mostRounds);
     yield full;
     const actual = needed(full);
     if (actual === tracks || round === mostRounds) return full;

@@ -6,8 +6,12 @@ const GRAIN = 16777216;
 // Half the root of the mean variance, back in units of rho.
 const UNIT = 0.5 / 4096;
 
+/** How often the largest bit's variance counts: its transition has the largest DNL, and the codes about it the largest INL. */
+const LARGEST = 3;
+
 /**
- * Random mismatch of correlated units: the root mean square over all codes of sigma INL, in LSB per sigma of one unit.
+ * Random mismatch of correlated units: the root mean square over all codes of sigma INL, in LSB per sigma of one unit, with the largest
+ * bit counted three times.
  *
  * With e_k = s_k - u_k S, u_k = w_k / W, s_k the sum over the units of bit k and S over those of all bits, the errors of all bits add up to
  * 0, so over codes of independent bits the mean of (sum d_k e_k)^2 is 1/4 sum_k Var e_k, and
@@ -34,6 +38,8 @@ class MismatchTerm implements CostTerm {
   readonly #symmetry: Uint8Array;
   /** [net]: w / W, 0 without weight. */
   readonly #share: Float64Array;
+  /** [net]: how often the net's variance counts. */
+  readonly #count: Float64Array;
   /** [net]: 1 for a bit. */
   readonly #isBit: Uint8Array;
   readonly #field: Float64Array;
@@ -63,6 +69,8 @@ class MismatchTerm implements CostTerm {
     });
     const total = weight.reduce((sum, w) => sum + w, 0);
     this.#share = weight.map((w) => (total > 0 ? w / total : 0));
+    const largest = weight.reduce((a, b) => Math.max(a, b), 0);
+    this.#count = weight.map((w) => (w > 0 && w === largest ? LARGEST : 1));
     this.#isBit = Uint8Array.from(weight, (w) => (w > 0 ? 1 : 0));
     this.#field = new Float64Array(nets * blocks);
     this.#all = new Float64Array(blocks);
@@ -146,12 +154,14 @@ class MismatchTerm implements CostTerm {
     const field = this.#field;
     const isBit = this.#isBit;
     const share = this.#share;
+    const count = this.#count;
     // C_AA with block a gone and b come: 2 (sum over b - sum over a) - 2 rho(a, b) + rho(a, a) + rho(b, b).
     const within = this.#own[a] + this.#own[b] - 2 * this.#between(a, b);
     const selfA = 2 * (field[netA * blocks + b] - field[netA * blocks + a]) + within;
     const selfB = 2 * (field[netB * blocks + a] - field[netB * blocks + b]) + within;
     const all = this.#all[b] - this.#all[a];
-    if (isBit[netA] && isBit[netB]) return selfA + selfB - 2 * (share[netA] - share[netB]) * all;
+    if (isBit[netA] && isBit[netB])
+      return count[netA] * (selfA - 2 * share[netA] * all) + count[netB] * (selfB + 2 * share[netB] * all);
     if (!isBit[netA] && !isBit[netB]) return 0;
     // A bit exchanges with the fill: all bits together gain what the bit gains.
     const sign = isBit[netA] ? 1 : -1;
@@ -164,7 +174,7 @@ class MismatchTerm implements CostTerm {
       const moved = sign * (field[net * blocks + b] - field[net * blocks + a]);
       const self = this.#self[net] + (net !== bit ? 0 : sign > 0 ? selfA : selfB);
       const withAll = this.#withAll[net] + moved + (net === bit ? sign * all + within : 0);
-      sum += self - 2 * u * withAll + u * u * allSelf;
+      sum += count[net] * (self - 2 * u * withAll + u * u * allSelf);
     }
     return sum - this.#sum;
   }
@@ -174,7 +184,7 @@ class MismatchTerm implements CostTerm {
     for (let net = 0; net < this.#share.length; net++) {
       if (!this.#isBit[net]) continue;
       const u = this.#share[net];
-      sum += this.#self[net] - 2 * u * this.#withAll[net] + u * u * this.#allSelf;
+      sum += this.#count[net] * (this.#self[net] - 2 * u * this.#withAll[net] + u * u * this.#allSelf);
     }
     this.#sum = sum > 0 ? sum : 0;
   }

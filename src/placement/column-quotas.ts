@@ -34,7 +34,7 @@ export interface ColumnQuotaRequest {
 const LEVELS = 100;
 const HOTTEST = 4;
 const COLDEST = 0.02;
-const MOVES_PER_ENTRY = 1500;
+const MOVES_PER_ENTRY = 5000;
 
 /**
  * How many pairs of each net to put into each class of columns, so that few columns hold a net while the second moment across the
@@ -90,18 +90,21 @@ export function columnQuotas(request: ColumnQuotaRequest): Int32Array {
     if (kernel === undefined || net === fill) return;
     for (let d = 0; d < classes; d++) field[net * classes + d] += count * kernel[c * classes + d];
   };
+  // The largest bit counts three times, as in the search that follows.
+  const largest = weight.reduce((a, b) => Math.max(a, b), 0);
+  const times = weight.map((w) => (w > 0 && w === largest ? 3 : 1));
   let variance = 0;
   for (let net = 0; net < fill; net++) {
     if (weight[net] === 0) continue;
     const pairsOff = (c: number) => quota[net * classes + c] - (weight[net] / total) * capacity[c];
     for (let c = 0; c < classes; c++) addToField(net, c, pairsOff(c));
-    for (let c = 0; c < classes; c++) variance += pairsOff(c) * field[net * classes + c];
+    for (let c = 0; c < classes; c++) variance += times[net] * pairsOff(c) * field[net * classes + c];
   }
   /** What the variance changes by if `count` pairs of a net go from class c to class d. */
   const varianceOf = (net: number, c: number, d: number, count: number): number => {
     if (kernel === undefined || net === fill || weight[net] === 0) return 0;
     const within = kernel[c * classes + c] + kernel[d * classes + d] - 2 * kernel[c * classes + d];
-    return count * (2 * (field[net * classes + d] - field[net * classes + c]) + count * within);
+    return times[net] * count * (2 * (field[net * classes + d] - field[net * classes + c]) + count * within);
   };
   const sigma = (v: number): number => sigmaPrice * 0.5 * Math.sqrt(v > 0 ? v : 0);
   const around = (p: number, c: number, q: number, d: number): number =>

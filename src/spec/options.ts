@@ -19,6 +19,7 @@ import {
 } from './schema-parts.js';
 import type { Schema } from './schema-parts.js';
 import type { Technology } from './technology.js';
+import { isWideUnit, matchedArea_um2, unitSize_um } from './unit-geometry.js';
 import { either } from './words.js';
 
 /** One key of an array file. This table is its only description: schema, defaults, help and documentation come from it. */
@@ -61,19 +62,19 @@ const allBut = (later: string, ...now: string[]): NonNullable<Option['works']> =
   wanted: `${either(now)} ("${later}" is not available yet)`,
 });
 
-/** Rings of dummies whose pitch, at least that of the plate and its wide spacing, add up to the proximity reach. */
-export function ringsToReach({ unit, layers, roles, proximityReach_um }: Technology): number {
-  const plate = Math.min(...unit.topPlate_um) + 2 * unit.plateEnclosure_um;
+/** Rings of dummies whose pitch, at least that of the unit and the spacing beside it, add up to the proximity reach. */
+export function ringsToReach(technology: Technology): number {
+  const { unit, layers, roles, proximityReach_um } = technology;
+  const side = Math.min(...unitSize_um(unit));
   const metal = layers.find((l) => l.name === roles.bottomPlate);
-  const wide = metal?.wideFrom_um !== undefined && plate >= metal.wideFrom_um;
-  const spacing = (wide ? metal.wideSpacing_um : metal?.minSpacing_um) ?? 0;
+  const spacing = (isWideUnit(technology) ? metal?.wideSpacing_um : metal?.minSpacing_um) ?? 0;
   const nanometres = (length_um: number): number => Math.round(length_um * 1000);
-  return Math.max(1, Math.ceil(nanometres(proximityReach_um) / nanometres(plate + spacing)));
+  return Math.max(1, Math.ceil(nanometres(proximityReach_um) / nanometres(side + spacing)));
 }
 
-/** Relative standard deviation of one unit by the area law: the coefficient over the square root of the top plate's area. */
-function unitMismatch({ mismatch, unit }: Technology): NonNullable<ArraySpec['mismatch']> {
-  const area_um2 = unit.topPlate_um[0] * unit.topPlate_um[1];
+/** Relative standard deviation of one unit by the area law: the coefficient over the square root of the unit's area. */
+export function unitMismatch({ mismatch, unit }: Technology): NonNullable<ArraySpec['mismatch']> {
+  const area_um2 = matchedArea_um2(unit);
   // A coefficient of pairs is that of a difference of two units: its variance is twice a unit's.
   const variances = mismatch.of === 'pair' ? 2 : 1;
   return {
@@ -133,7 +134,7 @@ export const options: readonly Option[] = [
   },
   {
     key: 'unit_fF',
-    values: "the technology's own; others are not available yet",
+    values: "number above 0; plate or fingers are scaled within the technology's rules, a named cell's is fixed",
     standard: "the technology's",
     help: 'capacitance of one unit',
     available: true,
@@ -195,13 +196,12 @@ export const options: readonly Option[] = [
   },
   {
     key: 'emphasis',
-    values: '`"balanced"`, `"gradient"`, `"dispersed"`, `"wiring"`; `"dispersed"` is not available yet',
+    values: '`"balanced"`, `"gradient"`, `"dispersed"`, `"wiring"`',
     standard: '`"balanced"`',
     help: 'what the placement gives most weight to',
     flag: '--emphasis <which>',
     available: true,
     schema: choice('balanced', 'gradient', 'dispersed', 'wiring'),
-    works: allBut('dispersed', 'balanced', 'gradient', 'wiring'),
     resolve: () => 'balanced',
   },
   {
@@ -250,7 +250,7 @@ export const options: readonly Option[] = [
     values: '`{localSigma_percent, correlatedSigma_percent, correlationLength_um}`',
     standard: "the technology's, scaled to the unit",
     help: 'random mismatch of one unit',
-    available: false,
+    available: true,
     schema: object({
       localSigma_percent: atLeastZero,
       correlatedSigma_percent: atLeastZero,

@@ -1,0 +1,85 @@
+import type { Emphasis } from '../spec/array-spec.js';
+import type { Dispersion } from './column-quotas.js';
+import type { Arrangement } from './dealing.js';
+import type { Work } from './effort.js';
+
+/** A deal that plans the nets of every column first, at these prices; null deals freely. */
+type ColumnPlan = { readonly moment: number; readonly dispersion: number } | null;
+
+/**
+ * What an emphasis weighs, each figure against what can be had of it: the second order against what a search for it alone reaches on the
+ * same core and pitch, random mismatch against a well dispersed placement, column nets against the fewest that any placement could have.
+ */
+export interface Weighing {
+  readonly second: number;
+  /** The second order may grow to this multiple, and hardly beyond. */
+  readonly limit: number;
+  readonly mismatch: number;
+  /** Up to this multiple mismatch hardly counts, beyond it heavily. */
+  readonly mismatchLimit: number;
+  readonly nets: number;
+  /** The deals of the starts, in turn. */
+  readonly plans: readonly ColumnPlan[];
+}
+
+const freely: readonly ColumnPlan[] = [null];
+
+export const weighings: Readonly<Record<Emphasis, Weighing>> = {
+  gradient: { second: 1, limit: Infinity, mismatch: 0, mismatchLimit: 0, nets: 0, plans: freely },
+  dispersed: { second: 0.1, limit: 1.2, mismatch: 3, mismatchLimit: 0, nets: 0, plans: freely },
+  balanced: {
+    second: 0.3,
+    limit: 1.2,
+    mismatch: 0.3,
+    mismatchLimit: 1.4,
+    nets: 3,
+    plans: [
+      { moment: 1, dispersion: 10 },
+      { moment: 2, dispersion: 10 },
+      { moment: 1, dispersion: 6 },
+      { moment: 1, dispersion: 15 },
+      { moment: 4, dispersion: 8 },
+      null,
+    ],
+  },
+  wiring: {
+    second: 0.3,
+    limit: 1.35,
+    mismatch: 0,
+    mismatchLimit: 0,
+    nets: 6,
+    plans: [
+      { moment: 1, dispersion: 0 },
+      { moment: 2, dispersion: 0 },
+      { moment: 0.7, dispersion: 0 },
+      { moment: 4, dispersion: 0 },
+      { moment: 1, dispersion: 0 },
+      null,
+    ],
+  },
+};
+
+/** How a start deals; `kernel` is the correlation between columns, made only where a plan asks for it. */
+export function arrangementOf({ plans }: Weighing, start: number, kernel: () => Dispersion['kernel']): Arrangement {
+  const plan = plans[start % plans.length];
+  if (plan === null) return 'scattered';
+  return {
+    columns: {
+      momentPrice: plan.moment,
+      ...(plan.dispersion > 0 && { dispersion: { kernel: kernel(), price: plan.dispersion } }),
+    },
+  };
+}
+
+/**
+ * The work of one search. An accepted exchange costs the mismatch term a sweep over the whole core, so where it counts a large array gets
+ * fewer trials.
+ */
+export function workOf(weighing: Weighing, work: Work, units: number): Work {
+  if (weighing.mismatch === 0) return work;
+  const large = units > 2000;
+  const share = large ? 1 / 2 : 1;
+  // Different plans want a start each; without a plan a long start is worth more than several short ones.
+  const starts = Math.ceil(work.starts / (large ? 2 : 1) / (weighing.plans.length > 1 ? 1 : 3));
+  return { starts, workPerStart: Math.ceil((share * work.starts * work.workPerStart) / starts) };
+}

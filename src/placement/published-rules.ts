@@ -1,0 +1,52 @@
+import { Infeasible } from '../core/problem.js';
+import { blockChessboard } from './rules/block-chessboard.js';
+import { chessboard } from './rules/chessboard.js';
+import { interleaved } from './rules/interleaved.js';
+import { partitionCentred } from './rules/partition-centred.js';
+import { rowByRow } from './rules/row-by-row.js';
+import { spiral } from './rules/spiral.js';
+import { TERMINATION } from './rules/square.js';
+
+export interface PublishedRule {
+  readonly name: string;
+  /** One line: what it does, and author and year. */
+  readonly help: string;
+  /**
+   * Rows of capacitor names (`B0` up, `TERM`) from the top, a square of 2^bits cells.
+   * @throws Infeasible unless the number of bits is even and at least 4.
+   */
+  readonly place: (bits: number) => string[][];
+}
+
+const rule = (name: string, help: string, place: (bits: number) => number[][]): PublishedRule => ({
+  name,
+  help,
+  place: (bits) => {
+    if (bits < 4)
+      throw new Infeasible(`The rule ${name} begins with 4 bits; ${bits} were asked for.`, 'Ask for 4 bits or more.');
+    if (bits % 2 !== 0)
+      throw new Infeasible(
+        `The rule ${name} fills a square, which an even number of bits makes; ${bits} were asked for.`,
+        `Ask for ${bits - 1} or ${bits + 1} bits.`,
+      );
+    return place(bits).map((row) => row.map((bit) => (bit === TERMINATION ? 'TERM' : `B${bit}`)));
+  },
+});
+
+/** Placement rules that the literature knows, to measure other placements against. */
+export const publishedRules: readonly PublishedRule[] = [
+  rule('row-by-row', 'bit after bit, row by row: what one draws without a rule', rowByRow),
+  rule('chessboard', 'every other cell to the largest bit, and so on (after Burcea, Habal, Graeb 2016)', chessboard),
+  rule('spiral', 'bit after bit around the centre, in reflected pairs (after Karmokar et al. 2022)', spiral),
+  rule('interleaved', 'reflected pairs from the centre out, shared in proportion (several papers)', interleaved),
+  rule(
+    'partition-centred',
+    'a unit in the middle of each of as many rectangles (after Huang et al. 2011)',
+    partitionCentred,
+  ),
+  rule(
+    'block-chessboard',
+    'small bits interleaved, the two largest in blocks around them (after Karmokar et al. 2023)',
+    blockChessboard,
+  ),
+];
