@@ -6,7 +6,7 @@ import { accessSync, constants, existsSync, readFileSync, writeFileSync } from '
 import { delimiter, join } from 'node:path';
 
 // program that the tests call: the Debian package that brings it
-const tools = { GDSIIConvert: 'gdsiiconvert' };
+const tools = { GDSIIConvert: 'gdsiiconvert', ngspice: 'ngspice' };
 
 const stop = (text) => {
   console.error(text);

@@ -14,8 +14,8 @@ export const pinName = {
 /** Netlists make no difference between capitals and small letters. */
 export const foldCase = (name: string): string => name.toLowerCase();
 
-/** Some circuit simulators take these for their own node 0. */
-export const isNodeZero = (name: string): boolean => /^(0+|gnd|ground)$/i.test(name);
+/** Some circuit simulators take these words for their own node 0. */
+export const isNodeZero = (name: string): boolean => /^(gnd|ground)$/i.test(name);
 
 /** The name that a pin bears: the map's, else its own. */
 export function pinNamer(map: PinMap | undefined): (pin: string) => string {

@@ -3,7 +3,17 @@ import { coreInCharacters } from '../../src/cli/summary.js';
 import type { Floorplan } from '../../src/index.js';
 import { MachineInMemory } from './machine-in-memory.js';
 
-const endings = ['floorplan.json', 'metrics.json', 'polygons.json', 'gds', 'floorplan.svg', 'hookup.svg'];
+const endings = [
+  'floorplan.json',
+  'metrics.json',
+  'gds',
+  'polygons.json',
+  'floorplan.svg',
+  'hookup.svg',
+  'cir',
+  'lvs.cir',
+  'lef',
+];
 const array = { format: 'steelyard/array', version: 1, name: 'rain', bits: 4, effort: 'quick' };
 
 async function placed(line: string, machine = new MachineInMemory()): Promise<MachineInMemory> {

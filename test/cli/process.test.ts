@@ -15,7 +15,17 @@ afterEach(() => {
 });
 
 const quick = ['place', '--bits', '4', '--effort', 'quick'];
-const endings = ['floorplan.json', 'floorplan.svg', 'gds', 'hookup.svg', 'metrics.json', 'polygons.json'];
+const endings = [
+  'cir',
+  'floorplan.json',
+  'floorplan.svg',
+  'gds',
+  'hookup.svg',
+  'lef',
+  'lvs.cir',
+  'metrics.json',
+  'polygons.json',
+];
 const text = (path: string) => readFileSync(join(folder, path), 'utf8');
 const write = (path: string, content: string) => {
   writeFileSync(join(folder, path), content);

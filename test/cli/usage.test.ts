@@ -36,10 +36,22 @@ describe('a command line that is none ends with 2, says what was found and what 
     ['check', 'check: found no FILE; wanted: steelyard check [options] <FILE> [POLYGONS]'],
     ['check a b c', 'check: found too many arguments'],
     ['export', 'export: found no --to; wanted --to <formats>'],
-    ['export a.json --to dxf', 'export --to: found "dxf"; wanted one or more of gds, polygons, svg'],
-    ['export a.json --to gds,spice', 'export --to: found spice, not available yet; wanted one or more of gds,'],
-    ['export a.json --to lef', 'export --to: found lef, not available yet'],
-    ['export a.json --to report', 'export --to: found report, not available yet'],
+    ['export a.json --to dxf', 'export --to: found "dxf"; wanted one or more of gds, polygons, svg, spice, lef'],
+    ['export a.json --to report', 'export --to: found report, not available yet; wanted one or more of gds,'],
+    ['export a.json --to spice --devices all', 'export --devices: found "all"; wanted units or merged'],
+    ['export a.json --to spice --dummies no', 'export --dummies: found "no"; wanted include or omit'],
+    ['export a.json --to polygons --flat', 'export --flat: found no file that it changes; wanted --to with gds'],
+    ['export a.json --to svg --layers m.json', 'export --layers: found no file that it changes; wanted --to with gds'],
+    ['export a.json --to polygons --pins m.json', 'export --pins: found no file that it changes; wanted --to with gds'],
+    [
+      'export a.json --to lef --devices units',
+      'export --devices: found no file that it changes; wanted --to with spice',
+    ],
+    [
+      'export a.json --to gds --dummies omit',
+      'export --dummies: found no file that it changes; wanted --to with spice',
+    ],
+    ['export a.json --to lef --date 2031-01-01', 'export --date: found no file that it changes; wanted --to with gds'],
     ['schema arrays', 'schema: found "arrays"; wanted one of array, floorplan, polygons, metrics, '],
     ['technology silver', 'technology: found "silver"; wanted one of '],
     ['technology ../package', 'technology: found "../package"; wanted one of '],
@@ -56,11 +68,7 @@ describe('a command line that is none ends with 2, says what was found and what 
     ['place --bits 4', '--candidates 3'],
     ['place --bits 4', '--samples 100'],
     ['place --bits 4', '--workers=2'],
-    ['export a.json --to gds', '--pins map.json'],
-    ['export a.json --to gds', '--flat'],
     ['export a.json --to gds', '--stub-cell'],
-    ['export a.json --to gds', '--devices units'],
-    ['export a.json --to gds', '--dummies omit'],
   ];
   it.each(later)('%s %s is refused by name', async (command, option) => {
     const { code, err } = await outcome(`${command} ${option}`);
