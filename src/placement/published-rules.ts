@@ -41,7 +41,7 @@ export const publishedRules: readonly PublishedRule[] = [
   rule('interleaved', 'reflected pairs from the centre out, shared in proportion (several papers)', interleaved),
   rule(
     'partition-centred',
-    'a unit in the middle of each of as many rectangles (after Huang et al. 2011)',
+    'a unit in the middle of each of as many rectangles (after Huang et al. 2015)',
     partitionCentred,
   ),
   rule(

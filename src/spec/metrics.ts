@@ -34,6 +34,14 @@ export interface HookupFigures {
   readonly wireLength_um?: number;
 }
 
+/** Standard deviations at the worst code. `placement`: of units of variance 1, correlated by their distance alone. */
+export interface MismatchFigures {
+  readonly inlSigma_lsb?: number;
+  readonly dnlSigma_lsb?: number;
+  readonly inlSigmaLeastSquares_lsb?: number;
+  readonly placement: { readonly inlSigma_perUnitSigma: number; readonly dnlSigma_perUnitSigma?: number };
+}
+
 export interface Metrics {
   readonly format: 'steelyard/metrics';
   readonly version: 1;
@@ -45,9 +53,7 @@ export interface Metrics {
     readonly second: SecondOrder;
     readonly own?: { readonly inl_lsb: number; readonly dnl_lsb?: number };
   };
-  readonly mismatch?: {
-    readonly placement: { readonly inlSigma_perUnitSigma: number; readonly dnlSigma_perUnitSigma: number };
-  };
+  readonly mismatch?: MismatchFigures;
   readonly hookup: HookupFigures;
   readonly area_um2?: number;
 }

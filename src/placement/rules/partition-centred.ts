@@ -22,8 +22,8 @@ function centres(side: number, count: number): Position[] {
  * A bit of u units cuts the core into u equal rectangles and puts a unit as near as it can to the centre of each, smaller bits first. The
  * termination and bit 0 take the two cells at the centre, the largest bit what is left over; every unit has its reflection.
  *
- * After C.-C. Huang, J.-E. Chen, P.-W. Luo, C.-L. Wey, "Yield-Award Placement Optimization for Switched-Capacitor Analog Integrated
- * Circuits" and later work, IEEE SOCC 2011 (from memory).
+ * After C.-C. Huang, C.-L. Wey, J.-E. Chen, P.-W. Luo, "Performance-Driven Unit-Capacitor Placement of Successive-Approximation-Register
+ * ADCs", ACM Transactions on Design Automation of Electronic Systems, 2015 (from memory).
  */
 export function partitionCentred(bits: number): number[][] {
   const square = new Square(1 << (bits / 2));
