@@ -20,8 +20,9 @@ import { columnCorrelation, comparisonLength, correlationOf } from './linearity/
 import { mismatchTerm } from './linearity/mismatch-term.js';
 import { secondOrderInl } from './linearity/exact-inl.js';
 import { lowerBound } from './linearity/lower-bound.js';
+import { mismatchFigures } from './linearity/mismatch.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
-import { ringsToReach } from './spec/options.js';
+import { ringsToReach, unitMismatch } from './spec/options.js';
 import { workFor } from './placement/effort.js';
 import { arrangementOf, type Weighing, weighings, workOf } from './placement/emphasis.js';
 import { firstOrderBound } from './placement/first-order-bound.js';
@@ -90,7 +91,7 @@ interface Setting {
   readonly wired: boolean;
 }
 
-const BEYOND_LIMIT = 60;
+const BEYOND_LIMIT = 150;
 /** Sigma of INL, rms over all codes, of a well dispersed placement: this times the root of its units, per sigma of one unit. */
 const DISPERSED = 0.13;
 /** One um of first order against one um^2 of second. */
@@ -271,26 +272,29 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
         pitchFor(tracks),
       );
   const mostRounds = roundsFor(total);
-  let grid = grids[0];
-  let relative = 1;
-  let least = Infinity;
-  for (const candidate of grids) {
-    const probe = stage(candidate, tracks, weighings.gradient, 1, 'quick', 0.15 / grids.length);
+  // What each orientation can have, and with what the choice between them begins.
+  const probes: { grid: CoreGrid; relative: number; least: number }[] = [];
+  for (const grid of grids) {
+    const probe = stage(grid, tracks, weighings.gradient, 1, 'quick', 0.15 / grids.length);
     yield probe;
-    const { dealing } = probe.search.best();
-    const found = secondOrderInl(dealing.deal, probe.pitch).inl_lsb_per_ppm_per_um2;
-    if (found >= least) continue;
-    least = found;
-    grid = candidate;
-    if (found > 0) relative = found / spread(candidate, probe.pitch);
+    const least = secondOrderInl(probe.search.best().dealing.deal, probe.pitch).inl_lsb_per_ppm_per_um2;
+    probes.push({ grid, least, relative: least > 0 ? least / spread(grid, probe.pitch) : 1 });
   }
+  const bySecondOrder = probes.reduce((a, b) => (b.least < a.least ? b : a));
+  let { grid, relative } = bySecondOrder;
   const needed = (of: Stage) =>
     wired ? planHookup(placedOf(setting, of), spec.tracksPerChannel).channels[0].length : of.tracks;
-  if (wired && spec.tracksPerChannel === undefined) {
-    const scout = stage(grid, tracks, emphasis, relative, 'quick', 0.1);
+  const scouts: Stage[] = [];
+  for (const probe of spec.emphasis === 'wiring' ? probes : [bySecondOrder]) {
+    const scout = stage(probe.grid, tracks, emphasis, probe.relative, 'quick', 0.1);
     yield scout;
-    tracks = needed(scout);
+    scouts.push(scout);
   }
+  // The fewer wires decide for emphasis wiring, whatever else it gives up.
+  const netsOf = ({ search }: Stage) => columnNetsTerm(search.best().dealing.deal).value();
+  const scout = scouts.reduce((a, b) => (netsOf(b) < netsOf(a) ? b : a));
+  ({ grid, relative } = probes.find((probe) => probe.grid === scout.grid)!);
+  if (spec.tracksPerChannel === undefined) tracks = needed(scout);
   for (let round = 1; ; round++) {
     const full = stage(grid, tracks, emphasis, relative, spec.effort, 0.75 / mostRounds);
     yield full;
@@ -365,6 +369,7 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       core,
       ...(placement && { status: placement.status }),
       gradient: metricsGradient,
+      mismatch: mismatchFigures({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology)),
       ...figures,
     };
     const findings = [...checkFloorplan(complete), ...(polygons ? checkPolygons(polygons) : [])];

@@ -90,8 +90,9 @@ export function planHookup(placed: Placed, tracks?: number): Plan & { readonly p
         : lay(assignSides(problem, tracks), tracks);
     if (asked !== null) return asked;
   }
-  // One track more than the nets need is always enough for fill dummies and a termination.
-  const found = lay(least, least.tracks) ?? lay(assignSides(problem, least.tracks + 1), least.tracks + 1)!;
+  // One track more than the nets need is always enough for fill dummies and a termination, if the nets do not take it.
+  const wider = least.tracks + 1;
+  const found = lay(least, least.tracks) ?? lay(assignSides(problem, wider), wider) ?? lay(least, wider)!;
   if (tracks !== undefined)
     throw new Infeasible(
       `This placement needs more than the ${tracks} track${tracks === 1 ? '' : 's'} per channel asked for.`,
