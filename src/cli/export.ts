@@ -99,19 +99,18 @@ export async function exportFiles(io: Io, file: string, flags: ExportFlags): Pro
   const technology = flags.layers === undefined ? own.technology : await withLayers(io, own.technology, flags.layers);
   const pins = flags.pins === undefined ? undefined : await pinsFrom(io, own.floorplan, flags.pins);
   const draw = (on: Technology) => inFile(file, () => drawFloorplan(own.floorplan, on, { keepHookup: true }));
-  const drawn = draw(technology);
-  // A map may put two layers on one number: what is told apart by it is taken from the technology's own numbers.
-  const byNumber = flags.layers !== undefined && (chosen.includes('spice') || chosen.includes('lef'));
-  const onOwnLayers = byNumber ? draw(own.technology).polygons : undefined;
+  // A map may put two layers on one number: checks, netlists and the abstract tell layers apart by the technology's own.
+  const asDrawn = draw(own.technology);
+  const drawn = technology === own.technology ? asDrawn : draw(technology);
   const files = await drawingFiles(drawn, chosen, flags.out ?? drawn.metrics.name, {
     ...options,
     ...(pins && { pins }),
-    ...(onOwnLayers && { onOwnLayers }),
+    ...(asDrawn.polygons && { onOwnLayers: asDrawn.polygons }),
   });
   const output = lines(files.map(({ path }) => shown(path)));
   io.writeFiles(files);
   await io.stdout(output);
-  const remarks = [...own.notes, ...drawn.notes, ...drawn.warnings, ...findingLines(drawn.findings)];
+  const remarks = [...own.notes, ...drawn.notes, ...drawn.warnings, ...findingLines(asDrawn.findings)];
   if (remarks.length > 0) await io.stderr(lines(remarks.map(shown)));
-  return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
+  return asDrawn.findings.length > 0 ? exit.failedCheck : exit.done;
 }

@@ -58,13 +58,18 @@ describe('check', () => {
   it('tells a drawing of another floorplan: 1', async () => {
     const own = machine();
     const floorplan = own.json(floorplanFile);
-    own.put('turned.json', {
+    // Two cells of different bits change places.
+    const cells: string[] = floorplan.cells.flat();
+    const [one, other] = [cells.indexOf('B3'), cells.indexOf('B2')];
+    [cells[one], cells[other]] = ['B2', 'B3'];
+    const { rows, columns } = floorplan.core;
+    own.put('changed.json', {
       ...floorplan,
       hookup: undefined,
       placement: undefined,
-      cells: [...floorplan.cells].reverse(),
+      cells: Array.from({ length: rows }, (_, row) => cells.slice(row * columns, (row + 1) * columns)),
     });
-    expect(await own.run(`check turned.json ${polygonsFile}`)).toBe(1);
+    expect(await own.run(`check changed.json ${polygonsFile}`)).toBe(1);
     expect(own.out).not.toContain('no findings');
   });
 
@@ -99,8 +104,8 @@ describe('check', () => {
 describe('export', () => {
   it('gives the same files as place did, in the formats asked for', async () => {
     const own = machine();
-    expect(await own.run(`export ${floorplanFile} --to svg,gds,polygons --out e`)).toBe(0);
-    const endings = ['gds', 'polygons.json', 'floorplan.svg', 'hookup.svg'];
+    expect(await own.run(`export ${floorplanFile} --to lef,svg,spice,gds,polygons --out e`)).toBe(0);
+    const endings = ['gds', 'polygons.json', 'floorplan.svg', 'hookup.svg', 'cir', 'lvs.cir', 'lef'];
     expect(own.written[0]?.map(({ path }) => path)).toEqual(endings.map((ending) => `e/cdac4.${ending}`));
     for (const ending of endings) expect(own.text(`e/cdac4.${ending}`)).toBe(placed.text(`o/cdac4.${ending}`));
     expect(own.out).toBe(endings.map((ending) => `e/cdac4.${ending}\n`).join(''));
@@ -148,5 +153,97 @@ describe('export', () => {
     const own = machine().put('map.json', map);
     expect(await own.run(`export ${floorplanFile} --to gds --layers map.json`)).toBe(2);
     expect(own.err).toMatch(/^map\.json \/layers\/0\/name: found "plate-mettle"; wanted "plate-metal"/);
+  });
+
+  it('writes the netlists that are asked for', async () => {
+    const own = machine();
+    expect(await own.run(`export ${floorplanFile} --to spice --out e --devices merged --dummies omit`)).toBe(0);
+    expect(own.written[0]?.map(({ path }) => path)).toEqual(['e/cdac4.cir', 'e/cdac4.lvs.cir']);
+    expect(own.text('e/cdac4.cir')).not.toMatch(/dummy/);
+    expect(own.text('e/cdac4.lvs.cir')).toMatch(/^CB3 TOP B3 cpp w=4.4u l=4.4u m=8$/m);
+    expect(own.text('e/cdac4.lvs.cir')).not.toMatch(/dummy/);
+    expect(own.text('e/cdac4.lvs.cir')).not.toBe(placed.text('o/cdac4.lvs.cir'));
+    const plain = machine();
+    expect(await plain.run(`export ${floorplanFile} --to spice --out e --devices units --dummies include`)).toBe(0);
+    expect(plain.text('e/cdac4.lvs.cir')).toBe(placed.text('o/cdac4.lvs.cir'));
+  });
+
+  it('writes a flat stream file, and nothing else flat', async () => {
+    const own = machine();
+    expect(await own.run(`export ${floorplanFile} --to gds,polygons --out e --flat`)).toBe(0);
+    expect(own.text('e/cdac4.polygons.json')).toBe(placed.text(polygonsFile));
+    expect(own.text('e/cdac4.gds')).not.toContain('cdac4_unit');
+    expect(placed.text('o/cdac4.gds')).toContain('cdac4_unit');
+  });
+
+  const pins = {
+    format: 'steelyard/pins',
+    version: 1,
+    pins: [
+      { pin: 'B0', name: 'sar_d[0]' },
+      { pin: 'TOP', name: 'vdac' },
+    ],
+  };
+
+  it("puts the user's pin names into every file but the polygon list", async () => {
+    const own = machine().put('names.json', pins);
+    const to = 'gds,polygons,svg,spice,lef';
+    expect(await own.run(`export ${floorplanFile} --to ${to} --out e --pins names.json`)).toBe(0);
+    for (const ending of ['polygons.json', 'floorplan.svg'])
+      expect(own.text(`e/cdac4.${ending}`)).toBe(placed.text(`o/cdac4.${ending}`));
+    for (const ending of ['gds', 'hookup.svg', 'cir', 'lvs.cir', 'lef']) {
+      expect(own.text(`e/cdac4.${ending}`)).toContain('sar_d[0]');
+      expect(own.text(`e/cdac4.${ending}`)).toContain('vdac');
+    }
+    expect(own.text('e/cdac4.lef')).not.toMatch(/PIN (B0|TOP)\b/);
+  });
+
+  it('lists every problem of a pin map, with its place', async () => {
+    const text = JSON.stringify(
+      {
+        ...pins,
+        pins: [
+          { pin: 'BO', name: 'a' },
+          { pin: 'TOP', name: 'vss' },
+        ],
+      },
+      null,
+      1,
+    );
+    const own = machine().put('names.json', text);
+    expect(await own.run(`export ${floorplanFile} --to gds --pins names.json`)).toBe(2);
+    expect(own.err).toMatch(/^names\.json:6:\d+ \/pins\/0\/pin: found "BO"; wanted "B0"/m);
+    expect(own.err).toMatch(/^names\.json:11:\d+ \/pins\/1\/name: found "vss", which pin "VSS" bears/m);
+    expect(own.written).toEqual([]);
+  });
+
+  it('tells layers apart by the numbers of the technology where a map puts two on one', async () => {
+    const map = {
+      format: 'steelyard/layers',
+      version: 1,
+      allowShared: true,
+      layers: ['lower', 'plate', 'upper'].map((name) => ({
+        name: `${name}-metal-pin`,
+        stream: { layer: 99, datatype: 0 },
+      })),
+    };
+    const own = machine().put('map.json', map);
+    expect(await own.run(`export ${floorplanFile} --to gds,spice,lef --out e --layers map.json`)).toBe(0);
+    for (const ending of ['cir', 'lvs.cir', 'lef'])
+      expect(own.text(`e/cdac4.${ending}`)).toBe(placed.text(`o/cdac4.${ending}`));
+    expect(own.text('e/cdac4.gds')).not.toBe(placed.text('o/cdac4.gds'));
+  });
+
+  it('refuses an abstract without names in LEF; place says that there is none, and writes the rest', async () => {
+    const technology = placed.json(floorplanFile).technology;
+    delete technology.layers[0].lefName;
+    const own = machine().put('mine.technology.json', technology);
+    expect(await own.run('place --bits 4 --effort quick --out o --technology mine.technology.json')).toBe(0);
+    expect(own.out).toContain('No lef files: found no "lefName" for layer "lower-metal"');
+    expect(own.written[0]?.map(({ path }) => path)).toContain('o/cdac4.lvs.cir');
+    expect(own.written[0]?.map(({ path }) => path)).not.toContain('o/cdac4.lef');
+    expect(await own.run(`export ${floorplanFile} --to gds,lef --out e`)).toBe(2);
+    expect(own.err).toContain('no "lefName" for layer "lower-metal"');
+    expect(own.written).toHaveLength(1);
   });
 });

@@ -3,11 +3,15 @@ import { mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import fc from 'fast-check';
-import { parseGDS, RecordType } from 'gdsii';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import type { Point, Polygon, Reference, Structure } from '../../src/core/layout.js';
+import type { Polygon, Reference } from '../../src/core/layout.js';
 import { writeStream } from '../../src/export/gdsii.js';
-import type { Polygons } from '../../src/spec/polygons.js';
+import { withPinNames } from '../../src/export/pin-names.js';
+import { applyLayerMap } from '../../src/spec/layer-map.js';
+import type { Technology } from '../../src/spec/technology.js';
+import { drawFloorplan } from '../../src/pipeline.js';
+import { drawn, parallelPlate } from '../pipeline/drawn.js';
+import { placedByHand, readRecords, sayable } from '../stream.js';
 import { kilnPolygons, reference, structure, withStructures } from '../export/arrays.js';
 
 // Two readers that have nothing to do with this project: the npm package gdsii (records) and Debian's gdsiiconvert, which places the
@@ -16,68 +20,6 @@ import { kilnPolygons, reference, structure, withStructures } from '../export/ar
 let directory = '';
 beforeAll(() => (directory = mkdtempSync(join(tmpdir(), 'stream-'))));
 afterAll(() => rmSync(directory, { recursive: true }));
-
-/** The structures as the records tell them. */
-function readRecords(bytes: Uint8Array): { units: unknown; structures: Structure[] } {
-  const structures: { -readonly [K in keyof Structure]: Structure[K][number][] | string }[] = [];
-  let units: unknown;
-  let fields = new Map<RecordType, unknown>();
-  let kind: RecordType | undefined;
-  for (const { tag, data } of parseGDS(new Uint8Array(bytes))) {
-    if (tag === RecordType.UNITS) units = data;
-    else if (tag === RecordType.STRNAME) structures.push({ name: data, polygons: [], references: [], labels: [] });
-    else if ([RecordType.BOUNDARY, RecordType.SREF, RecordType.AREF, RecordType.TEXT].includes(tag)) {
-      kind = tag;
-      fields = new Map();
-    } else if (tag === RecordType.ENDEL) {
-      const into = structures.at(-1) as unknown as { polygons: unknown[]; references: unknown[]; labels: unknown[] };
-      const xy = fields.get(RecordType.XY) as [number, number][];
-      if (kind === RecordType.BOUNDARY) {
-        expect(xy.at(-1)).toEqual(xy[0]);
-        into.polygons.push({
-          layer: fields.get(RecordType.LAYER),
-          datatype: fields.get(RecordType.DATATYPE),
-          xy: xy.slice(0, -1),
-        });
-      } else if (kind === RecordType.TEXT)
-        into.labels.push({
-          text: fields.get(RecordType.STRING),
-          layer: fields.get(RecordType.LAYER),
-          texttype: fields.get(RecordType.TEXTTYPE),
-          xy: xy[0],
-        });
-      else {
-        const { columns, rows } = (fields.get(RecordType.COLROW) ?? { columns: 1, rows: 1 }) as Reference;
-        const step = (end: number, count: number) => xy[end].map((value, i) => (value - xy[0][i]) / count);
-        const strans = ((fields.get(RecordType.STRANS) as number | undefined) ?? 0) & 0xffff;
-        expect([0, 0x8000]).toContain(strans);
-        expect(xy).toHaveLength(kind === RecordType.AREF ? 3 : 1);
-        into.references.push({
-          structure: fields.get(RecordType.SNAME),
-          origin: xy[0],
-          columns,
-          rows,
-          columnStep: kind === RecordType.AREF ? step(1, columns) : [0, 0],
-          rowStep: kind === RecordType.AREF ? step(2, rows) : [0, 0],
-          mirrored: strans === 0x8000,
-          angle_deg: fields.get(RecordType.ANGLE) ?? 0,
-        });
-      }
-    } else fields.set(tag, data);
-  }
-  return { units, structures: structures as unknown as Structure[] };
-}
-
-/** What a stream file can say of the structures: no nets, no parts, no cells; steps only where something repeats. */
-const sayable = (structures: readonly Structure[]): Structure[] =>
-  structures.map(({ name, polygons, references, labels }) => ({
-    name,
-    polygons: polygons.map(({ layer, datatype, xy }) => ({ layer, datatype, xy })),
-    references: references.map(({ cells: _, ...r }) =>
-      r.columns === 1 && r.rows === 1 ? { ...r, columnStep: [0, 0], rowStep: [0, 0] } : r,
-    ),
-    labels,
-  }));
 
 /** Layer and corners of every polygon, layer and place of every label, as the other program has placed them. */
 function convert(bytes: Uint8Array): string[] {
@@ -105,34 +47,6 @@ function convert(bytes: Uint8Array): string[] {
   return found.sort();
 }
 
-/** The same by brute force: every instance in turn, complex numbers for points. */
-function placed(p: Polygons): string[] {
-  const found: string[] = [];
-  type Move = (point: Point) => Point;
-  const visit = (name: string, move: Move): void => {
-    const s = p.structures.find((one) => one.name === name)!;
-    const written = (point: Point) =>
-      move(point)
-        .map((value) => value + 0)
-        .join(',');
-    for (const q of s.polygons) found.push(`${q.layer}: ${q.xy.map(written).join(' ')}`);
-    for (const l of s.labels) found.push(`${l.layer}: ${l.text} at ${written(l.xy)}`);
-    for (const r of s.references)
-      for (let i = 0; i < r.columns; i++)
-        for (let j = 0; j < r.rows; j++)
-          visit(r.structure, ([x, y]) => {
-            let [re, im] = [x, r.mirrored ? -y : y];
-            for (let turned = 0; turned < r.angle_deg; turned += 90) [re, im] = [-im, re];
-            return move([
-              re + r.origin[0] + i * r.columnStep[0] + j * r.rowStep[0],
-              im + r.origin[1] + i * r.columnStep[1] + j * r.rowStep[1],
-            ]);
-          });
-  };
-  visit(p.topStructure, (point) => point);
-  return found.sort();
-}
-
 describe('a small array', () => {
   const bytes = writeStream(kilnPolygons());
 
@@ -147,9 +61,68 @@ describe('a small array', () => {
 
   it('is placed by another program as by the polygon list', () => {
     const found = convert(bytes);
-    expect(found).toEqual(placed(kilnPolygons()));
+    expect(found).toEqual(placedByHand(kilnPolygons()));
     // 212 of its own and 5 in each of 35 units; 8 labels.
     expect(found).toHaveLength(212 + 5 * 35 + 8);
+  });
+});
+
+describe('an array in all its forms', () => {
+  const { floorplan } = drawn({ bits: 5, effort: 'quick' });
+  const map = {
+    format: 'steelyard/layers',
+    version: 1,
+    layers: [
+      { name: 'plate-metal', stream: { layer: 123, datatype: 4 } },
+      { name: 'lower-metal-pin', stream: { layer: 200, datatype: 7 } },
+      { name: 'boundary', stream: { layer: 0, datatype: 0 } },
+    ],
+  } as const;
+  const mapped = applyLayerMap(parallelPlate, map);
+  if (!mapped.ok) throw new Error('the map does not fit the template');
+  const numbersOf = (technology: Technology) =>
+    new Map([...technology.layers, ...technology.vias].map(({ name, stream }) => [name, stream]));
+
+  it.each<[string, Technology, boolean]>([
+    ['hierarchical, own numbers', parallelPlate, false],
+    ['hierarchical, mapped', mapped.value, false],
+    ['flat, own numbers', parallelPlate, true],
+    ['flat, mapped', mapped.value, true],
+  ])('%s: both readers see the shapes, layers and labels of the polygon list', (_, technology, flat) => {
+    const p = drawFloorplan(floorplan, technology, { keepHookup: true }).polygons!;
+    const bytes = writeStream(p, { flat });
+    expect(convert(bytes)).toEqual(placedByHand(p));
+    const { structures } = readRecords(bytes);
+    if (flat) {
+      expect(structures.map(({ name, references }) => [name, references.length])).toEqual([[p.topStructure, 0]]);
+      expect(placedByHand({ ...p, structures })).toEqual(placedByHand(p));
+    } else expect(structures).toEqual(sayable(p.structures));
+    // Layer and datatype of everything, not the layer alone: the count of each number is the count of its layer.
+    const count = (list: typeof structures, at: { layer: number; datatype: number }) =>
+      list.flatMap((s) => s.polygons).filter((q) => q.layer === at.layer && q.datatype === at.datatype).length;
+    const plain = readRecords(
+      writeStream(drawFloorplan(floorplan, parallelPlate, { keepHookup: true }).polygons!, { flat }),
+    );
+    for (const [name, stream] of numbersOf(technology))
+      expect([name, count(structures, stream)]).toEqual([
+        name,
+        count(plain.structures, numbersOf(parallelPlate).get(name)!),
+      ]);
+    expect(writeStream(p, { flat })).toEqual(bytes);
+  });
+
+  it.each([false, true])("the user's pin names stand on the pin layers, flat %s", (flat) => {
+    const p = drawFloorplan(floorplan, parallelPlate, { keepHookup: true }).polygons!;
+    const pins = [
+      { pin: 'B0', name: 'sar_d[0]' },
+      { pin: 'TOP', name: 'vdac' },
+    ];
+    const found = convert(writeStream(withPinNames(p, { format: 'steelyard/pins', version: 1, pins }), { flat }));
+    const own = placedByHand(p).map((line) =>
+      line.replace(/: B0 at/, ': sar_d[0] at').replace(/: TOP at/, ': vdac at'),
+    );
+    expect(found).toEqual(own.sort());
+    expect(found.filter((line) => / at /.test(line))).toHaveLength(p.capacitors.length + 3);
   });
 });
 
@@ -219,7 +192,7 @@ describe('random libraries', () => {
   it('are placed alike, turned and repeated', () => {
     fc.assert(
       fc.property(libraryOf(understood), (p) => {
-        expect(convert(writeStream(p))).toEqual(placed(p));
+        expect(convert(writeStream(p))).toEqual(placedByHand(p));
       }),
       { numRuns: 40 },
     );
