@@ -6,7 +6,7 @@ import { placeUm } from './finding.js';
 import { JointFinder, membersOf } from './joint.js';
 import type { PinLabel } from './nets.js';
 import { ground } from './nets.js';
-import type { Unit } from './units.js';
+import type { Unit } from './unit-recognition.js';
 import { meantNets } from './units.js';
 
 interface Named {

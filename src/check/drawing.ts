@@ -34,7 +34,8 @@ export class Drawing {
 
   constructor(p: Polygons) {
     this.technology = p.technology;
-    this.flat = flatten(p.structures, p.topStructure);
+    const { unit } = p.technology;
+    this.flat = flatten(p.structures, p.topStructure, unit.kind === 'named-cell' ? unit.cell : undefined);
     const sheets = (ofAll: readonly (Layer | Via)[]) =>
       new Map(
         ofAll.map(({ name, stream }) => {

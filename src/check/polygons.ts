@@ -6,7 +6,8 @@ import type { Finding } from './finding.js';
 import { inOrder, placeUm } from './finding.js';
 import { pieceNames, pinLabels } from './nets.js';
 import { checkShapes } from './shape-rules.js';
-import { checkUnits, unitsOf } from './units.js';
+import { unitsOf } from './unit-recognition.js';
+import { checkUnits } from './units.js';
 import { checkVertices } from './vertices.js';
 import { checkVia } from './via-rules.js';
 
@@ -47,14 +48,14 @@ export function checkPolygons(p: Polygons): Finding[] {
   const c = conductorsOf(drawing);
   const { labels, findings } = pinLabels(drawing, c);
   const names = pieceNames(labels, c);
-  const units = unitsOf(drawing, c);
+  const found = unitsOf(drawing, c);
   return inOrder([
     ...findings,
     ...checkVertices(drawing),
     ...technology.layers.flatMap((layer) => checkShapes(drawing.sheet(layer.name).slabs, layer)),
     ...technology.vias.flatMap((via) => checkVia(drawing, via)),
     ...checkLayers(drawing),
-    ...checkConnectivity(drawing, { c, labels, names, units }),
-    ...checkUnits(drawing, units, p.capacitors, { c, labels, names }),
+    ...checkConnectivity(drawing, { c, labels, names, units: found.units }),
+    ...checkUnits(drawing, found, p.capacitors, { c, labels, names }),
   ]);
 }

@@ -1,7 +1,6 @@
 import type { Boxes } from '../core/boxes.js';
 import { BoxIndex } from '../core/boxes.js';
 import { componentsOf } from '../core/components.js';
-import { slabsOf } from '../core/slabs.js';
 import { nm } from '../core/units.js';
 import type { Layer } from '../spec/technology.js';
 import type { Boundary, Corners, Quadrants } from './boundary.js';
@@ -11,6 +10,7 @@ import { closeFaces, indexed } from './distances.js';
 import type { Finding } from './finding.js';
 import { lengthUm, placeUm } from './finding.js';
 import { openingBy } from './opening.js';
+import { surroundingsOf } from './surroundings.js';
 
 /** Across the exterior: tops look up at bottoms, and a convex corner looks away from its own quadrant. */
 const outward = (b: Boundary, convex: Quadrants<Corners> = b.convex): Faces => ({
@@ -135,33 +135,12 @@ function area(slabs: Boxes, layer: string, limit_um2: number): Finding[] {
   return findings;
 }
 
-/** Holes: what a frame around everything holds of the exterior falls into pieces; all but the one at the frame are enclosed. */
 function enclosedArea(slabs: Boxes, layer: string, limit_um2: number): Finding[] {
-  const count = slabs.x0.length;
-  if (count === 0) return [];
-  const least = (values: Int32Array) => values.reduce((a, b) => Math.min(a, b));
-  const most = (values: Int32Array) => values.reduce((a, b) => Math.max(a, b));
-  const [x0, y0, x1, y1] = [least(slabs.x0) - 1, least(slabs.y0) - 1, most(slabs.x1) + 1, most(slabs.y1) + 1];
-  const edges = {
-    x0: new Int32Array(2 * count + 2),
-    x1: new Int32Array(2 * count + 2),
-    y: new Int32Array(2 * count + 2),
-    change: new Int8Array(2 * count + 2),
-  };
-  for (let i = 0; i <= count; i++) {
-    const inside = i < count;
-    for (let side = 0; side < 2; side++) {
-      edges.x0[2 * i + side] = inside ? slabs.x0[i] : x0;
-      edges.x1[2 * i + side] = inside ? slabs.x1[i] : x1;
-      edges.y[2 * i + side] = side === 0 ? (inside ? slabs.y0[i] : y0) : inside ? slabs.y1[i] : y1;
-      edges.change[2 * i + side] = inside === (side === 0) ? -1 : 1;
-    }
-  }
-  const exterior = slabsOf(edges);
   const limit = Math.round(limit_um2 * 1e6);
   const findings: Finding[] = [];
-  eachShape(exterior, (found, x, y, own) => {
-    if (found >= limit || own.some((i) => exterior.x0[i] === x0)) return;
+  const around = surroundingsOf(slabs);
+  eachShape(around.slabs, (found, x, y, own) => {
+    if (found >= limit || around.isOuter(own)) return;
     const text = `encloses ${found / 1e6} um2, at least ${limit_um2} um2 wanted`;
     findings.push({ rule: 'enclosed-area', layer, at_um: placeUm(x, y), text });
   });

@@ -1,5 +1,5 @@
 import type { BoxIndex } from '../core/boxes.js';
-import { boxesOverlap, componentsOf } from '../core/components.js';
+import { placed } from '../core/flatten.js';
 import { nm } from '../core/units.js';
 import type { Capacitor } from '../spec/floorplan.js';
 import type { Conductors } from './conductors.js';
@@ -9,49 +9,12 @@ import type { Finding } from './finding.js';
 import { placeUm } from './finding.js';
 import type { PinLabel } from './nets.js';
 import { commonPlate, ground } from './nets.js';
-import { overlapArea } from './overlap-area.js';
-
-/** A top plate over a bottom plate: nodes of either, and the cell (or -1) that the top plate was drawn by. */
-export interface Unit {
-  readonly top: readonly number[];
-  readonly bottom: readonly number[];
-  readonly cell: number;
-  readonly x: number;
-  readonly y: number;
-}
+import type { Recognition, Unit } from './unit-recognition.js';
 
 /** The nets that a cell's plates are meant to be on. */
 export function meantNets(cell: string): { readonly bottom: string; readonly top: string } {
   if (cell === '-') return { bottom: ground, top: ground };
   return { bottom: cell === '=' ? ground : cell, top: commonPlate };
-}
-
-/** All units of a drawing, found from the plates alone. */
-export function unitsOf(drawing: Drawing, c: Conductors): Unit[] {
-  const { roles } = drawing.technology;
-  const base = (name: string) => c.base[c.layers.findIndex((layer) => layer.name === name)];
-  const tops = drawing.sheet(roles.topPlate);
-  const bottoms = drawing.sheet(roles.bottomPlate);
-  const plates = componentsOf(tops.boxes, tops.index);
-  const parts: number[][] = Array.from({ length: plates.count }, () => []);
-  for (let i = 0; i < plates.of.length; i++) parts[plates.of[i]].push(i);
-  const units: Unit[] = [];
-  for (const part of parts) {
-    const below = new Set<number>();
-    for (const i of part)
-      for (const j of bottoms.index.search(tops.boxes.x0[i], tops.boxes.y0[i], tops.boxes.x1[i], tops.boxes.y1[i]))
-        if (boxesOverlap(tops.boxes, i, bottoms.boxes, j)) below.add(j);
-    if (below.size === 0) continue;
-    const first = part[0];
-    units.push({
-      top: part.map((i) => base(roles.topPlate) + i),
-      bottom: [...below].sort((a, b) => a - b).map((j) => base(roles.bottomPlate) + j),
-      cell: tops.boxes.cell[first],
-      x: (tops.boxes.x0[first] + tops.boxes.x1[first]) / 2,
-      y: (tops.boxes.y0[first] + tops.boxes.y1[first]) / 2,
-    });
-  }
-  return units;
 }
 
 interface Nets {
@@ -61,9 +24,16 @@ interface Nets {
   readonly labels: readonly PinLabel[];
 }
 
+/** What a cell without a unit lacks. */
+const wholeUnit = {
+  'parallel-plate': 'top plate over a bottom plate',
+  'framed-fingers': 'comb within a closed frame',
+  'named-cell': 'instance with a landing over each terminal',
+} as const;
+
 /** Each cell has its plates, and each plate is on the net that the cell says. Plates on no named net at all are opens, reported there. */
 function cellFindings(drawing: Drawing, units: readonly Unit[], { c, names }: Nets): Finding[] {
-  const { roles } = drawing.technology;
+  const { roles, unit: template } = drawing.technology;
   const findings: Finding[] = [];
   const ofCell = new Map<number, Unit>();
   for (const unit of units) if (unit.cell >= 0) ofCell.set(unit.cell, unit);
@@ -72,7 +42,7 @@ function cellFindings(drawing: Drawing, units: readonly Unit[], { c, names }: Ne
     const called = cell.name === undefined ? 'a unit' : `the unit of ${cell.name}`;
     const ownBottom = unit?.bottom.some((node) => c.cell[node] === number) ?? false;
     if (!unit || !ownBottom) {
-      const text = `${called} has no ${unit ? 'bottom plate' : 'top plate over a bottom plate'}`;
+      const text = `${called} has no ${unit ? 'bottom plate of its own' : wholeUnit[template.kind]}`;
       findings.push({
         rule: 'unit-missing',
         layer: unit ? roles.bottomPlate : roles.topPlate,
@@ -135,21 +105,27 @@ function strayFindings(
   return findings;
 }
 
-function areaFindings(drawing: Drawing, units: readonly Unit[], c: Conductors): Finding[] {
+function areaFindings(drawing: Drawing, { units, misfit }: Recognition): Finding[] {
+  const layer = drawing.technology.roles.topPlate;
+  return units.flatMap((unit, number) => {
+    const text = misfit(unit, number);
+    return text === undefined ? [] : [{ rule: 'unit-area', layer, at_um: placeUm(unit.x, unit.y), text }];
+  });
+}
+
+/** Instances of a named cell that no cell speaks for and that lack a landing. */
+function lostInstances(drawing: Drawing, units: readonly Unit[]): Finding[] {
   const { unit: template, roles } = drawing.technology;
-  const meant = nm(template.topPlate_um[0]) * nm(template.topPlate_um[1]);
-  const findings: Finding[] = [];
-  for (const unit of units) {
-    const area = overlapArea(c.box, unit.top, c.box, unit.bottom);
-    if (area === meant) continue;
-    findings.push({
-      rule: 'unit-area',
-      layer: roles.topPlate,
-      at_um: placeUm(unit.x, unit.y),
-      text: `plates overlap in ${area / 1e6} um2, exactly ${meant / 1e6} um2 wanted`,
-    });
-  }
-  return findings;
+  if (template.kind !== 'named-cell') return [];
+  const found = new Set(units.map(({ x, y }) => `${x} ${y}`));
+  const [low, high] = template.outline_um.map(([x, y]) => [nm(x), nm(y)] as const);
+  const middle = [(low[0] + high[0]) / 2, (low[1] + high[1]) / 2] as const;
+  return drawing.flat.instances.flatMap(({ place, cell }) => {
+    const [x, y] = placed(place, ...middle);
+    if (cell >= 0 || found.has(`${x} ${y}`)) return [];
+    const text = `an instance of ${template.cell} without a landing over each terminal`;
+    return [{ rule: 'unit-missing', layer: roles.bottomPlate, at_um: placeUm(x, y), text }];
+  });
 }
 
 function countFindings(
@@ -199,36 +175,34 @@ function countFindings(
   return findings;
 }
 
-/** Wires below a plate, its tabs aside: the plate is what surrounds the top plate by the template's enclosure. */
+/** Wires below a unit, its tabs aside: of plates where the bottom plate is drawn, of frames and named cells all that they cover. */
 function wireFindings(drawing: Drawing, units: readonly Unit[], { c, names }: Nets): Finding[] {
   const { technology } = drawing;
   if (technology.wiresUnderPlate) return [];
   const plate = drawing.layer(technology.roles.bottomPlate);
   const plates = drawing.sheet(plate.name);
-  const enclosure = nm(technology.unit.plateEnclosure_um);
+  const isPlate = technology.unit.kind === 'parallel-plate';
   const findings: Finding[] = [];
   c.layers.forEach((layer, l) => {
     if ((layer.kind !== 'metal' && layer.kind !== 'plate') || !liesBelow(layer, plate, technology)) return;
     const wires: BoxIndex = drawing.sheet(layer.name).index;
     const reported = new Set<number>();
     for (const unit of units)
-      for (const part of unit.top) {
-        const [x0, y0] = [c.box.x0[part] - enclosure, c.box.y0[part] - enclosure];
-        const [x1, y1] = [c.box.x1[part] + enclosure, c.box.y1[part] + enclosure];
+      for (const { x0, y0, x1, y1 } of unit.body) {
         for (const i of wires.search(x0, y0, x1, y1)) {
           const node = c.base[l] + i;
           const own = names.get(c.piece[node]) ?? [];
           if (reported.has(node) || (own.length === 1 && own[0] === ground)) continue;
           const [wx0, wy0] = [Math.max(x0, c.box.x0[node]), Math.max(y0, c.box.y0[node])];
           const [wx1, wy1] = [Math.min(x1, c.box.x1[node]), Math.min(y1, c.box.y1[node])];
-          if (wx0 >= wx1 || wy0 >= wy1 || coveredArea(plates, wx0, wy0, wx1, wy1) === 0) continue;
+          if (wx0 >= wx1 || wy0 >= wy1 || (isPlate && coveredArea(plates, wx0, wy0, wx1, wy1) === 0)) continue;
           reported.add(node);
           findings.push({
             rule: 'wires-under-plate',
             layer: layer.name,
             at_um: placeUm((wx0 + wx1) / 2, (wy0 + wy1) / 2),
             ...(own.length > 0 ? { nets: own } : {}),
-            text: `wire of ${own.join(' and ') || 'no net'} under a bottom plate, where only ${ground} may be`,
+            text: `wire of ${own.join(' and ') || 'no net'} under a unit, where only ${ground} may be`,
           });
         }
       }
@@ -236,16 +210,20 @@ function wireFindings(drawing: Drawing, units: readonly Unit[], { c, names }: Ne
   return findings;
 }
 
-/** Rules about units: there, on their nets, of one area, as many as wanted, and no wire under them. */
-export const checkUnits = (
+/** Rules about units: there, on their nets, of one size, as many as wanted, and no wire under them. */
+export function checkUnits(
   drawing: Drawing,
-  units: readonly Unit[],
+  found: Recognition,
   capacitors: readonly Capacitor[],
   nets: Nets,
-): Finding[] => [
-  ...cellFindings(drawing, units, nets),
-  ...strayFindings(drawing, units, capacitors, nets),
-  ...areaFindings(drawing, units, nets.c),
-  ...countFindings(drawing, units, capacitors, nets),
-  ...wireFindings(drawing, units, nets),
-];
+): Finding[] {
+  const { units } = found;
+  return [
+    ...cellFindings(drawing, units, nets),
+    ...strayFindings(drawing, units, capacitors, nets),
+    ...lostInstances(drawing, units),
+    ...areaFindings(drawing, found),
+    ...countFindings(drawing, units, capacitors, nets),
+    ...wireFindings(drawing, units, nets),
+  ];
+}

@@ -35,6 +35,8 @@ export interface FlatDrawing {
   /** By `streamKey`. */
   readonly layers: ReadonlyMap<string, FlatLayer>;
   readonly cells: readonly FlatCell[];
+  /** Where the watched structure has come to lie, each time with the cell (or -1) that it is part of. */
+  readonly instances: readonly { readonly place: Place; readonly cell: number }[];
   readonly labels: readonly Label[];
   /** Every placed polygon with its place, in the order of `shape`. */
   readonly shapes: { readonly polygon: readonly Polygon[]; readonly place: readonly Place[] };
@@ -158,13 +160,15 @@ interface Gathered {
 /**
  * All shapes and labels of the top structure in its own coordinates: a reference is mirrored about the x axis first, then turned, then
  * moved.
+ * @param watched a structure whose instances are listed.
  * @throws InputError if a structure is missing, holds itself, or the drawing has more than 2^24 shapes.
  */
-export function flatten(structures: readonly Structure[], topStructure: string): FlatDrawing {
+export function flatten(structures: readonly Structure[], topStructure: string, watched?: string): FlatDrawing {
   const byName = new Map(structures.map((s, number) => [s.name, { structure: s, number }]));
   const decomposed = new Map(structures.map((s) => [s, s.polygons.map((p) => rectanglesOf(p.xy))]));
   const gathered = new Map<string, Gathered>();
   const cells: FlatCell[] = [];
+  const instances: { place: Place; cell: number }[] = [];
   const labels: Label[] = [];
   const polygon: Polygon[] = [];
   const places: Place[] = [];
@@ -189,6 +193,7 @@ export function flatten(structures: readonly Structure[], topStructure: string):
     if (open.has(name))
       refuse(pointer, `"${name}", which holds this reference itself`, 'structures that do not hold themselves');
     open.add(name);
+    if (name === watched) instances.push({ place, cell });
     const { structure, number } = entry;
     visited += structure.polygons.length + structure.labels.length + 1;
     if (visited > mostShapes) tooMany(pointer);
@@ -244,5 +249,5 @@ export function flatten(structures: readonly Structure[], topStructure: string):
       shape: Int32Array.from(g.shape),
       cell: Int32Array.from(g.cell),
     });
-  return { layers, cells, labels, shapes: { polygon, place: places } };
+  return { layers, cells, instances, labels, shapes: { polygon, place: places } };
 }

@@ -3,11 +3,15 @@ import type { Label, Point } from '../core/layout.js';
 import { InputError } from '../core/problem.js';
 import type { Layer, Technology } from '../spec/technology.js';
 import type { Polygons } from '../spec/polygons.js';
+import { unitSize_um } from '../spec/unit-geometry.js';
 import { visitDrawn } from './drawn-shapes.js';
 import { greatestCommonDivisor } from './path-data.js';
 
-/** `cover` is ground on the metal of the plates over a channel: it would hide the trunks below it. */
-export type GroupKind = 'cover' | 'plate' | 'topPlate' | 'lower' | 'middle' | 'upper' | 'via' | 'topVia';
+/**
+ * `cover` is ground on the metal of the plates over a channel: it would hide the trunks below it. `under` is ground below whole units, which
+ * would hide them as the other wires below may not.
+ */
+export type GroupKind = 'under' | 'cover' | 'plate' | 'topPlate' | 'lower' | 'middle' | 'upper' | 'via' | 'topVia';
 
 /** All shapes of one net on one layer; of vias and top plates all nets together, for they look alike. */
 export interface DrawnGroup {
@@ -37,7 +41,17 @@ export interface Drawn {
   readonly extent: { readonly x0: number; readonly y0: number; readonly x1: number; readonly y1: number };
 }
 
-const order: readonly GroupKind[] = ['cover', 'plate', 'topPlate', 'lower', 'middle', 'upper', 'via', 'topVia'];
+const order: readonly GroupKind[] = [
+  'under',
+  'cover',
+  'plate',
+  'topPlate',
+  'lower',
+  'middle',
+  'upper',
+  'via',
+  'topVia',
+];
 
 /**
  * Sorts what conducts into groups to be painted alike. Layers that the technology does not know are left out.
@@ -65,18 +79,24 @@ export function drawnGroups(p: Polygons): Drawn {
   for (const { polygons } of p.structures.filter((s) => s.name === p.topStructure))
     for (const q of polygons) if (boundary && streamKey(q) === streamKey(boundary.stream)) reach(q.xy);
 
+  const unitWidth = 1000 * unitSize_um(p.technology.unit)[0];
   const labels = visitDrawn(p, (polygon, net, xy) => {
     const painted = layers.get(streamKey(polygon));
     if (painted === undefined) return;
     const { height } = painted;
+    const isShield = polygon.part === 'shield';
     const kind =
-      painted.kind !== 'middle'
-        ? painted.kind
-        : polygon.part === 'plate'
-          ? 'plate'
-          : polygon.part === 'shield'
-            ? 'cover'
-            : 'middle';
+      painted.kind === 'lower'
+        ? isShield && Math.max(...xy.map(([x]) => x)) - Math.min(...xy.map(([x]) => x)) > unitWidth / 2
+          ? 'under'
+          : 'lower'
+        : painted.kind !== 'middle'
+          ? painted.kind
+          : polygon.part === 'plate'
+            ? 'plate'
+            : isShield
+              ? 'cover'
+              : 'middle';
     const alike = kind === 'via' || kind === 'topVia' || kind === 'topPlate';
     const key = `${kind} ${height} ${alike ? '' : net}`;
     const group = groups.get(key);
@@ -98,7 +118,10 @@ export function drawnGroups(p: Polygons): Drawn {
       a.height - b.height ||
       (rank.get(a.net) ?? -1) - (rank.get(b.net) ?? -1),
   );
-  return { groups: sorted, plates, labels, step: step || 1, extent: { x0, y0, x1, y1 } };
+  // A frame may be drawn in pieces: the narrow ones bear no name.
+  const widest = plates.reduce((width, { left, right }) => Math.max(width, right - left), 0);
+  const named = plates.filter(({ left, right }) => 2 * (right - left) > widest);
+  return { groups: sorted, plates: named, labels, step: step || 1, extent: { x0, y0, x1, y1 } };
 }
 
 /** The widest level part of a plate's top edge, so that tabs do not count. */
@@ -109,7 +132,7 @@ function namedPlate(net: string, xy: readonly Point[]): NamedPlate {
 }
 
 interface PaintedLayer {
-  readonly kind: Exclude<GroupKind, 'plate' | 'cover'>;
+  readonly kind: Exclude<GroupKind, 'plate' | 'cover' | 'under'>;
   readonly height: number;
 }
 
@@ -117,11 +140,13 @@ function paintedLayers(technology: Technology): Map<string, PaintedLayer> {
   const { layers, vias, roles } = technology;
   const painted = new Map<string, PaintedLayer>();
   const byName = new Map(layers.map((l) => [l.name, l]));
+  // Only a top plate on a layer of its own is thin: combs and landings lie on the wires' metals.
+  const thinTop = roles.topPlate !== roles.bottomPlate && roles.topPlate !== roles.strap;
   const height = (name: string) => byName.get(name)?.height_um ?? 0;
   const plateHeight = height(roles.bottomPlate);
   const kindOf = (l: Layer): PaintedLayer['kind'] | undefined => {
     if (l.kind !== 'metal' && l.kind !== 'plate') return undefined;
-    if (l.name === roles.topPlate) return 'topPlate';
+    if (thinTop && l.name === roles.topPlate) return 'topPlate';
     const above = (l.height_um ?? 0) - plateHeight;
     return above < 0 ? 'lower' : above > 0 ? 'upper' : 'middle';
   };
@@ -130,6 +155,9 @@ function paintedLayers(technology: Technology): Map<string, PaintedLayer> {
     if (kind) painted.set(streamKey(l.stream), { kind, height: l.height_um ?? 0 });
   }
   for (const v of vias)
-    painted.set(streamKey(v.stream), { kind: v.lower === roles.topPlate ? 'topVia' : 'via', height: height(v.upper) });
+    painted.set(streamKey(v.stream), {
+      kind: thinTop && v.lower === roles.topPlate ? 'topVia' : 'via',
+      height: height(v.upper),
+    });
   return painted;
 }

@@ -11,6 +11,7 @@ import type { Look, Sheet } from './sheet.js';
 
 /** Shades of one colour tell the levels: plates pale, the metal of the plates plain, the metal below darker. */
 const shades: Readonly<Record<GroupKind, (colour: string) => string>> = {
+  under: (colour) => mixed(colour, paper, 0.8),
   cover: (colour) => mixed(colour, paper, 0.55),
   plate: (colour) => mixed(colour, paper, 0.5),
   topPlate: () => paper,
@@ -35,6 +36,7 @@ export function lookOf({ kind, net }: DrawnGroup, { colour }: Paint, micrometre:
       return { fill, stroke: fill, strokeWidth: hair, round: true };
     case 'topVia':
       return { fill, round: true };
+    case 'under':
     case 'cover':
     case 'lower':
     case 'middle':
@@ -75,6 +77,7 @@ export function hookupLegend(
   rows.push({ text: 'level' });
   const kinds = new Set(drawn.groups.map((g) => g.kind));
   const levels: [GroupKind, string][] = [
+    ['under', 'shield under the units'],
     ['lower', 'below the plates'],
     ['middle', 'on the plates’ metal'],
     ['plate', 'bottom plate'],
@@ -93,7 +96,7 @@ export function hookupLegend(
             sheet,
             at,
             kind,
-            kind === 'upper' ? topColour : kind === 'cover' ? groundPaint.colour : level.colour,
+            kind === 'upper' ? topColour : kind === 'cover' || kind === 'under' ? groundPaint.colour : level.colour,
           ),
       });
   return rows;
@@ -118,6 +121,7 @@ function levelSwatch(sheet: Sheet, { x, y, width, height, px }: SwatchBox, kind:
         stroke: mixed(colour, paper, 0.15),
         strokeWidth: Math.round(px),
       });
+    case 'under':
     case 'cover':
     case 'lower':
     case 'middle':

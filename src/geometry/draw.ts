@@ -1,4 +1,5 @@
 import type { Reference } from '../core/layout.js';
+import { Infeasible } from '../core/problem.js';
 import { rectangle } from '../core/rectangle.js';
 import { pitchOf, type Rules, viaBetween } from '../hookup/rules.js';
 import type { Hookup } from '../hookup/wires.js';
@@ -8,7 +9,8 @@ import type { Technology } from '../spec/technology.js';
 import { drawRing } from './ring.js';
 import { Sheet } from './sheet.js';
 import { channelShield } from './shield.js';
-import { unitCell } from './unit-cell.js';
+import { drawStrips } from './strips.js';
+import { unitStructures } from './unit-cell.js';
 
 /** Where the fill dummies' top plates go. */
 export type FillTop = 'TOP' | 'VSS';
@@ -44,7 +46,13 @@ export function drawPolygons(
   drawTop(sheet, technology, placed, hookup, fillTop);
   if (fillTop === 'VSS') drawGroundedFills(sheet, technology, placed, hookup);
 
-  const unit = unitCell(`${name}_unit`, technology, rules);
+  if (rules.strip) drawStrips(sheet, technology, hookup, rules.strip);
+  const [unit, ...cellsOfUnit] = unitStructures(`${name}_unit`, technology, rules);
+  if (cellsOfUnit.some((structure) => structure.name === name || structure.name === unit.name))
+    throw new Infeasible(
+      `The array's structures are called ${name} and ${unit.name}, and so is the technology's cell.`,
+      'Give the array another name.',
+    );
   const cells: string[] = [];
   for (let row = rows - 1 + rings; row >= -rings; row--)
     for (let column = -rings; column <= columns - 1 + rings; column++) {
@@ -72,7 +80,7 @@ export function drawPolygons(
     topStructure: name,
     technology,
     capacitors: placed.capacitors,
-    structures: [unit, { name, polygons: sheet.polygons, references: [units], labels: sheet.labels }],
+    structures: [...cellsOfUnit, unit, { name, polygons: sheet.polygons, references: [units], labels: sheet.labels }],
   };
 }
 
@@ -146,9 +154,10 @@ function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: H
   const spineTop = plateTop + rules.rowGap;
   for (let column = 0; column < columns; column++) {
     const x = frame.columnX(column);
+    const strapX = x + rules.strapX;
     const below = placed.ringUnits.filter((unit) => unit.column === column);
     const low = below.length > 0 ? frame.rowY(rows) + rules.pad[1] - pad : plateLow - rules.rowGap;
-    sheet.add(roles.strap, rectangle(x - half, low, x + half, spineTop), { net: 'TOP', part: 'strap' });
+    sheet.add(roles.strap, rectangle(strapX - half, low, strapX + half, spineTop), { net: 'TOP', part: 'strap' });
     // A cross-bar over the gap below the lowest row makes it look like the rows within.
     sheet.add(
       roles.strap,
@@ -162,13 +171,16 @@ function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: H
     for (const { row, tied } of tabs) {
       if (!tied) continue;
       const y = frame.rowY(row) + rules.pad[1];
-      sheet.add(roles.strap, rectangle(x, y - pad, x + rules.pad[0] + pad, y + pad), { net: 'TOP', part: 'strap' });
+      sheet.add(roles.strap, rectangle(strapX, y - pad, x + rules.pad[0] + pad, y + pad), {
+        net: 'TOP',
+        part: 'strap',
+      });
     }
   }
-  const first = frame.columnX(0);
-  const last = frame.columnX(columns - 1);
+  const first = frame.columnX(0) + rules.strapX;
+  const last = frame.columnX(columns - 1) + rules.strapX;
   sheet.add(roles.spine, rectangle(first - half, plateTop, last + half, spineTop), { net: 'TOP', part: 'spine' });
-  const middle = frame.columnX((columns - 1) >> 1);
+  const middle = frame.columnX((columns - 1) >> 1) + rules.strapX;
   sheet.add(roles.spine, rectangle(middle - half, plateTop, middle + half, frame.height), {
     net: 'TOP',
     part: 'spine',
@@ -177,8 +189,8 @@ function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: H
 }
 
 /**
- * Fill dummies with the top plate on `VSS`: upper metal runs from the pad straight to a via on the right-hand tab, which is widened to the
- * via's landing.
+ * Fill dummies with the top plate on `VSS`: upper metal runs from the pad to the level of the right-hand tab and on to a via on that tab,
+ * which is widened to the via's landing.
  */
 function drawGroundedFills(sheet: Sheet, technology: Technology, placed: Placed, hookup: Hookup): void {
   const { frame } = hookup;
@@ -186,22 +198,30 @@ function drawGroundedFills(sheet: Sheet, technology: Technology, placed: Placed,
   const { roles } = technology;
   const via = viaBetween(technology, roles.bottomPlate, roles.strap).name;
   const landing = rules.viaFrame.landing / 2;
-  const edge = rules.plate[0] / 2 + rules.tab[0];
+  const half = rules.padSize / 2;
+  const rim = rules.plate[0] / 2;
+  const edge = rim + rules.tab[0];
   placed.cells.forEach((names, row) =>
     names.forEach((name, column) => {
       if (name !== '-') return;
       const x = frame.columnX(column);
-      const y = frame.rowY(row) + rules.pad[1];
-      sheet.add(roles.bottomPlate, rectangle(x + rules.plate[0] / 2 - landing, y - landing, x + edge, y + landing), {
-        net: 'VSS',
-        part: 'tab',
-      });
-      sheet.via(via, rules.viaFrame.size, x + edge - landing, y, 'VSS');
+      const padX = x + rules.pad[0];
+      const padY = frame.rowY(row) + rules.pad[1];
+      const y = frame.stubY(row, 'R');
       sheet.add(
-        roles.strap,
-        rectangle(x + rules.pad[0] - rules.padSize / 2, y - rules.padSize / 2, x + edge, y + rules.padSize / 2),
-        { net: 'VSS', part: 'ring' },
+        roles.bottomPlate,
+        rectangle(x + rim - Math.min(landing, rules.plateRim), y - landing, x + edge, y + landing),
+        { net: 'VSS', part: 'tab' },
       );
+      sheet.via(via, rules.viaFrame.size, x + edge - landing, y, 'VSS');
+      const wire = { net: 'VSS', part: 'ring' } as const;
+      if (padY !== y)
+        sheet.add(
+          roles.strap,
+          rectangle(padX - half, Math.min(padY, y) - half, padX + half, Math.max(padY, y) + half),
+          wire,
+        );
+      sheet.add(roles.strap, rectangle(padX - half, y - half, x + edge, y + half), wire);
     }),
   );
 }

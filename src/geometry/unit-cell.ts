@@ -1,14 +1,33 @@
 import type { Structure } from '../core/layout.js';
 import { rectangle } from '../core/rectangle.js';
+import { nm } from '../core/units.js';
 import type { Rules } from '../hookup/rules.js';
 import { viaBetween } from '../hookup/rules.js';
-import type { Technology } from '../spec/technology.js';
-import { nm } from '../core/units.js';
+import type { ParallelPlateUnit, Technology } from '../spec/technology.js';
+import { drawFramedFingers } from './framed-fingers.js';
+import { drawLandings, placeholder } from './named-cell.js';
 import { Sheet } from './sheet.js';
 
 /**
- * The unit capacitor around 0,0: a bottom plate with a tab on either side, a smaller top plate on it, a pad up to the straps' metal. Every
- * unit is this one, dummies too, in one orientation, so that all surroundings match.
+ * The unit capacitor around 0,0, and the named cell that it refers to where there is one. Every unit is this one, dummies too, in one
+ * orientation, so that all surroundings match.
+ */
+export function unitStructures(name: string, technology: Technology, rules: Rules): [Structure, ...Structure[]] {
+  const { unit, roles } = technology;
+  const sheet = new Sheet(technology);
+  if (unit.kind === 'parallel-plate') drawPlates(sheet, technology, unit, rules);
+  else if (unit.kind === 'framed-fingers') drawFramedFingers(sheet, technology, unit, rules);
+  const references = unit.kind === 'named-cell' ? [drawLandings(sheet, technology, unit, rules)] : [];
+  drawPad(sheet, technology, rules);
+  const [px, py] = [rules.plate[0] / 2, rules.plate[1] / 2];
+  const [length] = rules.tab;
+  sheet.add(roles.marker, rectangle(-px - length, -py, px + length, py));
+  const own: Structure = { name, polygons: sheet.polygons, references, labels: [] };
+  return unit.kind === 'named-cell' ? [own, placeholder(technology, unit)] : [own];
+}
+
+/**
+ * A bottom plate with a tab on either side, a smaller top plate on it.
  *
  *        +-----------+
  *      +-+  +-----+  |        left tab: upper level
@@ -17,9 +36,7 @@ import { Sheet } from './sheet.js';
  *        |  +-----+  +-+
  *        +-----------+
  */
-export function unitCell(name: string, technology: Technology, rules: Rules): Structure {
-  const { roles } = technology;
-  const sheet = new Sheet(technology);
+function drawPlates(sheet: Sheet, { roles }: Technology, unit: ParallelPlateUnit, rules: Rules): void {
   const [px, py] = [rules.plate[0] / 2, rules.plate[1] / 2];
   const [length, height] = rules.tab;
   const level = rules.tabLevel;
@@ -42,15 +59,17 @@ export function unitCell(name: string, technology: Technology, rules: Rules): St
     ],
     { net: 'BOTTOM', part: 'plate' },
   );
-  const [tx, ty] = [rules.topPlate[0] / 2, rules.topPlate[1] / 2];
+  const [tx, ty] = [nm(unit.topPlate_um[0]) / 2, nm(unit.topPlate_um[1]) / 2];
   sheet.add(roles.topPlate, rectangle(-tx, -ty, tx, ty), { net: 'TOP', part: 'plate' });
-  const toStraps = viaBetween(technology, roles.topPlate, roles.strap);
-  sheet.via(toStraps.name, nm(toStraps.size_um), rules.pad[0], rules.pad[1], 'TOP');
-  const pad = rules.padSize / 2;
-  sheet.add(roles.strap, rectangle(rules.pad[0] - pad, rules.pad[1] - pad, rules.pad[0] + pad, rules.pad[1] + pad), {
-    net: 'TOP',
-    part: 'pad',
-  });
-  sheet.add(roles.marker, rectangle(-px - length, -py, px + length, py));
-  return { name, polygons: sheet.polygons, references: [], labels: [] };
+}
+
+/** The pad on the straps' metal, and the via down to the top terminal where that lies on another layer. */
+function drawPad(sheet: Sheet, technology: Technology, { pad: [x, y], padSize }: Rules): void {
+  const { roles } = technology;
+  if (roles.topPlate !== roles.strap) {
+    const via = viaBetween(technology, roles.topPlate, roles.strap);
+    sheet.via(via.name, nm(via.size_um), x, y, 'TOP');
+  }
+  const half = padSize / 2;
+  sheet.add(roles.strap, rectangle(x - half, y - half, x + half, y + half), { net: 'TOP', part: 'pad' });
 }

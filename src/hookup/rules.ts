@@ -1,12 +1,16 @@
 import { Infeasible } from '../core/problem.js';
 import { nm } from '../core/units.js';
 import type { Layer, Technology, Via } from '../spec/technology.js';
+import { isWideUnit } from '../spec/unit-geometry.js';
+import { unitBody } from './unit-body.js';
 
 /** What the channel style needs of a technology, in whole nanometres on its grid. Widths are even multiples of the grid, so that centre lines lie on it. */
 export interface Rules {
   readonly grid: number;
+  /** All that a unit has of the bottom terminal's metal, its tabs aside: bottom plate, frame, or the landing around a named cell. */
   readonly plate: readonly [width: number, height: number];
-  readonly topPlate: readonly [width: number, height: number];
+  /** The least that is solid at the plate's edge. */
+  readonly plateRim: number;
   /** Tab on the bottom plate: how far it stands out, how tall it is. The left one sits `tabLevel` above the middle, the right one below. */
   readonly tab: readonly [length: number, height: number];
   readonly tabLevel: number;
@@ -14,7 +18,7 @@ export interface Rules {
   readonly pad: readonly [x: number, y: number];
   /** Side of that pad, and of any other landing between plate metal and the straps' metal. */
   readonly padSize: number;
-  /** Spacing beside a bottom plate, and plain spacing on its metal. */
+  /** Room beside a bottom plate, so that a shield passes its tab too, and plain spacing on its metal. */
   readonly wideSpacing: number;
   readonly spacing: number;
   readonly trackWidth: number;
@@ -25,12 +29,16 @@ export interface Rules {
   readonly dropSpacing: number;
   readonly rowGap: number;
   readonly strapWidth: number;
+  /** The middle of a strap from the middle of its column: 0 unless the pad needs the room. */
+  readonly strapX: number;
   readonly frameWidth: number;
   /** Between the frame's bottom side and the plates above it: a track and its spacing fit there. */
   readonly bottomGap: number;
   readonly minPlateWidth: number;
   /** The most tracks under one piece of shield before it would count as wide metal. */
   readonly tracksPerShield: number;
+  /** Half the width of the `VSS` strip under a column, and the room that it keeps; absent without a shield. */
+  readonly strip?: { readonly half: number; readonly spacing: number };
   readonly viaTrack: { readonly size: number; readonly landing: number };
   readonly viaFrame: { readonly size: number; readonly landing: number };
 }
@@ -66,37 +74,40 @@ export function drawingRules(technology: Technology): Rules {
   const topPlateLayer = layerOf(technology, roles.topPlate);
   const upper = layerOf(technology, roles.strap);
   const toPlate = viaBetween(technology, roles.trunk, roles.stub);
-  const toTop = viaBetween(technology, roles.topPlate, roles.strap);
+  const toTop = roles.topPlate === roles.strap ? undefined : viaBetween(technology, roles.topPlate, roles.strap);
   const toUpper = viaBetween(technology, roles.bottomPlate, roles.strap);
 
-  const topPlate = [nm(unit.topPlate_um[0]), nm(unit.topPlate_um[1])] as const;
-  const margin = nm(unit.plateEnclosure_um);
-  const plate = [topPlate[0] + 2 * margin, topPlate[1] + 2 * margin] as const;
   const spacing = length(plateMetal.minSpacing_um);
   const minPlateWidth = length(plateMetal.minWidth_um);
   const wideFrom = plateMetal.wideFrom_um === undefined ? Infinity : nm(plateMetal.wideFrom_um);
-  const isWide = Math.min(plate[0], plate[1]) >= wideFrom;
-  const wideSpacing = isWide ? Math.max(spacing, length(plateMetal.wideSpacing_um)) : spacing;
 
   const landing = (via: Via) => even(nm(via.size_um) + 2 * nm(via.enclosure_um));
   const viaTrack = { size: nm(toPlate.size_um), landing: landing(toPlate) };
   const viaFrame = { size: nm(toUpper.size_um), landing: landing(toUpper) };
-  const tab = [nm(unit.tab_um[0]), nm(unit.tab_um[1])] as const;
+  const tabHeight = unit.kind === 'named-cell' ? 0 : nm(unit.tab_um[1]);
   const lineSpacing = length(lower.minSpacing_um);
-  const trackWidth = even(Math.max(length(lower.minWidth_um), minPlateWidth, viaTrack.landing, tab[1]));
+  const trackWidth = even(Math.max(length(lower.minWidth_um), minPlateWidth, viaTrack.landing, tabHeight));
   const viaApart = nm(toPlate.spacing_um) - (trackWidth - viaTrack.size);
   const trackSpacing = Math.max(spacing, lineSpacing, viaApart);
   const dropSpacing = Math.max(lineSpacing, viaApart);
   const upperSpacing = length(upper.minSpacing_um);
+  const padSize = even(Math.max(toTop ? landing(toTop) : 0, viaFrame.landing, length(upper.minWidth_um)));
+  const frameWidth = even(Math.max(minPlateWidth, viaFrame.landing, trackWidth));
+
+  const isWide = isWideUnit(technology);
+  const metalSpacing = isWide ? Math.max(spacing, length(plateMetal.wideSpacing_um)) : spacing;
+  const body = unitBody(technology, { frameWidth, clearance: Math.max(spacing, length(plateMetal.wideSpacing_um)) });
+  const { plate, pad, tabLength } = body;
+  // A shield stands off the tabs by the plain spacing, so it may pass them.
+  const wideSpacing = Math.max(metalSpacing, tabLength + spacing);
   const rowGap = even(
-    Math.max(wideSpacing, length(upper.minWidth_um), length(topPlateLayer.minSpacing_um) - 2 * margin),
+    Math.max(metalSpacing, length(upper.minWidth_um), length(topPlateLayer.minSpacing_um) - 2 * body.topInset),
   );
   const strapWidth = rowGap;
-  const padSize = even(Math.max(landing(toTop), viaFrame.landing, length(upper.minWidth_um)));
-  const frameWidth = even(Math.max(minPlateWidth, viaFrame.landing, trackWidth));
-  const bottomGap = even(Math.max(trackWidth + spacing, wideSpacing));
-  const pad = [nm(unit.terminals.top.at_um[0]), nm(unit.terminals.top.at_um[1])] as const;
-  const tabLevel = nm(unit.tabLevel_um);
+  const strapX = Math.min(0, grid * Math.floor((pad[0] - padSize / 2 - strapWidth / 2 - upperSpacing) / grid));
+  const bottomGap = even(Math.max(trackWidth + spacing, metalSpacing));
+  const tabLevel = body.tabLevel ?? grid * Math.floor((plate[1] + rowGap) / 4 / grid);
+  const tab = [tabLength, tabHeight || trackWidth] as const;
 
   const stop = (because: string, remedy: string): never => {
     throw new Infeasible(because, remedy);
@@ -113,18 +124,24 @@ export function drawingRules(technology: Technology): Rules {
       `A tab ${inMicrometres(tab[1])} tall does not fit a stub ${inMicrometres(trackWidth)} wide under a width rule of ${inMicrometres(minPlateWidth)}.`,
       'Change tab_um.',
     );
-  if (tab[0] + spacing > wideSpacing)
+  if (strapX - strapWidth / 2 < -plate[0] / 2)
     stop(
-      `A tab ${inMicrometres(tab[0])} long leaves less than ${inMicrometres(spacing)} to a shield ${inMicrometres(wideSpacing)} beside the plate.`,
-      'Make the tab as long as the wide spacing exceeds the plain one.',
+      `A strap ${inMicrometres(strapWidth)} wide, left of the top terminal by ${inMicrometres(upperSpacing)}, does not lie over its column.`,
+      'Move terminals.top to the right or take a larger unit.',
     );
-  if (pad[0] - padSize / 2 - strapWidth / 2 < upperSpacing)
+  if (pad[0] + padSize / 2 > plate[0] / 2 || Math.abs(pad[1]) + padSize / 2 > plate[1] / 2)
     stop(
-      `The pad of the top plate stands ${inMicrometres(pad[0] - padSize / 2 - strapWidth / 2)} beside its strap; ${inMicrometres(upperSpacing)} are needed.`,
-      'Move terminals.top to the right.',
+      'The pad of the top terminal does not lie over its unit.',
+      'Move terminals.top inwards or take a larger unit.',
     );
-  if (pad[0] + padSize / 2 > topPlate[0] / 2 || Math.abs(pad[1]) + padSize / 2 > topPlate[1] / 2)
-    stop('The pad of the top plate does not lie inside it.', 'Move terminals.top inwards or take a larger plate.');
+  let strip: Rules['strip'];
+  if (unit.kind === 'framed-fingers' && unit.shield === true) {
+    const most = Math.min(plate[0], length(lower.maxWidth_um) || Infinity);
+    const wide = lower.wideFrom_um !== undefined && most >= nm(lower.wideFrom_um);
+    const apart = wide ? Math.max(lineSpacing, length(lower.wideSpacing_um)) : lineSpacing;
+    const half = grid * Math.floor(Math.min(most / 2, plate[0] / 2 + wideSpacing - apart) / grid);
+    strip = { half, spacing: apart };
+  }
   const tracksPerShield = Math.floor((wideFrom - 1 + trackSpacing) / (trackWidth + trackSpacing));
   if (tracksPerShield < 1)
     stop(
@@ -134,7 +151,7 @@ export function drawingRules(technology: Technology): Rules {
   return {
     grid,
     plate,
-    topPlate,
+    plateRim: body.rim,
     tab,
     tabLevel,
     pad,
@@ -147,10 +164,12 @@ export function drawingRules(technology: Technology): Rules {
     dropSpacing,
     rowGap,
     strapWidth,
+    strapX,
     frameWidth,
     bottomGap,
     minPlateWidth,
     tracksPerShield: Math.min(tracksPerShield, 1000),
+    ...(strip && { strip }),
     viaTrack,
     viaFrame,
   };

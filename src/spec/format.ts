@@ -2,6 +2,7 @@ import { figure } from '../core/figure.js';
 import type { Floorplan } from './floorplan.js';
 import type { Metrics } from './metrics.js';
 import type { Polygons } from './polygons.js';
+import { ofItsKind } from './schema-parts.js';
 import type { Schema } from './schema-parts.js';
 import { schema } from './schema.js';
 import type { SchemaName } from './schema.js';
@@ -86,9 +87,9 @@ function ordered(value: unknown, part: Schema | undefined, key = ''): unknown {
     const shape = part.items;
     return shape?.properties === undefined ? value : value.map((v) => ordered(v, shape));
   }
-  const properties = part.properties;
-  if (properties === undefined) return value;
   const keyed = value as Keyed;
+  const { properties } = ofItsKind(part, keyed.kind);
+  if (properties === undefined) return value;
   const known = Object.keys(properties).filter((k) => keyed[k] !== undefined);
   const rest = Object.keys(keyed).filter((k) => !Object.hasOwn(properties, k));
   return Object.fromEntries([...known, ...rest].map((k) => [k, ordered(keyed[k], properties[k], k)]));

@@ -25,20 +25,11 @@ export function checkTechnology(value: unknown, report: Report, at: string): voi
   }
 }
 
-/** Kinds of units and of hookup that a later version may bring. */
+/** Kinds of hookup that a later version may bring. */
 export function technologyRefusals(value: unknown, at: string): Refusal[] {
-  const { unit, hookup } = record(value);
-  const refused: Refusal[] = [];
-  const kind = record(unit).kind;
-  if (kind === 'framed-fingers' || kind === 'named-cell') {
-    const wanted = `a unit of kind "parallel-plate": "${kind}" is not available yet`;
-    refused.push({ pointer: `${at}/unit`, found: `kind "${kind}"`, wanted, place: 'value' });
-  }
-  if (hookup === 'under-plate') {
-    const wanted = '"channel" ("under-plate" is not available yet)';
-    refused.push({ pointer: `${at}/hookup`, found: '"under-plate"', wanted, place: 'value' });
-  }
-  return refused;
+  if (record(value).hookup !== 'under-plate') return [];
+  const wanted = '"channel" ("under-plate" is not available yet)';
+  return [{ pointer: `${at}/hookup`, found: '"under-plate"', wanted, place: 'value' }];
 }
 
 /** Reads a technology template (`steelyard/technology`). */

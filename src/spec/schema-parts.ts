@@ -2,8 +2,9 @@
 export interface Schema {
   readonly $schema?: string;
   readonly $id?: string;
-  readonly title?: string;
   /** Of a text with a pattern: the pattern in words; messages quote it. */
+  readonly title?: string;
+  /** What a key is; the documentation quotes it. */
   readonly description?: string;
   readonly type?: string | readonly string[];
   readonly const?: unknown;
@@ -22,6 +23,7 @@ export interface Schema {
   readonly minLength?: number;
   readonly maxLength?: number;
   readonly oneOf?: readonly Schema[];
+  readonly allOf?: readonly { readonly if: Schema; readonly then: Schema }[];
 }
 
 type Properties = Readonly<Record<string, Schema>>;
@@ -43,11 +45,13 @@ export const truth: Schema = { type: 'boolean' };
 export const choice = (...values: string[]): Schema => ({ type: 'string', enum: values });
 export const constant = (value: string | number): Schema => ({ type: typeof value, const: value });
 export const text = (maxLength: number): Schema => ({ type: 'string', minLength: 1, maxLength });
-export const worded = (pattern: string, description: string): Schema => ({ type: 'string', pattern, description });
+export const worded = (pattern: string, title: string): Schema => ({ type: 'string', pattern, title });
 /** Names of arrays, capacitors and nets. */
 export const name = worded('^[A-Za-z][A-Za-z0-9_]{0,23}$', nameWords);
 /** A cell: a capacitor's name or a dummy. */
 export const cell = worded('^([A-Za-z][A-Za-z0-9_]{0,23}|[-=])$', `a capacitor's name (${nameWords}) or "-"`);
+/** Names of structures in stream files. */
+export const structureName = worded('^[A-Za-z0-9_?$]{1,127}$', 'letters, digits, _, ? or $, 127 at most');
 /** Names that go into other programs' files. */
 export const harmless = worded('^[A-Za-z][A-Za-z0-9_-]{0,39}$', 'a letter, then letters, digits, - or _, 40 at most');
 export const list = (items: Schema, minItems = 0, maxItems?: number): Schema => ({
@@ -67,6 +71,27 @@ export const object = (keys: Properties): Schema => {
     additionalProperties: false,
   };
 };
+
+/** The same with a line of documentation. */
+export const described = (schema: Schema, description: string): Schema => ({ ...schema, description });
+/** An object whose key `kind` says what other keys it has. */
+export const byKind = (kinds: Properties): Schema => {
+  const kind: Schema = { ...choice(...Object.keys(kinds)), description: 'what kind it is' };
+  const is = (value: string): Schema => ({
+    type: 'object',
+    properties: { kind: constant(value) },
+    required: ['kind'],
+  });
+  return {
+    type: 'object',
+    properties: { kind },
+    required: ['kind'],
+    allOf: Object.entries(kinds).map(([value, then]) => ({ if: is(value), then })),
+  };
+};
+/** What holds for an object of this kind, where its schema is one of several by kind. */
+export const ofItsKind = (schema: Schema, kind: unknown): Schema =>
+  schema.allOf?.find(({ if: when }) => when.properties?.kind.const === kind)?.then ?? schema;
 
 /** A number for all directions alike, or the three entries of a symmetric form. */
 const quadratic: Schema = { ...object({ xx: number, xy: number, yy: number }), type: ['number', 'object'] };

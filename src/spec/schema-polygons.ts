@@ -9,10 +9,10 @@ import {
   name,
   object,
   pair,
+  structureName,
   text,
   truth,
   whole,
-  worded,
 } from './schema-parts.js';
 import type { Schema } from './schema-parts.js';
 import { technologySchema } from './schema-technology.js';
@@ -21,7 +21,6 @@ import { technologySchema } from './schema-technology.js';
 const coordinate = whole(-33554432, 33554432);
 const point = pair(coordinate);
 const stream = whole(0, 32767);
-const structureName = worded('^[A-Za-z0-9_?$]{1,127}$', 'letters, digits, _, ? or $, 127 at most');
 
 const parts = 'plate tab pad trunk stub bus drop strap spine ring shield pin via'.split(' ');
 const polygon = object({

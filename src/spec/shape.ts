@@ -44,7 +44,7 @@ function size({ items, minItems = 0, maxItems }: Schema): string {
 function wants(part: Schema, value?: unknown): string {
   if (part.const !== undefined) return JSON.stringify(part.const);
   if (part.enum !== undefined) return either(part.enum);
-  if (part.pattern !== undefined && part.description !== undefined) return part.description;
+  if (part.pattern !== undefined && part.title !== undefined) return part.title;
   const one = (type: string): string => {
     switch (type) {
       case 'integer':
@@ -97,8 +97,10 @@ export function checkShape(name: SchemaName, value: unknown, report: Report, set
   const validate = validator(name);
   if (validate(value)) return;
   for (const error of validate.errors ?? []) {
-    // The only alternatives in any schema, bits or weights, have their own rule.
+    // The only alternatives that no key decides, bits or weights, have their own rule.
     if (error.keyword === 'oneOf' || error.schemaPath.includes('/oneOf/')) continue;
+    // That the keys of a kind do not fit says each of them itself.
+    if (error.keyword === 'if') continue;
     if (settled.some((p) => error.instancePath === p || error.instancePath.startsWith(`${p}/`))) continue;
     if (error.keyword === 'additionalProperties') {
       const { additionalProperty } = error.params as { additionalProperty: string };

@@ -1,4 +1,4 @@
-import { items, record, word } from './loose.js';
+import { items, real, record, word } from './loose.js';
 import type { Report } from './report.js';
 import type { Roles } from './technology.js';
 import { meant, quoted } from './words.js';
@@ -8,6 +8,8 @@ type Loose = Readonly<Record<string, unknown>>;
 /** A length in nanometres, as near as the file gives it. */
 export const toNm = (length_um: number | undefined): number | undefined =>
   length_um === undefined ? undefined : Math.round(length_um * 1000);
+/** Width and height, or x and y. */
+export const pairNm = (value: unknown): (number | undefined)[] => [0, 1].map((i) => toNm(real(items(value)[i])));
 export const fromNm = (length_nm: number): string => `${length_nm / 1000} um`;
 
 export interface Drawn {

@@ -1,5 +1,6 @@
 import { nm } from '../core/units.js';
 import { integer, items, real, record, word } from './loose.js';
+import { step } from './json-text.js';
 import { fromNm, toNm } from './technology-examination.js';
 import type { Drawn, Examination } from './technology-examination.js';
 import type { Roles } from './technology.js';
@@ -62,9 +63,13 @@ export function checkGrid({ technology, layers, vias, report, at }: Examination)
   const unit = record(technology.unit);
   const here = `${at}/unit`;
   items(unit.topPlate_um).forEach((side, i) => onGrid(`${here}/topPlate_um/${i}`, side, 2));
-  onGrid(`${here}/plateEnclosure_um`, unit.plateEnclosure_um);
+  for (const key of ['plateEnclosure_um', 'tabLevel_um', 'fingerLength_um', 'gap_um', 'frameWidth_um', 'barWidth_um'])
+    onGrid(`${here}/${key}`, unit[key]);
+  onGrid(`${here}/fingerWidth_um`, unit.fingerWidth_um, 2);
   items(unit.tab_um).forEach((side, i) => onGrid(`${here}/tab_um/${i}`, side, i === 1 ? 2 : 1));
-  onGrid(`${here}/tabLevel_um`, unit.tabLevel_um);
+  items(unit.outline_um).forEach((corner, c) =>
+    items(corner).forEach((side, i) => onGrid(`${here}/outline_um/${c}/${i}`, side)),
+  );
   for (const [key, terminal] of Object.entries(record(unit.terminals))) {
     items(record(terminal).at_um).forEach((side, i) => onGrid(`${here}/terminals/${key}/at_um/${i}`, side));
   }
@@ -148,6 +153,7 @@ const kindsOfRole: Readonly<Record<keyof Roles, readonly string[]>> = {
   spine: conducting,
   marker: ['marker'],
   fillExclusion: ['marker'],
+  extractionExclusion: ['marker'],
   boundary: ['outline'],
 };
 
@@ -172,8 +178,11 @@ export function checkRoles(examination: Examination): void {
       `it below ${upper} at ${high} um: ${why}`,
     );
   };
-  below('bottomPlate', 'topPlate', 'the top plate lies on the bottom plate');
-  below('topPlate', 'strap', 'straps run above the plates');
+  const kind = record(examination.technology.unit).kind;
+  if (kind !== 'framed-fingers') below('bottomPlate', 'topPlate', 'the top plate lies on the bottom plate');
+  // A named cell may bring its top terminal on the straps' own metal.
+  if (kind !== 'named-cell' || roles.topPlate !== roles.strap)
+    below('topPlate', 'strap', 'straps run above the plates');
   below('trunk', 'stub', 'trunks run below the stubs that reach them');
   const joined = (a: keyof Roles, b: keyof Roles): void => {
     const [one, other] = [examination.role(a), examination.role(b)];
@@ -190,6 +199,18 @@ export function checkRoles(examination: Examination): void {
 
 export function checkDevice({ technology, report, at }: Examination): void {
   const device = record(technology.device);
+  const parameters = Object.keys(record(device.parameters));
+  for (const key of parameters)
+    if (!/^[A-Za-z][A-Za-z0-9_]{0,63}$/.test(key))
+      report.add(
+        `${at}/device/parameters${step(key)}`,
+        `parameter ${quoted(key)}`,
+        'a letter, then letters, digits or _, 64 at most',
+        'key',
+      );
+  const multiplicity = word(device.multiplicity);
+  if (multiplicity !== undefined && parameters.includes(multiplicity))
+    report.add(`${at}/device/multiplicity`, quoted(multiplicity), 'a key that is no size parameter');
   const terminals = items(device.terminals);
   if (!Array.isArray(device.terminals)) return;
   for (const plate of ['top', 'bottom']) {
@@ -201,4 +222,9 @@ export function checkDevice({ technology, report, at }: Examination): void {
         `"${plate}" once`,
       );
   }
+  const others = terminals.filter((t) => t !== 'top' && t !== 'bottom');
+  if (others.length > 0 && device.bulk === undefined)
+    report.add(`${at}/device`, `terminal ${shown(others[0])} without "bulk"`, '"bulk": the net that it is on');
+  if (others.length === 0 && device.bulk !== undefined)
+    report.add(`${at}/device/bulk`, shown(device.bulk), 'no net, or a terminal for it beside "top" and "bottom"');
 }

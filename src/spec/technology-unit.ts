@@ -1,16 +1,31 @@
-import { items, real, record } from './loose.js';
-import { fromNm, toNm } from './technology-examination.js';
+import { checkFramedFingers } from './technology-fingers.js';
+import { real, record } from './loose.js';
+import { fromNm, pairNm, toNm } from './technology-examination.js';
 import type { Examination } from './technology-examination.js';
-import { quoted, shown } from './words.js';
+import { checkNamedCell } from './technology-named-cell.js';
+import { checkTabs, checkTerminal, densityOf, padOf } from './technology-terminals.js';
+import { quoted } from './words.js';
 
-const at2 = (value: unknown, i: number): number | undefined => real(items(value)[i]);
-/** Plates, tabs and terminals against the rules of their layers. */
+/** A unit against the rules of its layers. */
 export function checkUnit(examination: Examination): void {
+  switch (record(examination.technology.unit).kind) {
+    case 'parallel-plate':
+      return checkParallelPlate(examination);
+    case 'framed-fingers':
+      return checkFramedFingers(examination);
+    case 'named-cell':
+      return checkNamedCell(examination);
+  }
+}
+
+/** Plates, tabs and terminals against the rules of their layers. */
+function checkParallelPlate(examination: Examination): void {
   const { report, technology } = examination;
   const at = `${examination.at}/unit`;
   const unit = record(technology.unit);
+  densityOf(examination, 'plateCapacitance_fF_per_um2');
   const enclosure = toNm(real(unit.plateEnclosure_um));
-  const topPlate = [0, 1].map((i) => toNm(at2(unit.topPlate_um, i)));
+  const topPlate = pairNm(unit.topPlate_um);
   const bottomPlate = topPlate.map((side) =>
     side === undefined || enclosure === undefined ? undefined : side + 2 * enclosure,
   );
@@ -40,54 +55,16 @@ export function checkUnit(examination: Examination): void {
   }
 
   const via = examination.via(examination.role('topPlate'), examination.role('strap'));
-  const size = toNm(real(via?.entry.size_um));
-  const around = toNm(real(via?.entry.enclosure_um));
-  const pad = size === undefined || around === undefined ? undefined : size + 2 * around;
+  const pad = padOf(via);
   topPlate.forEach((side, i) => {
     if (pad === undefined || via === undefined || side === undefined || side >= pad) return;
     const wanted = `${fromNm(pad)} or more: via ${quoted(via.name)} with its enclosure`;
     report.add(`${at}/topPlate_um/${i}`, `a top plate of ${fromNm(side)}`, wanted);
   });
 
-  const terminals = record(unit.terminals);
-  const within = (
-    key: 'top' | 'bottom',
-    role: 'topPlate' | 'bottomPlate',
-    plate: (number | undefined)[],
-    margin: number,
-  ): void => {
-    const terminal = record(terminals[key]);
-    examination.known(`${at}/terminals/${key}/layer`, terminal.layer);
-    const layer = examination.role(role);
-    if (layer !== undefined && examination.layer(terminal.layer) !== undefined && terminal.layer !== layer.name) {
-      report.add(`${at}/terminals/${key}/layer`, shown(terminal.layer), `${quoted(layer.name)}, the layer of ${role}`);
-    }
-    items(terminal.at_um).forEach((given, i) => {
-      const value = toNm(real(given));
-      const side = plate[i];
-      if (value === undefined || side === undefined || side < 2 * margin || 2 * Math.abs(value) + 2 * margin <= side)
-        return;
-      const most = fromNm(side / 2 - margin);
-      const what = margin > 0 ? 'so that the via fits on the plate' : 'on the plate';
-      report.add(`${at}/terminals/${key}/at_um/${i}`, fromNm(value), `-${most} to ${most}, ${what}`);
-    });
-  };
-  within('top', 'topPlate', topPlate, pad === undefined ? 0 : pad / 2);
-  within('bottom', 'bottomPlate', bottomPlate, 0);
-
-  const level = toNm(real(unit.tabLevel_um));
-  const tab = toNm(at2(unit.tab_um, 1));
-  const side = bottomPlate[1];
-  if (level === undefined || tab === undefined) return;
-  if (side !== undefined && 2 * level + tab > side) {
-    report.add(
-      `${at}/tabLevel_um`,
-      fromNm(level),
-      `${fromNm((side - tab) / 2)} at most, so that the tab lies on the plate's edge`,
-    );
-  }
-  const least = toNm(real(examination.role('bottomPlate')?.entry.minWidth_um));
-  if (least !== undefined && tab < least) {
-    report.add(`${at}/tab_um/1`, fromNm(tab), `${fromNm(least)} or more, the minWidth_um of the bottom plate's layer`);
-  }
+  const around = (plate: (number | undefined)[]) =>
+    plate.map((side) => (side === undefined ? undefined : ([-side / 2, side / 2] as const)));
+  checkTerminal(examination, 'top', around(topPlate), pad === undefined ? 0 : pad / 2, 'on the plate');
+  checkTerminal(examination, 'bottom', around(bottomPlate), 0, 'on the plate');
+  checkTabs(examination, bottomPlate[1]);
 }

@@ -44,16 +44,51 @@ interface Terminal {
   readonly at_um: readonly [number, number];
 }
 
+interface AnyUnit {
+  readonly capacitance_fF: number;
+  /** In the unit's coordinates: about its middle, or those of the named cell. */
+  readonly terminals: { readonly bottom: Terminal; readonly top: Terminal };
+}
+
 /** A bottom plate with a smaller top plate on it; tabs left (upper level) and right (lower level) of the bottom plate. */
-interface ParallelPlateUnit {
+export interface ParallelPlateUnit extends AnyUnit {
   readonly kind: 'parallel-plate';
   readonly topPlate_um: readonly [number, number];
   readonly plateEnclosure_um: number;
   readonly tab_um: readonly [number, number];
   readonly tabLevel_um: number;
-  readonly capacitance_fF: number;
-  readonly terminals: { readonly bottom: Terminal; readonly top: Terminal };
 }
+
+/**
+ * Interdigitated metal: a closed frame with fingers hanging from its upper side, the bottom terminal, and within it a comb on the same
+ * metal with its fingers upwards, the top terminal. Tabs as on a parallel plate.
+ */
+export interface FramedFingersUnit extends AnyUnit {
+  readonly kind: 'framed-fingers';
+  /** Fingers of the comb; the frame has one fewer. */
+  readonly fingers: number;
+  readonly fingerLength_um: number;
+  readonly fingerWidth_um: number;
+  /** Between the comb and the frame, all around. */
+  readonly gap_um: number;
+  readonly frameWidth_um: number;
+  /** Height of the bar that the comb's fingers stand on. */
+  readonly barWidth_um: number;
+  readonly tab_um: readonly [number, number];
+  readonly tabLevel_um: number;
+  /** True: a `VSS` strip on the trunks' metal under each column of units. */
+  readonly shield?: boolean;
+}
+
+/** A cell of the user's own library, referenced and not drawn. */
+export interface NamedCellUnit extends AnyUnit {
+  readonly kind: 'named-cell';
+  readonly cell: string;
+  /** Lower left and upper right corner of what the cell occupies, in its own coordinates. */
+  readonly outline_um: readonly [readonly [number, number], readonly [number, number]];
+}
+
+export type Unit = ParallelPlateUnit | FramedFingersUnit | NamedCellUnit;
 
 export interface Gradient {
   readonly linear_ppm_per_um?: number;
@@ -80,6 +115,8 @@ export interface Roles {
   readonly spine: string;
   readonly marker: string;
   readonly fillExclusion: string;
+  /** What a parasitic extractor leaves out, so that the unit's own capacitance does not count twice. */
+  readonly extractionExclusion?: string;
   readonly boundary: string;
 }
 
@@ -96,10 +133,11 @@ export interface Technology {
   readonly wiresUnderPlate: boolean;
   readonly dielectric: {
     readonly relativePermittivity: number;
-    readonly plateCapacitance_fF_per_um2: number;
+    readonly plateCapacitance_fF_per_um2?: number;
     readonly plateFringe_fF_per_um?: number;
+    readonly facingCapacitance_fF_per_um?: number;
   };
-  readonly unit: ParallelPlateUnit;
+  readonly unit: Unit;
   readonly mismatch: {
     readonly coefficient_percent_um: number;
     readonly of: 'single' | 'pair';

@@ -4,6 +4,7 @@ import type { Result } from '../../src/core/problem.js';
 import { parseArray } from '../../src/spec/parse-array.js';
 import { parseFloorplan } from '../../src/spec/parse-floorplan.js';
 import { parseLayerMap } from '../../src/spec/parse-layer-map.js';
+import { parsePins } from '../../src/spec/parse-pins.js';
 import { parsePolygons } from '../../src/spec/parse-polygons.js';
 import { parseTechnology } from '../../src/spec/parse-technology.js';
 import { changed, kiln4, linesOf } from './kiln4.js';
@@ -170,13 +171,17 @@ const lists: Case[] = [
 const technologies: Case[] = [
   [
     ['unit', 'kind'],
-    'framed-fingers',
-    ['/unit | kind "framed-fingers" | a unit of kind "parallel-plate": "framed-fingers" is not available yet'],
+    'spiral',
+    ['/unit/kind | "spiral" | "parallel-plate", "framed-fingers" or "named-cell"'],
   ],
   [
     ['unit'],
     { kind: 'named-cell', cell: 'mine' },
-    ['/unit | kind "named-cell" | a unit of kind "parallel-plate": "named-cell" is not available yet'],
+    [
+      '/unit | no key "capacitance_fF" | "capacitance_fF": a number above 0',
+      '/unit | no key "outline_um" | "outline_um": a list of 2',
+      '/unit | no key "terminals" | "terminals": an object with "bottom", "top"',
+    ],
   ],
   [['hookup'], 'under-plate', ['/hookup | "under-plate" | "channel" ("under-plate" is not available yet)']],
   [['name'], '../x', ['/name | "../x" | a letter, then letters, digits, - or _, 40 at most']],
@@ -366,7 +371,7 @@ describe('broken technologies', () => {
 });
 
 describe('any damage at all', () => {
-  const parsers = [parseArray, parseFloorplan, parsePolygons, parseTechnology, parseLayerMap];
+  const parsers = [parseArray, parseFloorplan, parsePolygons, parseTechnology, parseLayerMap, parsePins];
   const texts = [kiln4('kiln4.array.json'), files.floorplan, files.technology];
 
   it('to the text ends in a result', () => {

