@@ -15,7 +15,6 @@ import type { PlaceFlags } from './place.js';
 const laterCommands = ['pattern', 'compare', 'size', 'simulate'];
 const laterOptions: Readonly<Record<string, readonly string[]>> = {
   place: ['--candidates', '--samples', '--workers'],
-  export: ['--stub-cell'],
 };
 
 const examples: Readonly<Record<string, readonly string[]>> = {
@@ -78,6 +77,7 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
     .option('--layers <file>', "layer map: stream numbers of one's own in the stream file and the polygon list")
     .option('--pins <file>', "pin names of one's own in the stream file, the netlists, the abstract and the picture")
     .option('--flat', 'stream file: everything in one structure')
+    .option('--stub-cell', "stream file: a placeholder for the named cell of one's own library")
     .option('--devices <units|merged>', '.lvs.cir: one device a unit, or one a capacitor (default: units)')
     .option('--dummies <include|omit>', 'netlists: with dummies or without (default: include)')
     .option(

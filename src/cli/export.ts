@@ -15,6 +15,7 @@ export interface ExportFlags {
   readonly layers?: string;
   readonly pins?: string;
   readonly flat?: boolean;
+  readonly stubCell?: boolean;
   readonly devices?: string;
   readonly dummies?: string;
   readonly date?: string;
@@ -25,10 +26,13 @@ const laterFormats = ['report'];
 
 const choices = { devices: ['units', 'merged'], dummies: ['include', 'omit'] } as const;
 /** The formats that each option has a say in. */
-const concerns: Readonly<Record<'layers' | 'pins' | 'flat' | 'devices' | 'dummies' | 'date', readonly Format[]>> = {
+const concerns: Readonly<
+  Record<'layers' | 'pins' | 'flat' | 'stubCell' | 'devices' | 'dummies' | 'date', readonly Format[]>
+> = {
   layers: ['gds', 'polygons'],
   pins: ['gds', 'svg', 'spice', 'lef'],
   flat: ['gds'],
+  stubCell: ['gds'],
   devices: ['spice'],
   dummies: ['spice'],
   date: ['gds'],
@@ -67,14 +71,17 @@ function settled(flags: ExportFlags) {
   const dummies = choiceOf(flags, 'dummies', problems);
   for (const [key, of] of Object.entries(concerns))
     if (flags[key as keyof typeof concerns] !== undefined && !of.some((format) => chosen.includes(format)))
-      problems.push(`export --${key}: found no file that it changes; wanted --to with ${of.join(' or ')}`);
+      problems.push(
+        `export --${key.replace('C', '-c')}: found no file that it changes; wanted --to with ${of.join(' or ')}`,
+      );
   if (problems.length > 0) throw new UsageError(problems);
-  const { date, flat } = flags;
+  const { date, flat, stubCell } = flags;
   return {
     chosen,
     options: {
       ...(date !== undefined && { date }),
       ...(flat !== undefined && { flat }),
+      ...(stubCell !== undefined && { stubCell }),
       ...(devices !== undefined && { devices }),
       ...(dummies !== undefined && { dummies }),
     },
@@ -96,6 +103,10 @@ async function pinsFrom(io: Io, { capacitors }: Floorplan, path: string): Promis
 export async function exportFiles(io: Io, file: string, flags: ExportFlags): Promise<number> {
   const { chosen, options } = settled(flags);
   const own = await floorplanToDraw(io, file, await readText(io, file));
+  if (flags.stubCell === true && own.technology.unit.kind !== 'named-cell')
+    throw new UsageError([
+      `export --stub-cell: found units that are drawn; wanted a technology whose unit is a cell of one's own library`,
+    ]);
   const technology = flags.layers === undefined ? own.technology : await withLayers(io, own.technology, flags.layers);
   const pins = flags.pins === undefined ? undefined : await pinsFrom(io, own.floorplan, flags.pins);
   const draw = (on: Technology) => inFile(file, () => drawFloorplan(own.floorplan, on, { keepHookup: true }));

@@ -19,6 +19,7 @@ import type { OutputFile } from './io.js';
 export interface WriterOptions {
   readonly date?: string;
   readonly flat?: boolean;
+  readonly stubCell?: boolean;
   readonly pins?: PinMap;
   readonly devices?: 'units' | 'merged';
   readonly dummies?: 'include' | 'omit';

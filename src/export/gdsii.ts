@@ -1,7 +1,7 @@
 import type { Label, Point, Polygon, Reference, Structure } from '../core/layout.js';
 import { InputError } from '../core/problem.js';
 import type { Polygons } from '../spec/polygons.js';
-import { inOneStructure } from './drawn-shapes.js';
+import { flatStructures, libraryCellOf } from './library-cell.js';
 import { isStreamName, latticeEnds, libraryNameWanted, streamProblems } from './stream-limits.js';
 import * as record from './stream-records.js';
 
@@ -11,6 +11,8 @@ export interface StreamOptions {
   readonly libraryName?: string;
   /** Everything in the top structure, without references. */
   readonly flat?: boolean;
+  /** Where units are a named cell: with a placeholder for it, so that the file can be read alone. */
+  readonly stubCell?: boolean;
 }
 
 const VERSION = 600;
@@ -19,7 +21,7 @@ const NO_DATE = '2000-01-01';
 
 /**
  * The drawing as a GDSII stream file: the same structures, one reference record per reference (an array record where it repeats); or,
- * flat, one structure.
+ * flat, one structure. A named cell of the user's own library is referenced and not defined.
  *
  * @param p whole database units; polygons not closed, the writer closes them.
  * @param options the library is named after the top structure unless told otherwise.
@@ -42,10 +44,13 @@ export function writeStream(p: Polygons, options: StreamOptions = {}): Uint8Arra
     problems.push({ pointer: '', found: `date ${JSON.stringify(options.date)}`, wanted: 'a day as YYYY-MM-DD' });
   let { structures } = p;
   if (options.flat === true && problems.length === 0) {
-    structures = [inOneStructure(p)];
+    structures = flatStructures(p);
     problems.push(...streamProblems({ ...p, structures }));
   }
   if (problems.length > 0 || date === undefined) throw new InputError(problems);
+
+  const cell = options.stubCell === true ? undefined : libraryCellOf(p);
+  if (cell !== undefined) structures = structures.filter((s) => s.name !== cell);
 
   const out = new record.StreamRecords();
   out.begin(record.HEADER).int16(VERSION).end();

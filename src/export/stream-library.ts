@@ -5,6 +5,7 @@ import { nm } from '../core/units.js';
 import type { Polygons } from '../spec/polygons.js';
 import { writeStream } from './gdsii.js';
 import type { StreamOptions } from './gdsii.js';
+import { libraryCellOf } from './library-cell.js';
 import { LONGEST_NAME } from './stream-limits.js';
 
 export interface LibraryOptions extends StreamOptions {
@@ -36,12 +37,15 @@ export function writeStreamLibrary(drawings: readonly Polygons[], options: Libra
     const box = boundsOf(p);
     const names = freeNames(p, taken);
     const nameOf = (name: string) => names.get(name) ?? name;
-    for (const s of p.structures)
+    for (const s of p.structures) {
+      // A library's cell keeps its name and stands for all drawings.
+      if (s.name === libraryCellOf(p) && structures.some((other) => other.name === s.name)) continue;
       structures.push({
         ...s,
         name: nameOf(s.name),
         references: s.references.map((r) => ({ ...r, structure: nameOf(r.structure) })),
       });
+    }
     references.push({
       structure: nameOf(p.topStructure),
       origin: [x - box.x0, -box.y0],
@@ -55,12 +59,13 @@ export function writeStreamLibrary(drawings: readonly Polygons[], options: Libra
     x += box.x1 - box.x0 + gap;
   });
   const top: Structure = { name: topStructure, polygons: [], references, labels: [] };
-  return writeStream({ ...first, topStructure, structures: [...structures, top] }, rest);
+  const { technology } = drawings.find((p) => libraryCellOf(p) !== undefined) ?? first;
+  return writeStream({ ...first, technology, topStructure, structures: [...structures, top] }, rest);
 }
 
 /** A name for each structure of the drawing that is not taken yet; all of them are taken then. */
 function freeNames(p: Polygons, taken: Set<string>): Map<string, string> {
-  const own = new Set(p.structures.map((s) => s.name));
+  const own = new Set(p.structures.map((s) => s.name).filter((name) => name !== libraryCellOf(p)));
   const names = new Map<string, string>();
   for (const name of own) {
     let free = name;

@@ -1,4 +1,4 @@
-import { integer, items, real, record } from './loose.js';
+import { integer, items, real, record, word } from './loose.js';
 import { fromNm, pairNm, toNm } from './technology-examination.js';
 import type { Examination } from './technology-examination.js';
 import { checkTerminal, padOf } from './technology-terminals.js';
@@ -37,10 +37,11 @@ export function checkNamedCell(examination: Examination): void {
       ? undefined
       : examination.via(examination.role('topPlate'), examination.role('strap'));
   checkTerminal(examination, 'top', within, (padOf(toStraps) ?? 0) / 2, 'within the outline');
-  if (technology.viaUnderTopPlate === false && roles.topPlate !== undefined && roles.topPlate === roles.strap)
+  const topLayer = word(roles.topPlate);
+  if (technology.viaUnderTopPlate === false && topLayer !== undefined && topLayer === roles.strap)
     report.add(
       `${examination.at}/viaUnderTopPlate`,
       'false',
-      `true: ${quoted(String(roles.topPlate))} is the straps' metal too, and straps run over vias`,
+      `true: ${quoted(topLayer)} is the straps' metal too, and straps run over vias`,
     );
 }
