@@ -100,7 +100,7 @@ export const deviceName = ({
 const WIDTH = 80;
 
 /** Words on as many lines as they need, the further ones begun with a plus sign. */
-export function folded(words: readonly string[]): string {
+function folded(words: readonly string[]): string {
   let text = '';
   let line = '';
   for (const word of words) {

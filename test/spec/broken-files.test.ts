@@ -301,6 +301,18 @@ const technologies: Case[] = [
     ['/device/terminals | "top" 2 times | "top" once', '/device/terminals | "bottom" missing | "bottom" once'],
   ],
   [
+    ['device', 'parameters'],
+    { 'w\n.end': '1' },
+    ['/device/parameters/w\\u000a.end | parameter "w\\n.end" | a letter, then letters, digits or _, 64 at most'],
+  ],
+  [['device', 'multiplicity'], 'w', ['/device/multiplicity | "w" | a key that is no size parameter']],
+  [
+    ['device', 'terminals'],
+    ['top', 'bottom', 'well'],
+    ['/device | terminal "well" without "bulk" | "bulk": the net that it is on'],
+  ],
+  [['device', 'bulk'], 'VSS', ['/device/bulk | "VSS" | no net, or a terminal for it beside "top" and "bottom"']],
+  [
     ['device', 'parameters', 'w'],
     '4u\n.end',
     ['/device/parameters/w | "4u\\n.end" | a value without blanks: letters, digits and _ . + - * / ( )'],
