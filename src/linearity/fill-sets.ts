@@ -16,29 +16,28 @@ export interface Places {
   readonly y: Int32Array;
 }
 
-/**
- * Visits every set of `count` cells with zero sum that leaves the centre out. The last cell follows from the others, so
- * there are about choose(cells, count - 1) / count of them.
- *
- * @param visit called with a mark per cell of the set (valid during the call) and the set's own second moments.
- */
-export function visitZeroSumSets(
-  { rows, columns, x, y }: Places,
+export function spreadOf({ x, y }: Places, cells: readonly number[]): Spread {
+  const spread = { xx: 0, xy: 0, yy: 0 };
+  for (const cell of cells) {
+    spread.xx += x[cell] * x[cell];
+    spread.xy += x[cell] * y[cell];
+    spread.yy += y[cell] * y[cell];
+  }
+  return spread;
+}
+
+/** Visits sets of `count` cells (the list is valid during the call) that leave the centre out. */
+export type VisitSets = (
+  places: Places,
   count: number,
-  visit: (taken: Uint8Array, spread: Spread) => void,
-): void {
+  visit: (cells: readonly number[], spread: Spread) => void,
+) => void;
+
+/** Every set with zero sum. The last cell follows from the others, so there are about choose(cells, count - 1) / count of them. */
+export const visitZeroSumSets: VisitSets = (places, count, visit) => {
+  const { rows, columns, x, y } = places;
   const centre = (rows * columns - 1) / 2;
-  const taken = new Uint8Array(rows * columns);
   const cells: number[] = [];
-  const visitSet = (): void => {
-    const spread = { xx: 0, xy: 0, yy: 0 };
-    for (const cell of cells) {
-      spread.xx += x[cell] * x[cell];
-      spread.xy += x[cell] * y[cell];
-      spread.yy += y[cell] * y[cell];
-    }
-    visit(taken, spread);
-  };
   /** The cell that brings the sum back to 0, if it lies on the core. */
   const closing = (sumX: number, sumY: number): number => {
     const column = (columns - 1 - sumX) / 2;
@@ -49,7 +48,7 @@ export function visitZeroSumSets(
   /** Takes `left` more cells below `before`, in descending order so that each set comes once. */
   const take = (left: number, before: number, sumX: number, sumY: number): void => {
     if (left === 0) {
-      visitSet();
+      visit(cells, spreadOf(places, cells));
       return;
     }
     const last = left === 1 ? closing(sumX, sumY) : -1;
@@ -57,12 +56,25 @@ export function visitZeroSumSets(
     const to = left === 1 ? Math.min(last + 1, before) : before;
     for (let cell = from; cell < to; cell++) {
       if (cell === centre) continue;
-      taken[cell] = 1;
       cells.push(cell);
       take(left - 1, cell, sumX + x[cell], sumY + y[cell]);
       cells.pop();
-      taken[cell] = 0;
     }
   };
   take(count, rows * columns, 0, 0);
-}
+};
+
+/** Every set of reflected pairs: each cell with its reflection. None where `count` is odd. */
+export const visitPairSets: VisitSets = (places, count, visit) => {
+  const last = places.rows * places.columns - 1;
+  const cells: number[] = [];
+  const take = (left: number, before: number): void => {
+    if (left === 0) visit(cells, spreadOf(places, cells));
+    for (let cell = left / 2 - 1; left > 0 && cell < before; cell++) {
+      cells.push(cell, last - cell);
+      take(left - 2, cell);
+      cells.length -= 2;
+    }
+  };
+  if (count % 2 === 0) take(count, last / 2);
+};

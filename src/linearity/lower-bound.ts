@@ -1,9 +1,9 @@
 import type { Capacitor, Core } from '../spec/floorplan.js';
-import { perPpmPerUm2, pitchNm, onePercent } from './figures.js';
-import { visitZeroSumSets } from './fill-sets.js';
-import type { Places, Spread } from './fill-sets.js';
-import { offset2 } from './moments.js';
-import { nuclearNormSquared } from './worst-code.js';
+import { onePercent, perPpmPerUm2 } from './figures.js';
+import { visitPairSets, visitZeroSumSets } from './fill-sets.js';
+import type { Spread, VisitSets } from './fill-sets.js';
+import { OddCore, without } from './odd-core.js';
+import { Limit, PartialCodes } from './partial-codes.js';
 
 /** In the units of a placement's own second order, so that `squared` equal to its own proves it the best. */
 export interface SecondOrderBound {
@@ -13,8 +13,23 @@ export interface SecondOrderBound {
   readonly inl_lsb_per_ppm_per_um2: number;
 }
 
+/**
+ * Which placements a bound or a proof is about: all whose first order is exactly 0, or those of them whose capacitors and fill are each
+ * symmetric about the centre.
+ */
+export type PlacementClass = 'zero-first-order' | 'point-reflected';
+
+const SETS: Readonly<Record<PlacementClass, VisitSets>> = {
+  'zero-first-order': visitZeroSumSets,
+  'point-reflected': visitPairSets,
+};
+
 /** Pairs times fill sets that are looked at; more than that, and there is no bound. */
 const MOST_WORK = 4_000_000;
+/** The same where a third capacitor is looked at too, the sets of 4 cells, and the trials of one of them with a pair and a fill set. */
+const MOST_HEADS = 200_000;
+const MOST_FOURS = 120_000;
+const MOST_TRIALS = 2_000_000;
 
 /**
  * A bound below the second order of every placement of these bits on this core whose first order is exactly 0. The cells
@@ -33,21 +48,98 @@ const MOST_WORK = 4_000_000;
  * @returns undefined where a condition fails, where the fill may reach W pitches, or where there are too many fill sets.
  */
 export function lowerBound(core: Core, bits: readonly Capacitor[]): SecondOrderBound | undefined {
+  const frame = frameOf(core, bits, 'zero-first-order');
+  if (frame === undefined || frame.heads > MOST_WORK) return undefined;
+  let least: Limit | undefined;
+  visitHeads(frame, ({ one, pair }) => {
+    if (one.isBelow(least, ...pair)) least = new Limit(one.exactlyWith(...pair));
+  });
+  return least && boundOf(core, frame, least.squared);
+}
+
+/**
+ * The same with a third capacitor, of 4 units, in all its places beside the pair's: 4 cells of zero sum, or two reflected pairs
+ * where the bound is to hold for point-reflected placements only. Never below `lowerBound`; with four capacitors and no
+ * others it is what the best placement of the class has, since the fourth is minus the sum of three.
+ *
+ * @returns undefined where `lowerBound` is, without exactly one capacitor of 4 units, or where there are too many sets.
+ */
+export function strongerBound(
+  core: Core,
+  bits: readonly Capacitor[],
+  placements: PlacementClass,
+): SecondOrderBound | undefined {
+  const frame = frameOf(core, bits, placements);
+  if (frame === undefined || !isLone(bits, 4) || frame.heads > MOST_HEADS || frame.fours > MOST_FOURS) return undefined;
+  const { odd, total } = frame;
+  const fours = foursOf(frame);
+  const heads: (Head & { readonly largest: number })[] = [];
+  visitHeads(frame, (head) =>
+    heads.push({ ...head, fill: [...head.fill], largest: head.one.largestWith(...head.pair) }),
+  );
+  heads.sort((a, b) => a.largest - b.largest);
+  const taken = new Uint8Array(odd.places.x.length);
+  let trials = 0;
+  let least: Limit | undefined;
+  for (const { one, pair, bits: spread, cell, fill, largest } of heads) {
+    if (least && largest > least.high) break;
+    if ((trials += fours.length) > MOST_TRIALS) return undefined;
+    const two = one.with(...pair);
+    const cells = [...fill, cell, taken.length - 1 - cell];
+    for (const used of cells) taken[used] = 1;
+    for (const four of fours) {
+      if (four.cells.some((used) => taken[used])) continue;
+      const residual = odd.residual(total, spread, 4, four.spread);
+      if (two.isBelow(least, ...residual)) least = new Limit(two.exactlyWith(...residual));
+    }
+    for (const used of cells) taken[used] = 0;
+  }
+  return least && boundOf(core, frame, least.squared);
+}
+
+interface Frame {
+  readonly odd: OddCore;
+  readonly visitSets: VisitSets;
+  /** W. */
+  readonly total: number;
+  /** Cells of fill. */
+  readonly fill: number;
+  /** About how many fill sets times pairs there are, and how many sets of four cells. */
+  readonly heads: number;
+  readonly fours: number;
+}
+
+/** A fill set and a pair for the 2-unit capacitor. */
+interface Head {
+  /** The 1-unit capacitor alone. */
+  readonly one: PartialCodes;
+  /** The residual of the 2-unit one. */
+  readonly pair: readonly [t: number, u: number, v: number];
+  /** Second moments of all bits. */
+  readonly bits: Spread;
+  /** The pair's lower cell, and cells of fill. */
+  readonly cell: number;
+  readonly fill: readonly number[];
+}
+
+const isLone = (bits: readonly Capacitor[], units: number): boolean =>
+  bits.filter((bit) => bit.units === units).length === 1;
+
+function frameOf(core: Core, bits: readonly Capacitor[], placements: PlacementClass): Frame | undefined {
   const { rows, columns } = core;
   const total = bits.reduce((sum, { units }) => sum + units, 0);
   const fill = rows * columns - total;
-  const lone = (units: number): boolean => bits.filter((bit) => bit.units === units).length === 1;
-  if (rows % 2 === 0 || columns % 2 === 0 || fill < 0 || !lone(1) || !lone(2)) return undefined;
+  if (rows % 2 === 0 || columns % 2 === 0 || fill < 0 || !isLone(bits, 1) || !isLone(bits, 2)) return undefined;
   if (bits.some((bit) => bit.weight !== bit.units)) return undefined;
-  // |sum of the fill's coordinates| <= fill * half the core, in pitches.
-  if (fill * ((columns - 1) / 2) >= total || fill * ((rows - 1) / 2) >= total) return undefined;
-
   const pairs = (rows * columns - 1) / 2;
-  if (fill > 0 && (choices(2 * pairs, fill - 1) / fill) * pairs > MOST_WORK) return undefined;
-  const squared = leastSquaredNorm(core, total, fill);
-  if (squared === undefined) return undefined;
-  const perPpm = perPpmPerUm2(squared, BigInt(total));
-  return { squared, inl_lsb: perPpm * onePercent(core, 2), inl_lsb_per_ppm_per_um2: perPpm };
+  const free = placements === 'zero-first-order';
+  // |sum of the fill's coordinates| <= fill * half the core, in pitches; the sum of reflected pairs is 0.
+  if (free && (fill * ((columns - 1) / 2) >= total || fill * ((rows - 1) / 2) >= total)) return undefined;
+  const sets = (cells: number): number =>
+    cells === 0 ? 1 : free ? choices(2 * pairs, cells - 1) / cells : choices(pairs, cells / 2);
+  const odd = new OddCore(core);
+  if (!odd.holds(total)) return undefined;
+  return { odd, total, fill, visitSets: SETS[placements], heads: pairs * sets(fill), fours: sets(4) };
 }
 
 function choices(n: number, k: number): number {
@@ -56,68 +148,33 @@ function choices(n: number, k: number): number {
   return product;
 }
 
-function leastSquaredNorm(core: Core, total: number, fill: number): bigint | undefined {
-  const places = placesOf(core);
-  const { x, y } = places;
-  const centre = (x.length - 1) / 2;
-  const whole = { xx: 0, xy: 0, yy: 0 };
-  for (let cell = 0; cell < x.length; cell++) {
-    whole.xx += x[cell] * x[cell];
-    whole.yy += y[cell] * y[cell];
-  }
-  const [px, py] = pitchNm(core.pitch_um);
-  const norm2 = (xx: number, xy: number, yy: number): number => {
-    const trace = px * px * xx + py * py * yy;
-    const difference = px * px * xx - py * py * yy;
-    const cross = 2 * px * py * xy;
-    return Math.max(trace * trace, difference * difference + cross * cross);
-  };
-  const [bx, by] = [BigInt(px), BigInt(py)];
-  const exactNorm2 = (xx: number, xy: number, yy: number): bigint =>
-    4n * nuclearNormSquared(bx * bx * BigInt(xx), bx * by * BigInt(xy), by * by * BigInt(yy));
-
-  // A double is off by a few 2^-53, relatively: in the larger of trace and difference no cancellation goes below its own
-  // terms. So what is least exactly is among those within 1e-12 of the least double, and those are compared in whole
-  // numbers.
-  let least = Infinity;
-  let nearest: { readonly pair: number; readonly bits: Spread }[] = [];
-  visitZeroSumSets(places, fill, (taken, spread) => {
-    const bits = { xx: whole.xx - spread.xx, xy: whole.xy - spread.xy, yy: whole.yy - spread.yy };
-    for (let pair = 0; pair < centre; pair++) {
-      if (taken[pair] || taken[2 * centre - pair]) continue;
-      const largest = largestOfThree(norm2, total, x[pair], y[pair], bits);
-      if (largest > least * (1 + 1e-12)) continue;
-      if (largest * (1 + 1e-12) < least) nearest = [];
-      if (largest < least) least = largest;
-      nearest.push({ pair, bits });
+/** @param visit called with a head whose `fill` is valid during the call. */
+function visitHeads({ odd, total, fill, visitSets }: Frame, visit: (head: Head) => void): void {
+  const { places, whole } = odd;
+  const last = places.x.length - 1;
+  visitSets(places, fill, (filled, spread) => {
+    const bits = without(whole, spread);
+    const one = PartialCodes.none.with(...odd.residual(total, bits, 1, NOWHERE));
+    for (let cell = 0; cell < last / 2; cell++) {
+      if (filled.includes(cell) || filled.includes(last - cell)) continue;
+      const [x, y] = [places.x[cell], places.y[cell]];
+      const pair = odd.residual(total, bits, 2, { xx: 2 * x * x, xy: 2 * x * y, yy: 2 * y * y });
+      visit({ one, pair, bits, cell, fill: filled });
     }
   });
-  let exact: bigint | undefined;
-  for (const { pair, bits } of nearest) {
-    const largest = largestOfThree(exactNorm2, total, x[pair], y[pair], bits);
-    if (exact === undefined || largest < exact) exact = largest;
-  }
-  return exact;
 }
 
-/** The largest norm of W B_0, W B_1 and their sum: -T, 2 W r r' - 2 T and 2 W r r' - 3 T, whole numbers. */
-function largestOfThree<T extends number | bigint>(
-  norm2: (xx: number, xy: number, yy: number) => T,
-  total: number,
-  x: number,
-  y: number,
-  { xx, xy, yy }: Spread,
-): T {
-  const pair = 2 * total;
-  const lone = norm2(xx, xy, yy);
-  const two = norm2(pair * x * x - 2 * xx, pair * x * y - 2 * xy, pair * y * y - 2 * yy);
-  const both = norm2(pair * x * x - 3 * xx, pair * x * y - 3 * xy, pair * y * y - 3 * yy);
-  const larger = two > both ? two : both;
-  return lone > larger ? lone : larger;
+/** Second moments of the centre cell. */
+const NOWHERE: Spread = { xx: 0, xy: 0, yy: 0 };
+
+function foursOf({ odd, visitSets }: Frame): { readonly cells: readonly number[]; readonly spread: Spread }[] {
+  const fours: { cells: readonly number[]; spread: Spread }[] = [];
+  visitSets(odd.places, 4, (cells, spread) => fours.push({ cells: [...cells], spread }));
+  return fours;
 }
 
-function placesOf({ rows, columns }: Core): Places {
-  const x = Int32Array.from({ length: rows * columns }, (_, cell) => offset2(cell % columns, columns));
-  const y = Int32Array.from({ length: rows * columns }, (_, cell) => -offset2(Math.floor(cell / columns), rows));
-  return { rows, columns, x, y };
+function boundOf(core: Core, { odd, total }: Frame, reduced: bigint): SecondOrderBound {
+  const squared = odd.unit * reduced;
+  const perPpm = perPpmPerUm2(squared, BigInt(total));
+  return { squared, inl_lsb: perPpm * onePercent(core, 2), inl_lsb_per_ppm_per_um2: perPpm };
 }

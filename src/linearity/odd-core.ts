@@ -1,5 +1,6 @@
 import type { Core } from '../spec/floorplan.js';
 import { pitchNm } from './figures.js';
+import { spreadOf } from './fill-sets.js';
 import type { Places, Spread } from './fill-sets.js';
 import { offset2 } from './moments.js';
 
@@ -45,16 +46,6 @@ export class OddCore {
     const yy = this.scale.yy * (total * own.yy - weight * bits.yy);
     return [xx + yy, xx - yy, 2 * this.scale.xy * (total * own.xy - weight * bits.xy)];
   }
-}
-
-export function spreadOf({ x, y }: Places, cells: readonly number[]): Spread {
-  let [xx, xy, yy] = [0, 0, 0];
-  for (const cell of cells) {
-    xx += x[cell] * x[cell];
-    xy += x[cell] * y[cell];
-    yy += y[cell] * y[cell];
-  }
-  return { xx, xy, yy };
 }
 
 export const without = (a: Spread, b: Spread): Spread => ({ xx: a.xx - b.xx, xy: a.xy - b.xy, yy: a.yy - b.yy });

@@ -12,6 +12,13 @@ export class Limit {
     this.low = Number(squared) * (1 - 1e-12);
     this.high = Number(squared) * (1 + 1e-12);
   }
+
+  /** Whether the square of twice (u, v) is not below. */
+  isReached(u: number, v: number): boolean {
+    if (4 * (u * u + v * v) < this.low) return false;
+    const [x, y] = [BigInt(u), BigInt(v)];
+    return 4n * (x * x + y * y) >= this.squared;
+  }
 }
 
 /**
@@ -82,7 +89,14 @@ export class PartialCodes {
     if (limit === undefined) return true;
     const largest = this.largestWith(t, u, v);
     if (largest < limit.low) return true;
-    return largest <= limit.high && this.exactlyWith(t, u, v) < limit.squared;
+    if (largest > limit.high) return false;
+    if (limit.isReached(this.positive + Math.max(t, 0), 0)) return false;
+    if (limit.isReached(this.negative + Math.min(t, 0), 0)) return false;
+    for (let code = 0; code < this.u.length; code++) {
+      if (limit.isReached(this.u[code], this.v[code])) return false;
+      if (limit.isReached(this.u[code] + u, this.v[code] + v)) return false;
+    }
+    return true;
   }
 
   /** Ranges outside which one more capacitor's t, u or v is never below the limit; a shade wider than that. */
