@@ -18,6 +18,8 @@ export interface Weighing {
   /** Up to this multiple mismatch hardly counts, beyond it heavily. */
   readonly mismatchLimit: number;
   readonly nets: number;
+  /** The core's other orientation is as good if its second order is within this multiple of the better one's: the fewer column nets decide. */
+  readonly orientation: number;
   /** The deals of the starts, in turn. */
   readonly plans: readonly ColumnPlan[];
 }
@@ -25,20 +27,21 @@ export interface Weighing {
 const freely: readonly ColumnPlan[] = [null];
 
 export const weighings: Readonly<Record<Emphasis, Weighing>> = {
-  gradient: { second: 1, limit: Infinity, mismatch: 0, mismatchLimit: 0, nets: 0, plans: freely },
-  dispersed: { second: 0.1, limit: 1.2, mismatch: 3, mismatchLimit: 0, nets: 0, plans: freely },
+  gradient: { second: 1, limit: Infinity, mismatch: 0, mismatchLimit: 0, nets: 0, orientation: 1, plans: freely },
+  dispersed: { second: 0.1, limit: 1.2, mismatch: 3, mismatchLimit: 0, nets: 0, orientation: 1, plans: freely },
   balanced: {
     second: 0.3,
-    limit: 1.2,
-    mismatch: 0.3,
-    mismatchLimit: 1.4,
-    nets: 3,
+    limit: 1.3,
+    mismatch: 0.2,
+    mismatchLimit: 1.13,
+    nets: 4,
+    orientation: 1.05,
     plans: [
       { moment: 1, dispersion: 10 },
-      { moment: 2, dispersion: 10 },
-      { moment: 1, dispersion: 6 },
-      { moment: 1, dispersion: 15 },
-      { moment: 4, dispersion: 8 },
+      { moment: 2, dispersion: 8 },
+      { moment: 1, dispersion: 7 },
+      { moment: 1, dispersion: 13 },
+      { moment: 3, dispersion: 10 },
       null,
     ],
   },
@@ -48,6 +51,7 @@ export const weighings: Readonly<Record<Emphasis, Weighing>> = {
     mismatch: 0,
     mismatchLimit: 0,
     nets: 6,
+    orientation: Infinity,
     plans: [
       { moment: 0.7, dispersion: 0 },
       { moment: 0.85, dispersion: 0 },
