@@ -1,18 +1,22 @@
 import { Command, CommanderError } from 'commander';
-import { options as settings, schemaNames } from '../index.js';
+import { publishedRules, schemaNames, options as settings } from '../index.js';
 import { printSchema, printTechnology } from './catalogue.js';
 import { check } from './check.js';
 import type { CheckFlags } from './check.js';
+import { compareFiles } from './compare.js';
+import type { CompareFlags } from './compare.js';
 import { exportFiles } from './export.js';
 import type { ExportFlags } from './export.js';
 import { UsageError, exit } from './fault.js';
 import { formats } from './files.js';
 import type { Io } from './io.js';
+import { pattern } from './pattern.js';
+import type { PatternFlags } from './pattern.js';
 import { place } from './place.js';
 import type { PlaceFlags } from './place.js';
 
 /** Commands and options that a later version brings: refused by name rather than taken for a slip of the pen. */
-const laterCommands = ['pattern', 'compare', 'size', 'simulate'];
+const laterCommands = ['size', 'simulate'];
 const laterOptions: Readonly<Record<string, readonly string[]>> = {
   place: ['--candidates', '--samples', '--workers'],
 };
@@ -23,6 +27,12 @@ const examples: Readonly<Record<string, readonly string[]>> = {
   export: [
     'steelyard place --bits 4 --out demo',
     'steelyard export demo/cdac4.floorplan.json --to gds,lef,spice --flat --devices merged --out handover',
+  ],
+  pattern: ['steelyard pattern chessboard --bits 6'],
+  compare: [
+    'steelyard pattern spiral --bits 6 --out spiral.floorplan.json',
+    'steelyard pattern interleaved --bits 6 --out interleaved.floorplan.json',
+    'steelyard compare spiral.floorplan.json interleaved.floorplan.json',
   ],
   schema: ['steelyard schema array'],
   technology: ['steelyard technology parallel-plate'],
@@ -61,6 +71,22 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
     .option('--pitch <X,Y>', 'pitch in micrometres, with --floorplan-only')
     .option('--json', 'print the metrics, and nothing else, as JSON')
     .action(async (file: string | undefined, flags: PlaceFlags) => finish(await place(io, file, flags)));
+
+  command('pattern', "Prints a published rule's placement as a floorplan, to compare with.")
+    .argument('<NAME>', publishedRules.map((rule) => `${rule.name}: ${rule.help}`).join('; '))
+    .requiredOption('--bits <count>', 'number of bits: even, from 4')
+    .option('--pitch <X,Y>', 'pitch in micrometres (default: 1,1)')
+    .option('--out <file>', 'write it to this file')
+    .action(async (name: string, flags: PatternFlags) => finish(await pattern(io, name, flags)));
+
+  command('compare', 'Sets floorplans of one array side by side and says which is less sensitive, and why.')
+    .argument('<FLOORPLAN...>', 'floorplan files; core, capacitors and cells are all that they need')
+    .option('--pitch <own or X,Y>', "pitch for all in micrometres, or each on its own (default: the first drawn one's)")
+    .option('--gradient <file>', 'measured map, CSV with the header x_um,y_um,ppm about the centre of the core')
+    .option('--correlation-length <um>', 'of random mismatch (default: 0.9 at a distance of one pitch)')
+    .option('--json', 'print the comparison, and nothing else, as JSON')
+    .option('--csv', 'print the figures, and nothing else, as CSV')
+    .action(async (files: readonly string[], flags: CompareFlags) => finish(await compareFiles(io, files, flags)));
 
   command('check', 'Checks a drawing from its polygons alone; given a floorplan alone, draws it first.')
     .argument('<FILE>', 'floorplan or polygons file')

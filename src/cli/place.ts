@@ -13,6 +13,7 @@ import { Interrupted, UsageError, exit, shown } from './fault.js';
 import { allFiles } from './files.js';
 import { formatOf, inFile, readText } from './input.js';
 import type { Io } from './io.js';
+import { pitchOf } from './pitch.js';
 import { findingLines, lines, summaryOf } from './summary.js';
 import { floorplanToDraw, standardTechnology, technologyNamed, valueOf } from './technology.js';
 
@@ -44,20 +45,6 @@ function coreOf(text: string, problems: Problem[]): unknown {
   if (match !== null) return { rows: Number(match[1]), columns: Number(match[2]) };
   problems.push({ pointer: '--core', found: JSON.stringify(text), wanted: 'ROWSxCOLUMNS, such as 15x17' });
   return undefined;
-}
-
-/** The pitch that the command line gives, judged by the rules of an array file. */
-function pitchOf({ pitch: text }: PlaceFlags): readonly [number, number] | undefined {
-  if (text === undefined) return undefined;
-  const pitch_um = text.split(',').map((part) => (/^\d{1,15}(\.\d{1,3})?$/.test(part) ? Number(part) : part));
-  const whole = { format: 'steelyard/array', version: 1, bits: 8, core: { rows: 1, columns: 1, pitch_um } };
-  const parsed = parseArray(JSON.stringify(whole), '');
-  const pitch = parsed.ok ? parsed.value.core?.pitch_um : undefined;
-  if (pitch !== undefined) return pitch;
-  const wanted = parsed.ok ? '' : (parsed.issues[0]?.wanted ?? '');
-  throw new InputError([
-    { pointer: '--pitch', found: JSON.stringify(text), wanted: `X,Y in micrometres, such as 7.2,5.7: ${wanted}` },
-  ]);
 }
 
 /** The keys that the command line gives, judged by the rules of an array file. */
@@ -133,7 +120,7 @@ async function arrayRequest(io: Io, file: string, text: string | undefined, flag
         })
       : await technologyNamed(io, flags.technology, '.', { pointer: '--technology' });
   const array = valueOf(resolveArray(spec, technology, text === undefined ? undefined : { text, file }));
-  const pitch_um = pitchOf(flags) ?? spec.core?.pitch_um;
+  const pitch_um = flags.pitch === undefined ? spec.core?.pitch_um : pitchOf(flags.pitch);
   if (flags.floorplanOnly !== true) return { array };
   return { array, floorplanOnly: pitch_um === undefined ? {} : { pitch_um } };
 }
@@ -153,7 +140,7 @@ async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): P
     throw new UsageError([`place: found ${idle.join(', ')}; wanted ${wanted}`]);
   }
   const { floorplan, technology, notes } = await floorplanToDraw(io, file, text, flags.technology);
-  const pitch_um = pitchOf(flags) ?? floorplan.core.pitch_um;
+  const pitch_um = flags.pitch === undefined ? floorplan.core.pitch_um : pitchOf(flags.pitch);
   const wired = flags.floorplanOnly !== true;
   const onPitch = { ...floorplan, core: { ...floorplan.core, pitch_um } };
   const drawn = inFile(file, () => drawFloorplan(onPitch, technology, { wired }));

@@ -1,4 +1,5 @@
 import pc from 'picocolors';
+import { brief, shapeInWords } from '../index.js';
 import type { Capacitor, Drawn, Finding, Floorplan, Metrics } from '../index.js';
 import { shown } from './fault.js';
 import type { Io } from './io.js';
@@ -9,9 +10,6 @@ type Line = readonly [label: string, text: string, colour?: (text: string) => st
 export const lines = (texts: readonly string[]): string => texts.map((text) => `${text}\n`).join('');
 
 const counted = (count: number, noun: string): string => `${count} ${noun}${count === 1 ? '' : 's'}`;
-
-/** Four significant digits: enough to compare, short enough to read. The files hold all of them. */
-const brief = (value: number): string => String(Number(value.toPrecision(4)));
 
 const lsb = (figures: { readonly inl_lsb: number; readonly dnl_lsb?: number | undefined }): string =>
   `INL ${brief(figures.inl_lsb)} LSB` + (figures.dnl_lsb === undefined ? '' : `, DNL ${brief(figures.dnl_lsb)} LSB`);
@@ -36,15 +34,6 @@ export function coreInCharacters(floorplan: Floorplan, columns: number): readonl
   if (floorplan.core.rows > mostRows || width > columns) return [];
   const gap = 2 * width - 1 <= columns ? ' ' : '';
   return floorplan.cells.map((row) => row.map((name) => signOf.get(name) ?? '?').join(gap));
-}
-
-/** A symmetric shape of spectral norm 1 in the words of the trade: a bowl, or a saddle and where it rises. */
-function shapeInWords({ xx, xy, yy }: { readonly xx: number; readonly xy: number; readonly yy: number }): string {
-  const trace = xx + yy;
-  if (trace > 1.999999) return 'a bowl';
-  if (Math.abs(trace) > 0.000001) return `xx ${brief(xx)}, xy ${brief(xy)}, yy ${brief(yy)}`;
-  const direction = (Math.atan2(2 * xy, xx - yy) * 90) / Math.PI;
-  return `a saddle along ${brief(direction < 0 ? direction + 180 : direction)} degrees`;
 }
 
 function gradientInWords(floorplan: Floorplan): string {
@@ -86,6 +75,14 @@ function gradientLines(floorplan: Floorplan, { gradient }: Metrics): readonly Li
   return lines;
 }
 
+function mismatchLines({ mismatch }: Metrics): readonly Line[] {
+  if (mismatch?.inlSigma_lsb === undefined) return [];
+  const { inlSigma_lsb: inl_lsb, dnlSigma_lsb: dnl_lsb, placement } = mismatch;
+  const perUnit = [placement.inlSigma_perUnitSigma, placement.dnlSigma_perUnitSigma].flatMap((v) => v ?? []).map(brief);
+  const alone = `the placement alone: ${perUnit.join(' and ')} times a unit's sigma`;
+  return [['mismatch', `sigma ${lsb({ inl_lsb, dnl_lsb })} at the worst code; ${alone}`]];
+}
+
 const classes = {
   'zero-first-order': 'all placements without first order',
   'point-reflected': 'all point-reflected placements',
@@ -94,6 +91,7 @@ const classes = {
 function placementLine({ placement }: Floorplan): readonly Line[] {
   if (placement === undefined) return [];
   const { method, status, proof, work } = placement;
+  if (status === undefined || work === undefined) return [['placement', method]];
   const trials = `${method}, ${work} trials`;
   if (status === 'proved' && proof !== undefined) {
     return [['placement', `proved least ${proof.figure} of ${classes[proof.class]} (${trials})`]];
@@ -152,7 +150,12 @@ export function summaryOf(
     ...(floorplan.technology === undefined ? [] : [floorplan.technology.name]),
   ].join(', ');
   const picture = coreInCharacters(floorplan, io.columns - 2);
-  const lines: Line[] = [...gradientLines(floorplan, metrics), ...placementLine(floorplan), ...hookupLines(metrics)];
+  const lines: Line[] = [
+    ...gradientLines(floorplan, metrics),
+    ...mismatchLines(metrics),
+    ...placementLine(floorplan),
+    ...hookupLines(metrics),
+  ];
   if (drawn.polygons !== undefined) {
     const { length } = findings;
     lines.push(length === 0 ? ['check', 'no findings'] : ['check', counted(length, 'finding'), colours.red]);

@@ -1,4 +1,7 @@
-import { Infeasible } from '../core/problem.js';
+import { Infeasible, InputError } from '../core/problem.js';
+import type { Floorplan } from '../spec/floorplan.js';
+import { mostCells } from '../spec/options.js';
+import { meant, quoted } from '../spec/words.js';
 import { blockChessboard } from './rules/block-chessboard.js';
 import { chessboard } from './rules/chessboard.js';
 import { interleaved } from './rules/interleaved.js';
@@ -29,6 +32,11 @@ const rule = (name: string, help: string, place: (bits: number) => number[][]): 
         `The rule ${name} fills a square, which an even number of bits makes; ${bits} were asked for.`,
         `Ask for ${bits - 1} or ${bits + 1} bits.`,
       );
+    if (1 << (bits / 2) > Math.sqrt(mostCells))
+      throw new Infeasible(
+        `The rule ${name} fills a core of 2^${bits} cells; there are ${mostCells} at most.`,
+        'Ask for 14 bits or fewer.',
+      );
     return place(bits).map((row) => row.map((bit) => (bit === TERMINATION ? 'TERM' : `B${bit}`)));
   },
 });
@@ -50,3 +58,29 @@ export const publishedRules: readonly PublishedRule[] = [
     blockChessboard,
   ),
 ];
+
+/**
+ * A published rule's floorplan: the bare core, the termination in it.
+ * @throws InputError at /rule if there is none of that name, Infeasible where the rule cannot place so many bits.
+ */
+export function placeByRule(name: string, bits: number, pitch_um: readonly [x: number, y: number]): Floorplan {
+  const found = publishedRules.find((each) => each.name === name);
+  if (found === undefined) {
+    const names = publishedRules.map((each) => each.name);
+    throw new InputError([{ pointer: '/rule', found: quoted(name), wanted: meant(name, names, 'rule') }]);
+  }
+  const cells = found.place(bits);
+  const units = Array.from({ length: bits }, (_, bit) => 1 << bit);
+  return {
+    format: 'steelyard/floorplan',
+    version: 1,
+    name: `${name.replaceAll('-', '_')}_${bits}`,
+    core: { rows: cells.length, columns: cells.length, pitch_um },
+    capacitors: [
+      ...units.map((count, bit) => ({ name: `B${bit}`, role: 'bit' as const, weight: count, units: count })),
+      { name: 'TERM', role: 'termination', weight: 1, units: 1 },
+    ],
+    cells,
+    placement: { method: name },
+  };
+}

@@ -21,13 +21,14 @@ export interface RingUnit {
   readonly column: number;
 }
 
+/** How the cells came about. What a search was told and how it ended is absent where none was made. */
 export interface Placement {
   readonly method: string;
-  readonly seed: number;
-  readonly emphasis: Emphasis;
-  readonly status: 'proved' | 'effort-spent' | 'interrupted';
+  readonly seed?: number;
+  readonly emphasis?: Emphasis;
+  readonly status?: 'proved' | 'effort-spent' | 'interrupted';
   readonly proof?: { readonly figure: string; readonly class: 'zero-first-order' | 'point-reflected' };
-  readonly work: number;
+  readonly work?: number;
 }
 
 /** Which side each unit hooks to, what each channel holds from left to right, and the buses from the ring down. */

@@ -32,11 +32,11 @@ export const coreSchema = object({
 
 const placement = object({
   method: text(200),
-  seed,
-  emphasis: choice('balanced', 'gradient', 'dispersed', 'wiring'),
-  status,
+  'seed?': seed,
+  'emphasis?': choice('balanced', 'gradient', 'dispersed', 'wiring'),
+  'status?': status,
   'proof?': object({ figure: text(100), class: choice('zero-first-order', 'point-reflected') }),
-  work: whole(0, Number.MAX_SAFE_INTEGER),
+  'work?': whole(0, Number.MAX_SAFE_INTEGER),
 });
 
 const hookup = object({

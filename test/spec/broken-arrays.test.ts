@@ -152,11 +152,19 @@ const cases: [name: string, text: string, problems: string[]][] = [
   [
     'keys of later versions',
     withKeys(
-      '"bits": 4, "block": {"maxWidth_um": 90}, "mismatch": {}, "drive": {"switch_ohm": 5}, "topLoad_fF": 3, "limits": {"inl_lsb": 1}',
+      '"bits": 4, "block": {"maxWidth_um": 90}, "drive": {"switch_ohm": 5}, "topLoad_fF": 3, "limits": {"inl_lsb": 1}',
     ),
-    ['block', 'mismatch', 'drive', 'topLoad_fF', 'limits'].map(
+    ['block', 'drive', 'topLoad_fF', 'limits'].map(
       (key) => `/${key} | key "${key}" | it left out: "${key}" is not available yet`,
     ),
+  ],
+  [
+    'mismatch in part',
+    withKeys('"bits": 4, "mismatch": {"localSigma_percent": -1, "correlatedSigma_percent": 0.1}'),
+    [
+      '/mismatch | no key "correlationLength_um" | "correlationLength_um": a number from 0 to 33554',
+      '/mismatch/localSigma_percent | -1 | a number of 0 or more',
+    ],
   ],
   [
     'pins elsewhere',
