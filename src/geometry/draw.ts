@@ -1,5 +1,6 @@
 import type { Reference } from '../core/layout.js';
 import { Infeasible } from '../core/problem.js';
+import { um } from '../core/units.js';
 import { rectangle } from '../core/rectangle.js';
 import { pitchOf, type Rules, viaBetween } from '../hookup/rules.js';
 import type { Hookup } from '../hookup/wires.js';
@@ -201,6 +202,12 @@ function drawGroundedFills(sheet: Sheet, technology: Technology, placed: Placed,
   const half = rules.padSize / 2;
   const rim = rules.plate[0] / 2;
   const edge = rim + rules.tab[0];
+  const room = rules.plate[1] / 2 - rules.tabLevel - half;
+  if (room < rules.upperSpacing && placed.cells.some((names) => names.includes('-')))
+    throw new Infeasible(
+      `A wire from a fill dummy's top terminal to its tab stands ${um(room)} um from what runs between the rows; ${um(rules.upperSpacing)} um are needed.`,
+      'Lower tabLevel_um, take a larger unit, or ask for "fillTop": "TOP".',
+    );
   placed.cells.forEach((names, row) =>
     names.forEach((name, column) => {
       if (name !== '-') return;

@@ -1,6 +1,7 @@
 import { Infeasible } from '../core/problem.js';
 import { nm } from '../core/units.js';
 import type { Layer, Technology, Via } from '../spec/technology.js';
+import { tabLevelsApart, trackWidthOf } from '../spec/tracks.js';
 import { isWideUnit } from '../spec/unit-geometry.js';
 import { unitBody } from './unit-body.js';
 
@@ -23,6 +24,8 @@ export interface Rules {
   readonly spacing: number;
   readonly trackWidth: number;
   readonly trackSpacing: number;
+  /** Spacing on the straps' metal. */
+  readonly upperSpacing: number;
   /** End-to-end spacing of two wires on one track. */
   readonly lineSpacing: number;
   /** Between two drops, whose vias may stand side by side on one bus. */
@@ -86,7 +89,7 @@ export function drawingRules(technology: Technology): Rules {
   const viaFrame = { size: nm(toUpper.size_um), landing: landing(toUpper) };
   const tabHeight = unit.kind === 'named-cell' ? 0 : nm(unit.tab_um[1]);
   const lineSpacing = length(lower.minSpacing_um);
-  const trackWidth = even(Math.max(length(lower.minWidth_um), minPlateWidth, viaTrack.landing, tabHeight));
+  const trackWidth = trackWidthOf(technology);
   const viaApart = nm(toPlate.spacing_um) - (trackWidth - viaTrack.size);
   const trackSpacing = Math.max(spacing, lineSpacing, viaApart);
   const dropSpacing = Math.max(lineSpacing, viaApart);
@@ -113,7 +116,7 @@ export function drawingRules(technology: Technology): Rules {
     throw new Infeasible(because, remedy);
   };
   const inMicrometres = (value: number) => `${value / 1000} um`;
-  const levels = trackWidth + 2 * spacing + minPlateWidth;
+  const levels = tabLevelsApart(technology);
   if (2 * tabLevel < levels || plate[1] + rowGap - 2 * tabLevel < levels)
     stop(
       `The two tab levels stand ${inMicrometres(2 * tabLevel)} apart and ${inMicrometres(plate[1] + rowGap - 2 * tabLevel)} from the next row's; a stub, its spacing and a shield between them need ${inMicrometres(levels)}.`,
@@ -133,6 +136,12 @@ export function drawingRules(technology: Technology): Rules {
     stop(
       'The pad of the top terminal does not lie over its unit.',
       'Move terminals.top inwards or take a larger unit.',
+    );
+  const beyondPad = plate[1] / 2 - Math.abs(pad[1]) - padSize / 2;
+  if (beyondPad < upperSpacing)
+    stop(
+      `The pad of the top terminal stands ${inMicrometres(beyondPad)} from what runs between the rows; ${inMicrometres(upperSpacing)} are needed on its metal.`,
+      'Move terminals.top to the middle or take a larger unit.',
     );
   let strip: Rules['strip'];
   if (unit.kind === 'framed-fingers' && unit.shield === true) {
@@ -160,6 +169,7 @@ export function drawingRules(technology: Technology): Rules {
     spacing,
     trackWidth,
     trackSpacing,
+    upperSpacing,
     lineSpacing,
     dropSpacing,
     rowGap,

@@ -5,6 +5,7 @@ import type { Capacitor } from './floorplan.js';
 import { mostRings, options } from './options.js';
 import { Report } from './report.js';
 import type { Source } from './report.js';
+import { withUnitOf } from './scale-unit.js';
 import type { Technology } from './technology.js';
 import { shown } from './words.js';
 
@@ -29,20 +30,15 @@ function capacitorsOf({ bits = 0, weights, termination }: ResolvedSpec): Capacit
 }
 
 /**
- * Fills in the defaults of an array file that is to be drawn in a technology.
+ * Fills in the defaults of an array file that is to be drawn in a technology, whose unit becomes as large as the file asks.
  * @param source the array file's text, where there is one: problems then have a line and a column
- * @throws Infeasible what the file asks for cannot be had: a termination in a ring without a ring, more rings than there may be, a core
- * too small for its units
+ * @throws Infeasible what the file asks for cannot be had: a unit that the rules do not allow, a termination in a ring without a ring, more
+ * rings than there may be, a core too small for its units
  */
-export function resolveArray(spec: ArraySpec, technology: Technology, source?: Source): Result<ResolvedArray> {
+export function resolveArray(spec: ArraySpec, template: Technology, source?: Source): Result<ResolvedArray> {
   const report = new Report(source ?? { text: '', file: '' });
-  if (spec.hookup !== undefined && spec.hookup !== technology.hookup) {
-    report.add('/hookup', shown(spec.hookup), `"${technology.hookup}", as technology "${technology.name}" has it`);
-  }
-  const unit_fF = technology.unit.capacitance_fF;
-  if (spec.unit_fF !== undefined && spec.unit_fF !== unit_fF) {
-    const wanted = `${unit_fF}, the unit of technology "${technology.name}" (other sizes are not available yet)`;
-    report.add('/unit_fF', shown(spec.unit_fF), wanted);
+  if (spec.hookup !== undefined && spec.hookup !== template.hookup) {
+    report.add('/hookup', shown(spec.hookup), `"${template.hookup}", as technology "${template.name}" has it`);
   }
   if ((spec.bits === undefined) === (spec.weights === undefined)) {
     report.add(
@@ -53,6 +49,7 @@ export function resolveArray(spec: ArraySpec, technology: Technology, source?: S
   }
   if (report.count > 0) return { ok: false, issues: report.problems().map((p) => (source ? p : withoutPlace(p))) };
 
+  const technology = spec.unit_fF === undefined ? template : withUnitOf(template, spec.unit_fF);
   // `technology` names the template; a file's name would mean nothing where the array travels inside a floorplan.
   const { $schema: _schema, ...given } = spec as ArraySpec & { readonly $schema?: string };
   const filled: Record<string, unknown> = { ...given };
