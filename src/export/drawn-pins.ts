@@ -37,6 +37,14 @@ export function drawnBlock(p: Polygons): DrawnBlock {
   const block = outlineOf(p, flat);
   const problems: { pointer: string; found: string; wanted: string }[] = [];
   const nets = [...p.capacitors.map((c) => c.name), TOP, VSS];
+  nets.forEach((net, i) => {
+    if (nets.indexOf(net) !== i)
+      problems.push({
+        pointer: '/capacitors',
+        found: `net ${JSON.stringify(net)} once more`,
+        wanted: 'each net once; TOP and VSS are nets of their own',
+      });
+  });
   const layerOf = new Map(p.technology.layers.filter((l) => l.kind === 'pin').map((l) => [streamKey(l.stream), l]));
 
   const found = flat.labels.flatMap(({ text, layer, texttype, xy: [x, y] }) => {

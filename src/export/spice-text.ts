@@ -48,6 +48,8 @@ export function subcircuitOf(
 
   const problems: Problem[] = [];
   const add = (found: string, wanted: string) => problems.push({ pointer: '', found, wanted });
+  for (const { name } of p.capacitors)
+    if (name.startsWith('_')) add(`capacitor ${JSON.stringify(name)}`, 'a name that begins with a letter');
   if (!isName(p.topStructure)) add(`structure ${JSON.stringify(p.topStructure)}`, nameWords);
   const holder = new Map<string, string>();
   for (const node of nets.map(nodeOf)) {

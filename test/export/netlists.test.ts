@@ -265,6 +265,18 @@ describe('names as attacks', () => {
     }
   });
 
+  it('names of two nets alike, and of a capacitor like a dummy, are refused', () => {
+    for (const write of netlists) {
+      for (const name of ['B1', 'TERM', 'TOP', 'VSS'])
+        expect(problemsOf(() => write(renamed('B2', name)))).toContain(
+          `net "${name}" once more | each net once; TOP and VSS are nets of their own`,
+        );
+      expect(problemsOf(() => write(renamed('B2', '_dummy')))).toEqual([
+        'capacitor "_dummy" | a name that begins with a letter',
+      ]);
+    }
+  });
+
   it('names that simulators take for node 0 are refused', () => {
     for (const write of netlists)
       for (const name of ['gnd', 'GND', 'Ground'])
@@ -273,22 +285,28 @@ describe('names as attacks', () => {
 
   it('names that are words of the language it is written in are names', () => {
     for (const write of netlists)
-      for (const name of ['__proto__', 'constructor', 'hasOwnProperty'])
+      for (const name of ['constructor', 'hasOwnProperty', 'valueOf'])
         expect(statements(write(renamed('B2', name)))[0]).toContain(name);
   });
 
   it('whatever the names, the text has the statements it should have or is refused', () => {
     fc.assert(
-      fc.property(fc.string({ maxLength: 12 }), fc.constantFrom(...netlists), (name, write) => {
-        let text: string;
-        try {
-          text = write(renamed('B2', name));
-        } catch (error) {
-          expect(error).toBeInstanceOf(InputError);
-          return;
-        }
-        expect(statements(text)).toHaveLength(statements(write(kilnPolygons())).length);
-      }),
+      fc.property(
+        fc.oneof(fc.string({ maxLength: 12 }), fc.constantFrom('B1', 'b1', 'TOP', '_fill', 'TERM_2')),
+        fc.constantFrom(...netlists),
+        (name, write) => {
+          let text: string;
+          try {
+            text = write(renamed('B2', name));
+          } catch (error) {
+            expect(error).toBeInstanceOf(InputError);
+            return;
+          }
+          expect(statements(text)).toHaveLength(statements(write(kilnPolygons())).length);
+          const devices = statements(text).map(([device]) => device.toLowerCase());
+          expect(new Set(devices).size).toBe(devices.length);
+        },
+      ),
       { numRuns: 300 },
     );
   });
