@@ -8,7 +8,7 @@ import type { DealtNet } from '../../src/placement/dealing.js';
 import { dealBlocks } from '../../src/placement/dealing.js';
 import { workFor } from '../../src/placement/effort.js';
 import type { Best, SearchOptions } from '../../src/placement/search.js';
-import { Search } from '../../src/placement/search.js';
+import { Search, SearchStart } from '../../src/placement/search.js';
 import { binaryNets, columnNets, firstOrder, leastFirstOrder, netsOfBlocks, recounted, weightedNets } from './brute.js';
 
 const SQUARE = [1, 1] as const;
@@ -122,14 +122,53 @@ describe('Search', () => {
     expect(search.best().start).toBeLessThan(2);
   });
 
+  it('is the same whoever runs its starts, and in whatever order they come back', () => {
+    for (const stopAt of [Infinity, 2]) {
+      const asked: number[] = [];
+      const options = optionsFor(7, 9, binaryNets(6), {
+        starts: 5,
+        workPerStart: 3000,
+        stopWhen: () => asked.push(0) > stopAt,
+      });
+      const alone = finished(options);
+      for (const order of [
+        [4, 3, 2, 1],
+        [2, 4, 1, 3],
+        [1, 2, 3, 4],
+      ]) {
+        asked.length = 0;
+        const search = new Search(options);
+        search.step(1);
+        expect([0, 1, 2, 3, 4].map(() => search.take())).toEqual([1, 2, 3, 4, undefined]);
+        expect(search.waiting).toBe(false);
+        const elsewhere = order.map((start) => new SearchStart(options, start));
+        for (const start of elsewhere) start.step(700);
+        search.offer(elsewhere[0].result(), false);
+        expect(search.best().cost).toBeLessThanOrEqual(elsewhere[0].result().cost);
+        for (const start of elsewhere.slice(0, 2)) {
+          while (!start.done) start.step(1e6);
+          search.offer(start.result(), true);
+        }
+        while (search.step(1000) && !search.waiting);
+        for (const start of elsewhere.slice(2)) {
+          while (!start.done) start.step(1e6);
+          search.offer(structuredClone(start.result()), true);
+        }
+        expect([search.status, search.step(1), search.waiting]).toEqual([alone.status, false, false]);
+        expect(search.work).toBe(alone.work);
+        expect(search.best()).toEqual(alone.best());
+      }
+    }
+  });
+
   it('is done at once where there is nothing to exchange, or nothing to gain', () => {
-    const line = new Search(optionsFor(1, 3, binaryNets(2)));
-    expect(line.status).toBe('effort-spent');
+    const line = finished(optionsFor(1, 3, binaryNets(2)));
+    expect([line.status, line.work]).toEqual(['effort-spent', 0]);
     expect([...line.best().netOfCell]).toEqual([1, 0, 1]);
-    const free = new Search(
+    const free = finished(
       optionsFor(7, 9, binaryNets(6), { terms: (deal) => [{ term: firstOrderTerm(deal, SQUARE), weight: 1 }] }),
     );
-    expect(free.status).toBe('stopped');
+    expect([free.status, free.work]).toEqual(['stopped', 0]);
     expect(() => new Search(optionsFor(7, 9, binaryNets(6), { starts: 0 }))).toThrow(RangeError);
   });
 
