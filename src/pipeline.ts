@@ -19,14 +19,17 @@ import { firstOrderTerm, secondOrderTerm } from './linearity/cost-terms.js';
 import { columnCorrelation, comparisonLength, correlationOf } from './linearity/correlation.js';
 import { mismatchTerm } from './linearity/mismatch-term.js';
 import { secondOrderInl } from './linearity/exact-inl.js';
-import { lowerBound } from './linearity/lower-bound.js';
+import { lowerBound, type PlacementClass } from './linearity/lower-bound.js';
 import { mismatchFigures } from './linearity/mismatch.js';
+import { type LeastOfReflected, provedClass } from './linearity/proved.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
 import { ringsToReach, unitMismatch } from './spec/options.js';
 import { workFor } from './placement/effort.js';
-import { arrangementOf, type Weighing, weighings, workOf } from './placement/emphasis.js';
+import { arrangementOf, weighings, workOf } from './placement/emphasis.js';
+import { isSearchable } from './placement/exact-search.js';
 import { firstOrderBound } from './placement/first-order-bound.js';
-import { Search } from './placement/search.js';
+import { ProvingSearch } from './placement/proving-search.js';
+import { Search, type SearchOptions, SearchStart, type StartResult } from './placement/search.js';
 import type { Effort } from './spec/array-spec.js';
 import type { Capacitor, Core, Floorplan, Placement, RingUnit } from './spec/floorplan.js';
 import type { Metrics } from './spec/metrics.js';
@@ -53,33 +56,71 @@ export interface Drawn {
   readonly notes: readonly string[];
 }
 
-/** A resumable run. It depends on the request alone, not on how the work is cut into steps. */
+/** A placement and what its drawing needs to know of it. Plain data. */
+export interface Kept {
+  readonly floorplan: Floorplan;
+  readonly options: DrawOptions;
+  /** Why the first order is not 0. */
+  readonly because?: string;
+}
+
+/** One start of one of a run's searches, to be run anywhere: plain data. */
+export interface StartJob {
+  readonly request: PlaceRequest;
+  readonly stage: StageRequest;
+  readonly start: number;
+  /** Which search of the run it is of. */
+  readonly search: number;
+}
+
+/**
+ * A resumable run. It depends on the request alone: neither on how the work is cut into steps nor on how many of its starts were taken and
+ * run elsewhere.
+ */
 export interface PlaceRun {
-  /** Runs some `work` trial swaps. Returns whether there is more to do. */
+  /** Runs some `work` trial swaps. Returns whether there is more to do, here or elsewhere. */
   step(work: number): boolean;
+  /** Whether what is left to do now is all in other hands. */
+  readonly waiting: boolean;
+  /** Leaves a start to somebody else, who runs it by `beginStart`. Undefined where there is none to leave at the moment. */
+  take(): StartJob | undefined;
+  /** What a job has come to: at its end, or (`done` false) so far. Of no effect where it does not matter any more. */
+  offer(job: Pick<StartJob, 'search'>, result: StartResult, done: boolean): void;
   /** 0 to 1. */
   readonly progress: number;
   /** Whether a placement exists that `finish` could draw. */
   readonly started: boolean;
   /** Trial swaps so far. */
   readonly work: number;
+  /** The best so far, as cells alone. */
+  best(interrupted: boolean): Kept;
   /** The best so far, wired, drawn and measured. @throws Infeasible where the tracks asked for do not suffice. */
   finish(interrupted: boolean): Drawn;
 }
 
 type Pitch = readonly [x: number, y: number];
 
-/** A search on one core at one pitch; `share` of the whole run's work. */
-interface Stage {
+/** A search on one core at one pitch. */
+interface StageRequest {
   readonly grid: CoreGrid;
   readonly pitch: Pitch;
   /** Tracks per channel that the pitch is made for. */
   readonly tracks: number;
-  readonly search: Search;
+  /** With the emphasis's own weights, or to find out what the second order alone could come to. */
+  readonly weights: 'own' | 'second-order';
+  /** What the second order is weighed against, over `spread`. */
+  readonly relative: number;
+  readonly effort: Effort;
+  /** Of the whole run's work. */
   readonly share: number;
 }
 
+interface Stage extends StageRequest {
+  readonly search: Search | ProvingSearch;
+}
+
 interface Setting {
+  readonly request: PlaceRequest;
   readonly spec: ResolvedSpec;
   readonly technology: Technology;
   readonly capacitors: readonly Capacitor[];
@@ -109,6 +150,15 @@ const roundsFor = (units: number): number => (units < 2000 ? 2 : 1);
  * @throws InputError where the request contradicts itself, Infeasible where it cannot be met.
  */
 export function startPlacement(request: PlaceRequest): PlaceRun {
+  return new Run(settingOf(request));
+}
+
+/** A job of a run, begun anew wherever this is called: it depends on the job alone. */
+export function beginStart({ request, stage, start }: StartJob): SearchStart {
+  return new SearchStart(searchOptions(settingOf(request), stage), start);
+}
+
+function settingOf(request: PlaceRequest): Setting {
   const { spec, technology, capacitors } = request.array;
   const wired = request.floorplanOnly === undefined;
   const pitch = request.floorplanOnly?.pitch_um ?? spec.core?.pitch_um;
@@ -121,60 +171,100 @@ export function startPlacement(request: PlaceRequest): PlaceRun {
       },
     ]);
   const inCore = capacitors.filter((capacitor) => capacitor.role === 'bit' || spec.termination === 'core');
-  return new Run({
-    spec,
-    technology,
-    capacitors,
-    inCore,
-    rules: drawingRules(technology),
-    wired,
-    ...(pitch && { pitch }),
-  });
+  const rules = drawingRules(technology);
+  return { request, spec, technology, capacitors, inCore, rules, wired, ...(pitch && { pitch }) };
 }
 
 class Run implements PlaceRun {
   readonly #setting: Setting;
-  readonly #stages: Generator<Stage, Stage, void>;
-  #stage: Stage;
-  #done = false;
+  readonly #rounds: Generator<readonly Stage[], Stage, void>;
+  /** Searches that do not need each other; those that are over in `#over`. */
+  #round: readonly Stage[] = [];
+  readonly #over = new Set<Stage>();
+  /** The searches of former rounds: how many, and the one to fall back on. */
+  #before = 0;
+  #former: Stage | undefined;
+  #result: Stage | undefined;
   #workBefore = 0;
   #shareBefore = 0;
 
   constructor(setting: Setting) {
     this.#setting = setting;
-    this.#stages = stagesOf(setting);
-    this.#stage = this.#stages.next().value;
+    this.#rounds = roundsOf(setting);
+    this.#advance();
   }
 
   get started(): boolean {
-    return this.#done || this.work > 0;
+    return this.#result !== undefined || this.work > 0;
+  }
+
+  get waiting(): boolean {
+    return !this.#result && this.#round.every((stage) => this.#over.has(stage) || stage.search.waiting);
   }
 
   get progress(): number {
-    return this.#done ? 1 : Math.min(0.99, this.#shareBefore + this.#stage.share * this.#stage.search.progress);
+    if (this.#result) return 1;
+    const share = this.#round.reduce((sum, stage) => sum + stage.share * stage.search.progress, this.#shareBefore);
+    return Math.min(0.99, share);
   }
 
   get work(): number {
-    return this.#workBefore + (this.#done ? 0 : this.#stage.search.work);
+    return this.#round.reduce((sum, { search }) => sum + search.work, this.#workBefore);
   }
 
   step(work: number): boolean {
-    if (this.#done) return false;
-    const { search, share } = this.#stage;
-    if (search.step(work)) return true;
-    this.#workBefore += search.work;
-    this.#shareBefore += share;
-    const next = this.#stages.next();
-    this.#done = next.done === true;
-    this.#stage = next.value;
-    return !this.#done;
+    const stage = this.#round.find((each) => !this.#over.has(each) && !each.search.waiting);
+    if (stage && !stage.search.step(work)) this.#end(stage);
+    return this.#result === undefined;
   }
 
-  finish(interrupted: boolean): Drawn {
-    const { spec, technology, capacitors, inCore, wired } = this.#setting;
-    const { grid, pitch, tracks, search } = this.#stage;
+  take(): StartJob | undefined {
+    for (const [i, { search, ...stage }] of this.#round.entries()) {
+      const start = search instanceof Search ? search.take() : undefined;
+      if (start !== undefined) return { request: this.#setting.request, stage, start, search: this.#before + i };
+    }
+    return undefined;
+  }
+
+  offer({ search: number }: Pick<StartJob, 'search'>, result: StartResult, done: boolean): void {
+    const stage = this.#round[number - this.#before];
+    if (!(stage?.search instanceof Search) || this.#over.has(stage)) return;
+    stage.search.offer(result, done);
+    if (stage.search.status !== 'running') this.#end(stage);
+  }
+
+  #end(stage: Stage): void {
+    this.#over.add(stage);
+    if (this.#over.size === this.#round.length) this.#advance();
+  }
+
+  #advance(): void {
+    this.#workBefore = this.work;
+    for (const stage of this.#round) this.#shareBefore += stage.share;
+    this.#before += this.#round.length;
+    this.#former = this.#bestStage();
+    this.#over.clear();
+    const next = this.#rounds.next();
+    this.#round = next.done ? [] : next.value;
+    if (next.done) this.#result = next.value;
+  }
+
+  /** The one whose best the run would end with now: a search with the emphasis's own weights first, of several that of least cost. */
+  #bestStage(): Stage {
+    if (this.#result) return this.#result;
+    const costOf = ({ search }: Stage) => (search instanceof Search ? search.best().cost : -1);
+    return [...(this.#former ? [this.#former] : []), ...this.#round.filter(({ search }) => search.work > 0)].reduce(
+      (a, b) => (a.weights === b.weights ? (costOf(b) <= costOf(a) ? b : a) : b.weights === 'own' ? b : a),
+      this.#former ?? this.#round[0],
+    );
+  }
+
+  best(interrupted: boolean): Kept {
+    const { spec, capacitors, wired } = this.#setting;
+    const stage = this.#bestStage();
+    const { grid, pitch, tracks, search } = stage;
     const { dealing } = search.best();
-    const placed = placedOf(this.#setting, this.#stage);
+    const placed = placedOf(this.#setting, stage);
     const placement: Placement = {
       method: dealing.exactZero ? 'annealed zero-first-order deal' : 'annealed deal',
       seed: spec.seed,
@@ -194,116 +284,145 @@ class Run implements PlaceRun {
       placement,
     };
     const least = spec.tracksPerChannel ?? tracks;
-    const drawn = drawFloorplan(floorplan, technology, { wired, tracksAtLeast: least });
-    if (dealing.exactZero) return drawn;
-    const bound = firstOrderBound(grid, dealtNets(inCore), pitch);
-    const floor = bound > 0 ? ` No placement on this core comes below ${figure(bound)} LSB per ppm/um.` : '';
-    return { ...drawn, warnings: [`The first order is not 0: ${dealing.because}${floor}`, ...drawn.warnings] };
+    const known = search instanceof ProvingSearch ? search.proved : undefined;
+    return {
+      floorplan,
+      options: { wired, tracksAtLeast: least, ...(known && { known }) },
+      ...(!dealing.exactZero && { because: dealing.because }),
+    };
+  }
+
+  finish(interrupted: boolean): Drawn {
+    return drawKept(this.best(interrupted), this.#setting.technology);
   }
 }
 
 /**
- * The searches of a run, one after the other: a short one per orientation of the core, which decides by the lower absolute second order,
- * then the fewer columns; a short one with the emphasis's own weights, which tells how many tracks the wires will need; the full one at
- * that pitch, once more if it needs another number of tracks.
+ * A run's placement wired, drawn and measured; measured alone where its options say so.
+ * @throws Infeasible where the tracks asked for do not suffice.
  */
-function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
+export function drawKept({ floorplan, options, because }: Kept, technology: Technology): Drawn {
+  const drawn = drawFloorplan(floorplan, technology, options);
+  if (because === undefined) return drawn;
+  const placed = new Set(floorplan.cells.flat());
+  const dealt = dealtNets(floorplan.capacitors.filter(({ name }) => placed.has(name)));
+  const bound = firstOrderBound(floorplan.core, dealt, floorplan.core.pitch_um);
+  const floor = bound > 0 ? ` No placement on this core comes below ${figure(bound)} LSB per ppm/um.` : '';
+  return { ...drawn, warnings: [`The first order is not 0: ${because}${floor}`, ...drawn.warnings] };
+}
+
+/** The search of a stage, without its starts: what it deals and what that costs. */
+function searchOptions(
+  { spec, capacitors, inCore }: Setting,
+  { grid, pitch, weights, relative, effort }: StageRequest,
+): SearchOptions {
+  const cost = weights === 'own' ? weighings[spec.emphasis] : weighings.gradient;
+  const bits = capacitors.filter(({ role }) => role === 'bit');
+  const total = unitsOf(inCore);
+  const nets = dealtNets(inCore);
+  const reference = relative * spread(grid, pitch);
+  const bound = lowerBound({ ...grid, pitch_um: pitch }, bits);
+  const fewestNets = bits.reduce((sum, bit) => sum + Math.ceil(bit.units / grid.rows), 0);
+  const dispersed = chessboardSigma(total);
+  const correlation = correlationOf(grid.rows, grid.columns, pitch, comparisonLength(pitch));
+  return {
+    deals: (start) =>
+      dealBlocks({
+        ...grid,
+        nets,
+        random: new Random(spec.seed, start),
+        arrangement: arrangementOf(cost, start, () => columnCorrelation(correlation)),
+      }),
+    terms: (deal) => [
+      // Where the first order is 0 by the deal this term stays 0; elsewhere it comes before all others.
+      { term: firstOrderTerm(deal, pitch), weight: FIRST_BEFORE_ALL / reference },
+      {
+        term: bentTerm(secondOrderTerm(deal, pitch), cost.limit * reference, BEYOND_LIMIT),
+        weight: cost.second / reference,
+      },
+      ...(cost.nets > 0 ? [{ term: columnNetsTerm(deal), weight: cost.nets / fewestNets }] : []),
+      ...(cost.mismatch > 0
+        ? [
+            {
+              term: bentTerm(mismatchTerm(deal, correlation), cost.mismatchLimit * dispersed, BEYOND_LIMIT),
+              weight: cost.mismatch / dispersed,
+            },
+          ]
+        : []),
+    ],
+    ...workOf(cost, workFor(effort, total), total),
+    seed: spec.seed,
+    stopWhen: ({ dealing }) =>
+      cost === weighings.gradient && bound?.squared === secondOrderInl(dealing.deal, pitch).squared,
+  };
+}
+
+/**
+ * The searches of a run, round after round: a short one per orientation of the core, which decides by the lower absolute second order,
+ * then the fewer columns; a short one with the emphasis's own weights, which tells how many tracks the wires will need; the full one at
+ * that pitch, once more if it needs another number of tracks. Where the second order alone counts and an exact search is possible, the
+ * full search is a short one and the exact one follows it.
+ */
+function* roundsOf(setting: Setting): Generator<readonly Stage[], Stage, void> {
   const { spec, rules, inCore, wired } = setting;
   const emphasis = weighings[spec.emphasis];
   const bits = setting.capacitors.filter((capacitor) => capacitor.role === 'bit');
-  const total = inCore.reduce((sum, capacitor) => sum + capacitor.units, 0);
+  const total = unitsOf(inCore);
   const dealt = dealtNets(inCore);
   const pitchFor = (tracks: number): Pitch => {
     const [x, y] = pitchOf(rules, tracks);
     return setting.pitch ?? [um(x), um(y)];
   };
-  const stage = (
-    grid: CoreGrid,
-    tracks: number,
-    cost: Weighing,
-    relative: number,
-    effort: Effort,
-    share: number,
-  ): Stage => {
-    const pitch = pitchFor(tracks);
-    const reference = relative * spread(grid, pitch);
-    const bound = lowerBound({ ...grid, pitch_um: pitch }, bits);
-    const { starts, workPerStart } = workOf(cost, workFor(effort, total), total);
-    const dispersed = chessboardSigma(total);
-    const correlation = correlationOf(grid.rows, grid.columns, pitch, comparisonLength(pitch));
-    const search = new Search({
-      deals: (start) =>
-        dealBlocks({
-          ...grid,
-          nets: dealt,
-          random: new Random(spec.seed, start),
-          arrangement: arrangementOf(cost, start, () => columnCorrelation(correlation)),
-        }),
-      terms: (deal) => [
-        // Where the first order is 0 by the deal this term stays 0; elsewhere it comes before all others.
-        { term: firstOrderTerm(deal, pitch), weight: FIRST_BEFORE_ALL / reference },
-        {
-          term: bentTerm(secondOrderTerm(deal, pitch), cost.limit * reference, BEYOND_LIMIT),
-          weight: cost.second / reference,
-        },
-        ...(cost.nets > 0 ? [{ term: columnNetsTerm(deal), weight: cost.nets / fewestNets(grid) }] : []),
-        ...(cost.mismatch > 0
-          ? [
-              {
-                term: bentTerm(mismatchTerm(deal, correlation), cost.mismatchLimit * dispersed, BEYOND_LIMIT),
-                weight: cost.mismatch / dispersed,
-              },
-            ]
-          : []),
-      ],
-      starts,
-      workPerStart,
-      seed: spec.seed,
-      stopWhen: ({ dealing }) =>
-        cost === weighings.gradient && bound?.squared === secondOrderInl(dealing.deal, pitch).squared,
-    });
-    return { grid, pitch, tracks, search, share };
+  const stage = (request: Omit<StageRequest, 'pitch'>): Stage => {
+    const whole = { ...request, pitch: pitchFor(request.tracks) };
+    return { ...whole, search: new Search(searchOptions(setting, whole)) };
   };
-
-  const fewestNets = ({ rows }: CoreGrid) => bits.reduce((sum, bit) => sum + Math.ceil(bit.units / rows), 0);
 
   let tracks = spec.tracksPerChannel ?? Math.min(6, 1 + Math.floor(inCore.length / 4));
   const grids = spec.core
     ? [{ rows: spec.core.rows, columns: spec.core.columns }]
     : candidateCores(
         dealt.filter((net) => net.weight > 0).map((net) => net.units),
-        total - bits.reduce((sum, bit) => sum + bit.units, 0),
+        total - unitsOf(bits),
         pitchFor(tracks),
       );
   const mostRounds = roundsFor(total);
   // What each orientation can have, and with what the choice between them begins.
-  const probes: { grid: CoreGrid; relative: number; least: number }[] = [];
-  for (const grid of grids) {
-    const probe = stage(grid, tracks, weighings.gradient, 1, 'quick', 0.15 / grids.length);
-    yield probe;
-    const least = secondOrderInl(probe.search.best().dealing.deal, probe.pitch).inl_lsb_per_ppm_per_um2;
-    probes.push({ grid, least, relative: least > 0 ? least / spread(grid, probe.pitch) : 1 });
-  }
+  const short = { tracks, effort: 'quick' } as const;
+  const searches = grids.map((grid) =>
+    stage({ ...short, grid, weights: 'second-order', relative: 1, share: 0.15 / grids.length }),
+  );
+  yield searches;
+  const probes = searches.map(({ grid, pitch, search }) => {
+    const least = secondOrderInl(search.best().dealing.deal, pitch).inl_lsb_per_ppm_per_um2;
+    return { grid, least, relative: least > 0 ? least / spread(grid, pitch) : 1 };
+  });
   const bySecondOrder = probes.reduce((a, b) => (b.least < a.least ? b : a));
   const near = probes.filter(({ least }) => least <= emphasis.orientation * bySecondOrder.least);
   const contenders = emphasis.orientation === 1 ? [bySecondOrder] : near;
   let { grid, relative } = bySecondOrder;
   const needed = (of: Stage) =>
     wired ? planHookup(placedOf(setting, of), spec.tracksPerChannel).channels[0].length : of.tracks;
-  const scouts: Stage[] = [];
-  for (const probe of contenders) {
-    const scout = stage(probe.grid, tracks, emphasis, probe.relative, 'quick', 0.1);
-    yield scout;
-    scouts.push(scout);
-  }
+  const scouts = contenders.map(({ grid, relative }) =>
+    stage({ ...short, grid, weights: 'own', relative, share: 0.1 / contenders.length }),
+  );
+  yield scouts;
   // Between orientations as good as each other the fewer wires decide.
   const netsOf = ({ search }: Stage) => columnNetsTerm(search.best().dealing.deal).value();
   const scout = scouts.reduce((a, b) => (netsOf(b) < netsOf(a) ? b : a));
   ({ grid, relative } = probes.find((probe) => probe.grid === scout.grid)!);
   if (spec.tracksPerChannel === undefined) tracks = needed(scout);
   for (let round = 1; ; round++) {
-    const full = stage(grid, tracks, emphasis, relative, spec.effort, 0.75 / mostRounds);
-    yield full;
+    const core: Core = { ...grid, pitch_um: pitchFor(tracks) };
+    const provable =
+      spec.emphasis === 'gradient' && inCore.every(({ role }) => role === 'bit') && isSearchable(core, bits);
+    const effort = provable ? 'quick' : spec.effort;
+    let full = stage({ grid, tracks, weights: 'own', relative, effort, share: 0.75 / mostRounds });
+    yield [full];
+    if (provable) {
+      full = { ...full, search: new ProvingSearch(full.search.best(), core, inCore), share: 0 };
+      yield [full];
+    }
     const actual = needed(full);
     if (actual === tracks || round === mostRounds) return full;
     tracks = actual;
@@ -313,6 +432,8 @@ function* stagesOf(setting: Setting): Generator<Stage, Stage, void> {
 /** What the second order scales with from pitch to pitch: twelve times the mean square distance of a cell from the centre. */
 const spread = ({ rows, columns }: CoreGrid, [x, y]: Pitch): number =>
   x * x * (columns * columns - 1) + y * y * (rows * rows - 1) || 1;
+
+const unitsOf = (capacitors: readonly Capacitor[]): number => capacitors.reduce((sum, { units }) => sum + units, 0);
 
 const dealtNets = (capacitors: readonly Capacitor[]): DealtNet[] =>
   capacitors.map(({ name, role, weight, units }) => ({ name, weight: role === 'bit' ? weight : 0, units }));
@@ -344,6 +465,8 @@ export interface DrawOptions {
   /** Keep the floorplan's own hookup where it fits its cells. */
   readonly keepHookup?: boolean;
   readonly tracksAtLeast?: number;
+  /** What an exact search has proved of a core. */
+  readonly known?: LeastOfReflected;
 }
 
 /**
@@ -351,7 +474,7 @@ export interface DrawOptions {
  * @throws Infeasible where the rules or the tracks asked for leave no room.
  */
 export function drawFloorplan(floorplan: Floorplan, technology: Technology, options: DrawOptions = {}): Drawn {
-  const { wired = true, keepHookup = false, tracksAtLeast } = options;
+  const { wired = true, keepHookup = false, tracksAtLeast, known } = options;
   const { cells, capacitors } = floorplan;
   const { array } = floorplan;
   const gradient = array?.gradient ?? technology.gradient;
@@ -366,7 +489,14 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
   ): Drawn => {
     const analysed = analyseGradient({ core, capacitors, cells, gradient });
     const { leastSquares: _, meetsBound, ...metricsGradient } = analysed;
-    const placement = floorplan.placement && provedIf(meetsBound, floorplan.placement);
+    const placement =
+      floorplan.placement &&
+      withProof(floorplan.placement, () => {
+        if (meetsBound) return 'zero-first-order';
+        const inCore = capacitors.filter(({ name }) => cells.some((row) => row.includes(name)));
+        const sought = floorplan.placement?.emphasis === 'gradient' && inCore.every(({ role }) => role === 'bit');
+        return sought ? provedClass(core, inCore, cells, known) : undefined;
+      });
     const complete: Floorplan = { ...floorplan, name, core, ...(placement && { placement }), ...rest, technology };
     const metrics: Metrics = {
       format: 'steelyard/metrics',
@@ -423,8 +553,10 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
   return finish(core, drawnAs, { hookup: hookupFigures(placed, hookup), area_um2 }, polygons);
 }
 
-function provedIf(meetsBound: boolean, placement: Placement): Placement {
-  if (!meetsBound || placement.status !== 'effort-spent') return placement;
+/** @param provedFor asked where the search came to its end by itself: the class in which the placement is proved to be the best. */
+function withProof(placement: Placement, provedFor: () => PlacementClass | undefined): Placement {
+  const proved = placement.status === 'effort-spent' ? provedFor() : undefined;
+  if (proved === undefined) return placement;
   const { work = 0, ...rest } = placement;
-  return { ...rest, status: 'proved', proof: { figure: 'gradient.second.inl_lsb', class: 'zero-first-order' }, work };
+  return { ...rest, status: 'proved', proof: { figure: 'gradient.second.inl_lsb', class: proved }, work };
 }

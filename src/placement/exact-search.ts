@@ -2,7 +2,6 @@ import { visitPairSets } from '../linearity/fill-sets.js';
 import type { Spread } from '../linearity/fill-sets.js';
 import { latticeValues } from '../linearity/lattice-values.js';
 import type { LatticeValue } from '../linearity/lattice-values.js';
-import { strongerBound } from '../linearity/lower-bound.js';
 import { OddCore, without } from '../linearity/odd-core.js';
 import { Limit, PartialCodes } from '../linearity/partial-codes.js';
 import type { Capacitor, Core } from '../spec/floorplan.js';
@@ -37,6 +36,8 @@ const MOST_FILL_SETS = 20_000;
 /** Sums of second moments are told apart below this, see `Items`. */
 const MOST_SPREAD = 131_072; // 2^17
 const MOST_WORK = 200_000_000;
+/** A round's ceiling is an eighth above the last one's, as a square. */
+const RISE = 8n;
 
 /** Whether there is an exact search for these bits on this core: 2 to 6 straight binary ones, odd x odd, little fill. */
 export function isSearchable(core: Core, bits: readonly Capacitor[]): boolean {
@@ -52,8 +53,7 @@ export function isSearchable(core: Core, bits: readonly Capacitor[]): boolean {
   const pairs = (rows * columns - 1) / 2;
   let fillSets = 1;
   for (let i = 0; i < (rows * columns - total) / 2; i++) fillSets = (fillSets * (pairs - i)) / (i + 1);
-  const bounded = bits.length < 5 || strongerBound(core, bits, 'point-reflected') !== undefined;
-  return small && fillSets <= MOST_FILL_SETS && bounded;
+  return small && fillSets <= MOST_FILL_SETS;
 }
 
 /** Sets of pairs in the order in which they are decided: fill, B1, B2, ... */
@@ -62,6 +62,8 @@ type Sets = readonly (readonly number[])[];
 /** What stands under a fill set. */
 interface Under {
   readonly fill: readonly number[];
+  /** The other pairs. */
+  readonly free: readonly number[];
   /** Second moments of all bits' cells. */
   readonly bits: Spread;
 }
@@ -89,7 +91,7 @@ export class ExactSearch {
   readonly #mirrors: readonly Int32Array[];
   readonly #total: number;
   readonly #steps: Generator<void, void, void>;
-  #limit: Limit | undefined;
+  #limit = new Limit(0n);
   #found: { readonly reduced: bigint; readonly sets: Sets } | undefined;
   #status: ExactStatus = 'running';
   #progress = 0;
@@ -109,7 +111,7 @@ export class ExactSearch {
       xy: Int32Array.from({ length: pairs }, (_, pair) => 2 * x[pair] * y[pair]),
       yy: Int32Array.from({ length: pairs }, (_, pair) => 2 * y[pair] * y[pair]),
     };
-    this.#steps = this.#rounds(core, incumbent);
+    this.#steps = this.#rounds(incumbent);
   }
 
   get status(): ExactStatus {
@@ -153,42 +155,43 @@ export class ExactSearch {
   }
 
   /**
-   * Rounds below ceilings that rise from a little above the bound to the incumbent: what is found in one is the best of all, since
-   * the whole round looks for less. Far above the best there are very many moments to look at.
+   * Rounds below ceilings that rise from what the LSB alone has to the incumbent: what is found in one is the best of all, since the
+   * round goes on until there is nothing less. Far above the best there would be very many moments to look at.
    */
-  *#rounds(core: Core, incumbent: bigint | undefined): Generator<void, void, void> {
+  *#rounds(incumbent: bigint | undefined): Generator<void, void, void> {
     const { unit } = this.#odd;
-    // A square below `incumbent` is a multiple of `unit` below it.
+    const unders = this.#fillSets();
+    // Squares are multiples of `unit`.
     const least = incumbent === undefined ? undefined : (incumbent + unit - 1n) / unit;
-    const bound = strongerBound(core, this.#bits, 'point-reflected');
-    let ceiling = this.#bits.length < 5 || !bound ? least : ((bound.squared / unit) * 104n) / 100n + 1n;
+    let ceiling = PartialCodes.none.exactlyWith(...this.#lsb(unders[0]));
     for (;;) {
-      const last = least !== undefined && (ceiling === undefined || ceiling >= least);
-      if (last) ceiling = least;
-      this.#limit = ceiling === undefined ? undefined : new Limit(ceiling);
-      yield* this.#round();
-      if (this.#found || last || ceiling === undefined) return;
-      ceiling = (ceiling * 3n) / 2n;
+      ceiling += ceiling / RISE + 1n;
+      if (least !== undefined && ceiling > least) ceiling = least;
+      this.#limit = new Limit(ceiling);
+      for (const [i, under] of unders.entries()) {
+        this.#progress = Math.max(this.#progress, i / unders.length);
+        yield* this.#decide(under, 0, PartialCodes.none, this.#lsb(under), [under.fill], under.free);
+      }
+      if (this.#found || ceiling === least) return;
     }
   }
 
-  *#round(): Generator<void, void, void> {
+  #fillSets(): Under[] {
     const { places, whole } = this.#odd;
     const cells = places.x.length;
-    const all: Under[] = [];
+    const unders: Under[] = [];
     visitPairSets(places, cells - this.#total, (set, spread) => {
       const fill = set.filter((cell) => 2 * cell < cells - 1);
-      if (isLeastImage([fill], this.#mirrors)) all.push({ fill, bits: without(whole, spread) });
+      if (!isLeastImage([fill], this.#mirrors)) return;
+      const free = Array.from({ length: (cells - 1) / 2 }, (_, pair) => pair).filter((pair) => !fill.includes(pair));
+      unders.push({ fill, free, bits: without(whole, spread) });
     });
-    for (const [i, under] of all.entries()) {
-      this.#progress = Math.max(this.#progress, i / all.length);
-      this.#work++;
-      const free = Array.from({ length: (cells - 1) / 2 }, (_, pair) => pair).filter(
-        (pair) => !under.fill.includes(pair),
-      );
-      const centre = this.#odd.residual(this.#total, under.bits, 1, { xx: 0, xy: 0, yy: 0 });
-      yield* this.#decide(under, 0, PartialCodes.none, centre, [under.fill], free);
-    }
+    return unders;
+  }
+
+  #lsb({ bits }: Under): LatticeValue['residual'] {
+    this.#work++;
+    return this.#odd.residual(this.#total, bits, 1, { xx: 0, xy: 0, yy: 0 });
   }
 
   /** Takes a residual for bit k, whose pairs are in `sets` already, and goes on to the next, if it may be below the limit. */
@@ -232,12 +235,12 @@ export class ExactSearch {
       this.#work++;
       const residual = this.#odd.residual(this.#total, under.bits, 1 << k, sum);
       const largest = decided.largestWith(...residual);
-      if (!this.#limit || largest <= this.#limit.high) tries.push({ set: [...set], residual, largest });
+      if (largest <= this.#limit.high) tries.push({ set: [...set], residual, largest });
     });
     yield;
     tries.sort((a, b) => a.largest - b.largest);
     for (const { set, residual, largest } of tries) {
-      if (this.#limit && largest > this.#limit.high) break;
+      if (largest > this.#limit.high) break;
       const more = [...sets, set];
       if (!isLeastImage(more, this.#mirrors)) continue;
       yield* this.#decide(
@@ -254,7 +257,6 @@ export class ExactSearch {
   /** B3, and B4 of six bits, by their moments. */
   *#tryMoments(under: Under, decided: PartialCodes, sets: Sets, free: readonly number[]): Generator<void, void, void> {
     const limit = this.#limit;
-    if (!limit) throw new Error('moments without limit have no end');
     const values = (weight: number, before: PartialCodes): LatticeValue[] => {
       const list = latticeValues(this.#odd, this.#total, under.bits, weight, before, limit);
       this.#work += 1 + list.length;
@@ -275,7 +277,7 @@ export class ExactSearch {
     this.#work += threes.work;
     const finders = new Map<readonly number[], SubsetFinder>();
     for (const { before, three, last } of hopes) {
-      if (last.largest > this.#limit!.high) break;
+      if (last.largest > this.#limit.high) break;
       if (!before.isBelow(this.#limit, ...last.residual)) continue;
       for (const set of threes.with(three)) {
         yield;
