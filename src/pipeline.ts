@@ -175,6 +175,8 @@ function settingOf(request: PlaceRequest): Setting {
   return { request, spec, technology, capacitors, inCore, rules, wired, ...(pitch && { pitch }) };
 }
 
+const isWaiting = ({ search }: Stage): boolean => search instanceof Search && search.waiting;
+
 class Run implements PlaceRun {
   readonly #setting: Setting;
   readonly #rounds: Generator<readonly Stage[], Stage, void>;
@@ -191,7 +193,7 @@ class Run implements PlaceRun {
   constructor(setting: Setting) {
     this.#setting = setting;
     this.#rounds = roundsOf(setting);
-    this.#advance();
+    this.#begin();
   }
 
   get started(): boolean {
@@ -199,7 +201,7 @@ class Run implements PlaceRun {
   }
 
   get waiting(): boolean {
-    return !this.#result && this.#round.every((stage) => this.#over.has(stage) || stage.search.waiting);
+    return !this.#result && this.#round.every((stage) => this.#over.has(stage) || isWaiting(stage));
   }
 
   get progress(): number {
@@ -213,7 +215,7 @@ class Run implements PlaceRun {
   }
 
   step(work: number): boolean {
-    const stage = this.#round.find((each) => !this.#over.has(each) && !each.search.waiting);
+    const stage = this.#round.find((each) => !this.#over.has(each) && !isWaiting(each));
     if (stage && !stage.search.step(work)) this.#end(stage);
     return this.#result === undefined;
   }
@@ -235,16 +237,17 @@ class Run implements PlaceRun {
 
   #end(stage: Stage): void {
     this.#over.add(stage);
-    if (this.#over.size === this.#round.length) this.#advance();
-  }
-
-  #advance(): void {
+    if (this.#over.size < this.#round.length) return;
     this.#workBefore = this.work;
-    for (const stage of this.#round) this.#shareBefore += stage.share;
     this.#before += this.#round.length;
     this.#former = this.#bestStage();
-    this.#over.clear();
+    for (const { share } of this.#round) this.#shareBefore += share;
+    this.#begin();
+  }
+
+  #begin(): void {
     const next = this.#rounds.next();
+    this.#over.clear();
     this.#round = next.done ? [] : next.value;
     if (next.done) this.#result = next.value;
   }
@@ -253,10 +256,12 @@ class Run implements PlaceRun {
   #bestStage(): Stage {
     if (this.#result) return this.#result;
     const costOf = ({ search }: Stage) => (search instanceof Search ? search.best().cost : -1);
-    return [...(this.#former ? [this.#former] : []), ...this.#round.filter(({ search }) => search.work > 0)].reduce(
-      (a, b) => (a.weights === b.weights ? (costOf(b) <= costOf(a) ? b : a) : b.weights === 'own' ? b : a),
-      this.#former ?? this.#round[0],
-    );
+    const lesser = (a: Stage, b: Stage): Stage => {
+      if (a.weights !== b.weights) return a.weights === 'own' ? a : b;
+      return costOf(b) <= costOf(a) ? b : a;
+    };
+    const worked = this.#round.filter(({ search }) => search.work > 0);
+    return [...(this.#former ? [this.#former] : []), ...worked].reduce(lesser, this.#former ?? this.#round[0]);
   }
 
   best(interrupted: boolean): Kept {
