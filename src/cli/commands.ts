@@ -19,6 +19,7 @@ import type { PlaceFlags } from './place.js';
 const laterCommands = ['size', 'simulate'];
 const laterOptions: Readonly<Record<string, readonly string[]>> = {
   place: ['--candidates', '--samples', '--workers'],
+  compare: ['--out'],
 };
 
 const examples: Readonly<Record<string, readonly string[]>> = {

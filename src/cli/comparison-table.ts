@@ -52,7 +52,7 @@ function rowsOf({ floorplans, pitch_um }: Comparison): readonly Row[] {
     const values = floorplans.map(of);
     const least = Math.min(...values.map((value) => value ?? Infinity));
     // Where all are equal there is no best one.
-    const differ = values.some((value) => value !== least);
+    const differ = values.some((value) => value !== undefined && value !== least);
     const mark = (value: number): string => (differ && value === least ? `${compact(value)} *` : compact(value));
     rows.push({ label, unit, cells: values.map((value) => (value === undefined ? NOTHING : mark(value))) });
     for (const cause of causes)
@@ -73,7 +73,8 @@ export function tableOf(comparison: Comparison, io: Pick<Io, 'columns' | 'colour
   const widths = floorplans.map(({ name }, i) => widthOf([shown(name), ...rows.map((row) => row.cells[i] ?? '')]));
   const where = pitch_um === undefined ? 'Each on its own pitch' : `All on a pitch of ${pitch_um.join(' x ')} um`;
   const marked = floorplans.length > 1 ? '; * is the best' : '';
-  const text = [`${where}, mismatch correlated over ${brief(correlationLength_um)} um${marked}.`, ''];
+  const head = `${where}, mismatch correlated over ${brief(correlationLength_um)} um${marked}.`;
+  const text = [...wrapped(head, io.columns), ''];
   for (let from = 0, to: number; from < floorplans.length; from = to) {
     let room = io.columns - label - unit - 2;
     for (to = from; to < floorplans.length && (to === from || room >= (widths[to] ?? 0) + 2); to++)

@@ -8,12 +8,10 @@ const outcome = async (line: string, machine = new MachineInMemory()) => {
 };
 
 describe('a command line that is none ends with 2, says what was found and what exists, and writes nothing', () => {
-  const commands = 'place, check, export, schema, technology';
+  const commands = 'place, pattern, compare, check, export, schema, technology';
   const cases: [line: string, said: string][] = [
     ['', `steelyard: found no command; wanted one of ${commands} (steelyard --help)`],
     ['plaice', `steelyard: found the command "plaice"; wanted one of ${commands}`],
-    ['pattern spiral --bits 6', `pattern: found a command that is not available yet; wanted one of ${commands}`],
-    ['compare a.json b.json', `compare: found a command that is not available yet; wanted one of ${commands}`],
     ['size', `size: found a command that is not available yet; wanted one of ${commands}`],
     ['simulate x.json', `simulate: found a command that is not available yet; wanted one of ${commands}`],
     ['place', 'place: found neither a file nor --bits; wanted one of them, as in: steelyard place --bits 8'],
@@ -33,6 +31,20 @@ describe('a command line that is none ends with 2, says what was found and what 
     ['place --bits 4 --balance on', '--balance: found "on"; wanted "off" ("on" is not available yet)'],
     ['place --bits 4 --hookup under-plate', '--hookup: found "under-plate"; wanted "channel" ("under-plate" is not'],
     ['place --bits 4 --technology pp', '--technology: found "pp"; wanted a shipped template (parallel-plate'],
+    ['pattern', 'pattern: found no --bits; wanted --bits <count>'],
+    ['pattern spiral', 'pattern: found no --bits; wanted --bits <count>'],
+    ['pattern spirl --bits 6', 'pattern: found "spirl"; wanted "spiral", the nearest known rule'],
+    ['pattern checkerboard --bits 6', 'pattern: found "checkerboard"; wanted "chessboard", the nearest known rule'],
+    [
+      'pattern q --bits 6',
+      'pattern: found "q"; wanted a known rule: "row-by-row", "chessboard", "spiral", "interleaved"',
+    ],
+    ['pattern spiral --bits 99', '--bits: found 99; wanted a whole number from 2 to 14'],
+    ['pattern spiral --bits 6 --pitch 1', '--pitch: found "1"; wanted X,Y in micrometres, such as 7.2,5.7'],
+    ['compare', 'compare: found no FLOORPLAN; wanted: steelyard compare [options] <FLOORPLAN...>'],
+    ['compare a.json --json --csv', 'compare: found both --json and --csv; wanted one of them'],
+    ['compare a.json --pitch mine', '--pitch: found "mine"; wanted own, or X,Y in micrometres, such as 7.2,5.7'],
+    ['compare a.json --correlation-length -3', '--correlation-length: found "-3"; wanted a number from 0 to 1000000'],
     ['check', 'check: found no FILE; wanted: steelyard check [options] <FILE> [POLYGONS]'],
     ['check a b c', 'check: found too many arguments'],
     ['export', 'export: found no --to; wanted --to <formats>'],
@@ -68,6 +80,7 @@ describe('a command line that is none ends with 2, says what was found and what 
     ['place --bits 4', '--candidates 3'],
     ['place --bits 4', '--samples 100'],
     ['place --bits 4', '--workers=2'],
+    ['compare a.json', '--out report.html'],
     ['export a.json --to gds', '--stub-cell'],
   ];
   it.each(later)('%s %s is refused by name', async (command, option) => {
@@ -90,12 +103,15 @@ describe('a command line that is none ends with 2, says what was found and what 
 });
 
 describe('help', () => {
-  it.each(['place', 'check', 'export', 'schema', 'technology'])('of %s shows options and an example', async (name) => {
-    const { code, out, err } = await outcome(`${name} --help`);
-    expect({ code, err }).toEqual({ code: 0, err: '' });
-    expect(out).toMatch(new RegExp(`^Usage: steelyard ${name} `));
-    expect(out).toMatch(/\nExample:\n {2}steelyard \w/);
-  });
+  it.each(['place', 'pattern', 'compare', 'check', 'export', 'schema', 'technology'])(
+    'of %s shows options and an example',
+    async (name) => {
+      const { code, out, err } = await outcome(`${name} --help`);
+      expect({ code, err }).toEqual({ code: 0, err: '' });
+      expect(out).toMatch(new RegExp(`^Usage: steelyard ${name} `));
+      expect(out).toMatch(/\nExample:\n {2}steelyard \w/);
+    },
+  );
 
   it('of place describes each flag of the options table with its default', async () => {
     const machine = new MachineInMemory();
@@ -110,7 +126,7 @@ describe('help', () => {
   });
 
   it('shows examples that work as they stand, one after another', { timeout: 120_000 }, async () => {
-    for (const name of ['place', 'check', 'export', 'schema', 'technology']) {
+    for (const name of ['place', 'pattern', 'compare', 'check', 'export', 'schema', 'technology']) {
       const { out } = await outcome(`${name} --help`);
       const machine = new MachineInMemory();
       const lines = out.slice(out.indexOf('\nExample:')).match(/^ {2}steelyard .*$/gm) ?? [];
