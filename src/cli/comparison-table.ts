@@ -79,24 +79,16 @@ export function tableOf(comparison: Comparison, io: Pick<Io, 'columns' | 'colour
     let room = io.columns - label - unit - 2;
     for (to = from; to < floorplans.length && (to === from || room >= (widths[to] ?? 0) + 2); to++)
       room -= (widths[to] ?? 0) + 2;
-    const line = (head: string, headUnit: string, cells: readonly string[]): string =>
+    const line = (row: Row): string =>
       [
-        head.padEnd(label),
-        headUnit.padEnd(unit),
-        ...cells.slice(from, to).map((c, i) => c.padEnd(widths[from + i] ?? 0)),
+        row.label.padEnd(label),
+        row.unit.padEnd(unit),
+        ...row.cells.slice(from, to).map((cell, i) => cell.padEnd(widths[from + i] ?? 0)),
       ]
         .join('  ')
         .trimEnd();
-    text.push(
-      colours.bold(
-        line(
-          '',
-          '',
-          floorplans.map(({ name }) => shown(name)),
-        ),
-      ),
-    );
-    for (const row of rows) text.push(line(row.label, row.unit, row.cells));
+    text.push(colours.bold(line({ label: '', unit: '', cells: floorplans.map(({ name }) => shown(name)) })));
+    for (const row of rows) text.push(line(row));
     text.push('');
   }
   return [...text, ...sentences.flatMap((sentence) => wrapped(shown(sentence), io.columns))];
