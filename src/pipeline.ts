@@ -71,6 +71,8 @@ export interface StartJob {
   readonly start: number;
   /** Which search of the run it is of. */
   readonly search: number;
+  /** Of the whole run's work. */
+  readonly share: number;
 }
 
 /**
@@ -84,8 +86,8 @@ export interface PlaceRun {
   readonly waiting: boolean;
   /** Leaves a start to somebody else, who runs it by `beginStart`. Undefined where there is none to leave at the moment. */
   take(): StartJob | undefined;
-  /** What a job has come to: at its end, or (`done` false) so far. Of no effect where it does not matter any more. */
-  offer(job: Pick<StartJob, 'search'>, result: StartResult, done: boolean): void;
+  /** What a job has come to: at its end, or (`done` false) so far. @returns false where that does not matter any more. */
+  offer(job: Pick<StartJob, 'search'>, result: StartResult, done: boolean): boolean;
   /** 0 to 1. */
   readonly progress: number;
   /** Whether a placement exists that `finish` could draw. */
@@ -222,17 +224,21 @@ class Run implements PlaceRun {
 
   take(): StartJob | undefined {
     for (const [i, { search, ...stage }] of this.#round.entries()) {
-      const start = search instanceof Search ? search.take() : undefined;
-      if (start !== undefined) return { request: this.#setting.request, stage, start, search: this.#before + i };
+      if (!(search instanceof Search)) continue;
+      const start = search.take();
+      if (start === undefined) continue;
+      const share = stage.share / search.starts;
+      return { request: this.#setting.request, stage, start, search: this.#before + i, share };
     }
     return undefined;
   }
 
-  offer({ search: number }: Pick<StartJob, 'search'>, result: StartResult, done: boolean): void {
+  offer({ search: number }: Pick<StartJob, 'search'>, result: StartResult, done: boolean): boolean {
     const stage = this.#round[number - this.#before];
-    if (!(stage?.search instanceof Search) || this.#over.has(stage)) return;
+    if (!(stage?.search instanceof Search) || this.#over.has(stage)) return false;
     stage.search.offer(result, done);
     if (stage.search.status !== 'running') this.#end(stage);
+    return true;
   }
 
   #end(stage: Stage): void {

@@ -109,6 +109,10 @@ export class Search {
     this.#options = options;
   }
 
+  get starts(): number {
+    return this.#options.starts;
+  }
+
   get status(): SearchStatus {
     return this.#status;
   }
