@@ -21,21 +21,18 @@ export class UsageError extends Error {
 
 /** A file could not be read or written (exit code 4). */
 export class FileError extends Error {
+  /** Why, in words. */
+  readonly reason: string;
+
   constructor(
     readonly path: string,
     readonly deed: 'read' | 'written',
     cause: unknown,
   ) {
-    super(`${path} could not be ${deed}: ${reason(cause)}`, { cause });
+    const why = reason(cause);
+    super(`${path} could not be ${deed}: ${why}`, { cause });
+    this.reason = why;
     this.name = 'FileError';
-  }
-}
-
-/** Ctrl-C before there was anything to save (exit code 130). */
-export class Interrupted extends Error {
-  constructor() {
-    super('interrupted before the first placement: nothing written');
-    this.name = 'Interrupted';
   }
 }
 

@@ -88,8 +88,24 @@ export async function drawingFiles(
   return files;
 }
 
-/** All that `place` writes, and a sentence on each format that cannot hold this array. */
-export async function allFiles(drawn: Drawn, folder: string): Promise<{ files: OutputFile[]; left: string[] }> {
+const endings = [
+  ...['.floorplan.json', '.metrics.json', '.gds', '.polygons.json', '.floorplan.svg', '.hookup.svg'],
+  ...['.cir', '.lvs.cir', '.lef'],
+];
+
+/** What may be left of an earlier set of this name and is not among these files: it belongs to another floorplan. */
+export const staleBeside = (files: readonly OutputFile[], name: string, folder: string): string[] =>
+  endings.map((ending) => join(folder, name + ending)).filter((path) => !files.some((file) => file.path === path));
+
+/**
+ * All that `place` writes, and a sentence on each format that cannot hold this array.
+ * @param chosen what besides the floorplan and its figures
+ */
+export async function allFiles(
+  drawn: Drawn,
+  folder: string,
+  chosen = formats,
+): Promise<{ files: OutputFile[]; left: string[] }> {
   const { floorplan, metrics } = drawn;
   const left: string[] = [];
   const refused = (format: Format, { problems }: InputError) => {
@@ -98,7 +114,7 @@ export async function allFiles(drawn: Drawn, folder: string): Promise<{ files: O
   const files = [
     { path: join(folder, `${metrics.name}.floorplan.json`), content: formatFloorplan(floorplan) },
     { path: join(folder, `${metrics.name}.metrics.json`), content: formatMetrics(metrics) },
-    ...(await drawingFiles(drawn, formats, folder, {}, refused)),
+    ...(await drawingFiles(drawn, chosen, folder, {}, refused)),
   ];
   return { files, left };
 }

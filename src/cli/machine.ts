@@ -1,8 +1,10 @@
 import { statSync } from 'node:fs';
 import { open, readdir } from 'node:fs/promises';
+import { availableParallelism } from 'node:os';
 import { fileURLToPath } from 'node:url';
+import { Worker } from 'node:worker_threads';
 import { FileError } from './fault.js';
-import type { Bar, Io } from './io.js';
+import type { Bar, Io, Thread, ThreadListener } from './io.js';
 import { writeSet } from './write-set.js';
 
 async function readFile(path: string, limit: number): Promise<Uint8Array> {
@@ -61,37 +63,64 @@ async function progressBar(label: string): Promise<Bar> {
   return { update: (share) => bar.update(Math.floor(100 * share)), stop: () => bar.stop() };
 }
 
-/** While a handler listens Ctrl-C is its own; before and after that the system's answer stands: the end. */
-function onInterrupt(handler: () => void): () => void {
-  const release = () => {
-    process.removeListener('SIGINT', once);
-  };
-  const once = () => {
-    release();
-    handler();
-  };
-  process.on('SIGINT', once);
-  return release;
+/** Calls `handler` at the first Ctrl-C; to the next one the system's own answer stands: the end. */
+export function onInterrupt(handler: () => void): void {
+  process.once('SIGINT', handler);
 }
 
-/** The process that we are. */
+const deadly = ['SIGINT', 'SIGTERM', 'SIGHUP'] as const;
+const nothing = () => undefined;
+
+/** Whoever asks us to end meanwhile waits for the few milliseconds of the renaming. */
+function undisturbed<T>(action: () => T): T {
+  for (const signal of deadly) process.on(signal, nothing);
+  try {
+    return action();
+  } finally {
+    for (const signal of deadly) process.removeListener(signal, nothing);
+  }
+}
+
+function startThread({ heard, died }: ThreadListener): Thread {
+  const worker = new Worker(new URL('./search-thread.js', import.meta.url));
+  let over = false;
+  const fail = (reason: string) => {
+    if (!over) died(reason);
+    over = true;
+  };
+  worker.on('message', heard);
+  worker.on('error', (error: unknown) => fail(error instanceof Error ? error.message : String(error)));
+  worker.on('exit', (code) => fail(`exit code ${code}`));
+  return {
+    give: (message) => worker.postMessage(message),
+    end: () => {
+      over = true;
+      void worker.terminate();
+    },
+  };
+}
+
+/** What of the machine is the same in every thread. */
+export const onDisk = {
+  readFile,
+  listFolder: (path: string) => readdir(path),
+  isSameFile,
+  breath: (): Promise<void> => new Promise((resolve) => setImmediate(resolve)),
+  now: () => performance.now(),
+  cores: availableParallelism(),
+  startThread,
+  root: fileURLToPath(new URL('../../', import.meta.url)),
+};
+
+/** The process that we are, as its main thread has it. */
 export function machine(): Io {
   const { env, stdout, stderr } = process;
   // A failed write reaches its own callback; without a listener the stream would end the process besides.
   for (const stream of [stdout, stderr]) stream.on('error', () => undefined);
   return {
-    readFile,
-    listFolder: (path) => readdir(path),
-    isSameFile,
-    writeFiles: (files) => {
-      // A Ctrl-C that comes now waits for the few milliseconds of the renaming.
-      const release = onInterrupt(() => undefined);
-      try {
-        writeSet(files);
-      } finally {
-        release();
-      }
-    },
+    ...onDisk,
+    writeFiles: (files, stale) => undisturbed(() => writeSet(files, stale)),
+    keep: nothing,
     stdout: (text) => put(stdout, 'standard output', text),
     stderr: (text) => put(stderr, 'standard error', text),
     stdoutIsTerminal: stdout.isTTY,
@@ -99,9 +128,5 @@ export function machine(): Io {
     columns: stdout.isTTY && stdout.columns > 0 ? stdout.columns : 80,
     colour: (env.NO_COLOR ?? '') === '' && env.TERM !== 'dumb' && ((env.FORCE_COLOR ?? '') !== '' || stdout.isTTY),
     progressBar,
-    onInterrupt,
-    breath: () => new Promise((resolve) => setImmediate(resolve)),
-    now: () => performance.now(),
-    root: fileURLToPath(new URL('../../', import.meta.url)),
   };
 }

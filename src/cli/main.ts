@@ -1,5 +1,4 @@
 #!/usr/bin/env node
-import { machine } from './machine.js';
-import { run } from './run.js';
+import { supervised } from './supervisor.js';
 
-process.exitCode = await run(process.argv.slice(2), machine());
+process.exitCode = await supervised(process.argv.slice(2));

@@ -1,20 +1,12 @@
 import { dirname } from 'node:path';
-import {
-  InputError,
-  drawFloorplan,
-  formatMetrics,
-  options as settings,
-  parseArray,
-  resolveArray,
-  startPlacement,
-} from '../index.js';
+import { InputError, drawFloorplan, options as settings, parseArray, resolveArray, startPlacement } from '../index.js';
 import type { ArraySpec, Drawn, PlaceRequest, PlaceRun, Problem } from '../index.js';
-import { Interrupted, UsageError, exit, shown } from './fault.js';
-import { allFiles } from './files.js';
+import { Crew } from './crew.js';
+import { deliver } from './deliver.js';
+import { UsageError, exit } from './fault.js';
 import { formatOf, inFile, readText } from './input.js';
-import type { Io } from './io.js';
+import type { Io, Rescue } from './io.js';
 import { pitchOf } from './pitch.js';
-import { findingLines, lines, summaryOf } from './summary.js';
 import { floorplanToDraw, standardTechnology, technologyNamed, valueOf } from './technology.js';
 
 /** The options of `place` as typed. */
@@ -32,6 +24,7 @@ export interface PlaceFlags {
   readonly floorplanOnly?: boolean;
   readonly pitch?: string;
   readonly json?: boolean;
+  readonly workers?: string;
 }
 
 // What an array file could say too, the technology aside: each flag is the key of the same name.
@@ -74,32 +67,50 @@ function overlaid(file: ArraySpec, given: Partial<ArraySpec>, technology: string
   return spec;
 }
 
-/** Whether Ctrl-C was pressed. Heard from the first moment to the last, so that it never leaves half a result. */
-interface Ear {
-  readonly heard: boolean;
+/** Milliseconds between two placements put by: what Ctrl-C loses at most, besides what has no better placement in it. */
+const KEEP_EVERY_ms = 200;
+
+/** What is over sooner is not worth starting a thread for. */
+const ALONE_ms = 300;
+const mostWorkers = 64;
+
+function workersOf({ cores }: Io, text: string | undefined): number {
+  const workers = text === undefined ? Math.min(cores, mostWorkers) : /^\d{1,3}$/.test(text) ? Number(text) : NaN;
+  if (workers >= 1 && workers <= mostWorkers) return workers;
+  const wanted = `a whole number from 1 to ${mostWorkers}`;
+  throw new InputError([{ pointer: '--workers', found: JSON.stringify(text), wanted }]);
 }
 
-/** Runs the search to its end or to Ctrl-C. Returns whether it was cut short. */
-async function search(io: Io, run: PlaceRun, ear: Ear): Promise<boolean> {
+/** Runs the search to its end, putting by the best so far. What comes out is the same for any number of workers. */
+async function search(io: Io, run: PlaceRun, workers: number, rest: Omit<Rescue, 'kept'>): Promise<void> {
   const bar = io.stderrIsTerminal ? await io.progressBar('placing') : undefined;
+  const crew = new Crew(io, run, workers - 1);
+  const begun = io.now();
   try {
-    // How much is done between two looks at the signals follows the clock; what comes out does not depend on it.
+    // How much is done at a time follows the clock; what comes out does not depend on it.
     let work = 20_000;
-    for (;;) {
+    let kept = -Infinity;
+    for (let more = true; more;) {
       await io.breath();
-      if (ear.heard) break;
       const start = io.now();
-      if (!run.step(work)) return false;
-      const spent = io.now() - start;
-      if (spent < 20 && work < 1e8) work *= 2;
-      else if (spent > 50 && work > 1) work = Math.ceil(work / 2);
-      bar?.update(run.progress);
+      if (start - begun > ALONE_ms) crew.handOut();
+      if (run.waiting) await crew.news();
+      else {
+        more = run.step(work);
+        const spent = io.now() - start;
+        if (spent < 20 && work < 1e8) work *= 2;
+        else if (spent > 50 && work > 100) work = Math.ceil(work / 2);
+      }
+      bar?.update(run.progress + crew.progress);
+      if (more && start - kept < KEEP_EVERY_ms) continue;
+      io.keep({ ...rest, kept: run.best(true) });
+      kept = start;
     }
+    await io.breath();
   } finally {
+    crew.dismiss();
     bar?.stop();
   }
-  if (!run.started) throw new Interrupted();
-  return true;
 }
 
 async function arrayRequest(io: Io, file: string, text: string | undefined, flags: PlaceFlags): Promise<PlaceRequest> {
@@ -125,12 +136,13 @@ async function arrayRequest(io: Io, file: string, text: string | undefined, flag
   return { array, floorplanOnly: pitch_um === undefined ? {} : { pitch_um } };
 }
 
-async function placed(io: Io, file: string, text: string | undefined, flags: PlaceFlags, ear: Ear) {
+async function started(io: Io, file: string, text: string | undefined, flags: PlaceFlags) {
   const request = await arrayRequest(io, file, text, flags);
-  const run = inFile(file, () => startPlacement(request));
-  const interrupted = await search(io, run, ear);
-  return { drawn: run.finish(interrupted), interrupted };
+  const { technology } = request.array;
+  return { run: inFile(file, () => startPlacement(request)), rest: { technology, ...delivery(flags), inputs: [] } };
 }
+
+const delivery = ({ out, json }: PlaceFlags) => ({ json: json === true, ...(out !== undefined && { folder: out }) });
 
 /** A floorplan's cells with new wires. */
 async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): Promise<Drawn> {
@@ -147,18 +159,6 @@ async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): P
   return { ...drawn, notes: [...notes, ...drawn.notes] };
 }
 
-async function deliver(io: Io, drawn: Drawn, flags: PlaceFlags): Promise<void> {
-  const { files, left } = await allFiles(drawn, flags.out ?? drawn.metrics.name);
-  const paths = files.map(({ path }) => path);
-  const warnings = [...drawn.warnings, ...left];
-  const remarks = [...warnings, ...findingLines(drawn.findings)].map(shown);
-  const output =
-    flags.json === true ? formatMetrics(drawn.metrics) : lines(summaryOf({ ...drawn, warnings }, paths, io));
-  io.writeFiles(files);
-  await io.stdout(output);
-  if (flags.json === true && remarks.length > 0) await io.stderr(lines(remarks));
-}
-
 /** `place`: an array file, a floorplan file or --bits becomes a set of files and a summary. */
 export async function place(io: Io, file: string | undefined, flags: PlaceFlags): Promise<number> {
   if (flags.pitch !== undefined && flags.floorplanOnly !== true) {
@@ -168,22 +168,13 @@ export async function place(io: Io, file: string | undefined, flags: PlaceFlags)
   const text = file === undefined ? undefined : await readText(io, file);
   if (file !== undefined && text !== undefined && formatOf(text) === 'floorplan') {
     const drawn = await rewired(io, file, text, flags);
-    await deliver(io, drawn, flags);
+    await deliver(io, drawn, delivery(flags));
     return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
   }
-  const ear = { heard: false };
-  const release = io.onInterrupt(() => {
-    ear.heard = true;
-  });
-  try {
-    const { drawn, interrupted } = await placed(io, file ?? '', text, flags, ear);
-    await deliver(io, drawn, flags);
-    if (interrupted) {
-      await io.stderr('steelyard: interrupted; the best so far is saved\n');
-      return exit.interrupted;
-    }
-    return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
-  } finally {
-    release();
-  }
+  const workers = workersOf(io, flags.workers);
+  const { run, rest } = await started(io, file ?? '', text, flags);
+  await search(io, run, workers, rest);
+  const drawn = run.finish(false);
+  await deliver(io, drawn, rest);
+  return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
 }

@@ -1,5 +1,5 @@
 import { join } from 'node:path';
-import { FileError, Interrupted, UsageError, exit, problemLine, shown } from './fault.js';
+import { FileError, UsageError, exit, problemLine, shown } from './fault.js';
 import { guarded } from './guard.js';
 import type { Io } from './io.js';
 
@@ -13,7 +13,6 @@ async function version(io: Io): Promise<string> {
 async function verdict(error: unknown, debug: boolean): Promise<{ code: number; lines: readonly string[] }> {
   if (error instanceof UsageError) return { code: exit.badInput, lines: error.lines };
   if (error instanceof FileError) return { code: exit.file, lines: [`steelyard: ${error.message}`] };
-  if (error instanceof Interrupted) return { code: exit.interrupted, lines: [`steelyard: ${error.message}`] };
   const { Infeasible, InputError } = await import('../index.js');
   if (error instanceof InputError) return { code: exit.badInput, lines: error.problems.map(problemLine) };
   if (error instanceof Infeasible) {
@@ -26,16 +25,24 @@ async function verdict(error: unknown, debug: boolean): Promise<{ code: number; 
   return { code: exit.defect, lines };
 }
 
+/** Runs what gives an exit code; an error becomes lines on standard error and its code. Never throws. */
+export async function reporting(io: Io, debug: boolean, action: () => Promise<number>): Promise<number> {
+  try {
+    return await action();
+  } catch (error) {
+    const { code, lines } = await verdict(error, debug);
+    // With standard error gone as well there is nobody left to tell; the exit code still does.
+    await io.stderr(lines.map((line) => `${shown(line)}\n`).join('')).catch(() => undefined);
+    return code;
+  }
+}
+
 /**
  * The command line as a function: arguments in, exit code out, the machine through `io` alone. Never throws.
  * @returns 0 done, 1 a check or limit fails, 2 bad input or usage, 3 impossible as asked, 4 a file, 5 a defect, 130 interrupted.
  */
-export async function run(argv: readonly string[], io: Io): Promise<number> {
-  const say = async (lines: readonly string[]) => {
-    // With standard error gone as well there is nobody left to tell; the exit code still does.
-    await io.stderr(lines.map((line) => `${shown(line)}\n`).join('')).catch(() => undefined);
-  };
-  try {
+export function run(argv: readonly string[], io: Io): Promise<number> {
+  return reporting(io, argv.includes('--debug'), async () => {
     // Ahead of everything that takes time to load.
     if (argv.length === 1 && argv[0] === '--version') {
       await io.stdout(`${await version(io)}\n`);
@@ -43,9 +50,5 @@ export async function run(argv: readonly string[], io: Io): Promise<number> {
     }
     const { runCommand } = await import('./commands.js');
     return await runCommand(argv, guarded(io), await version(io));
-  } catch (error) {
-    const { code, lines } = await verdict(error, argv.includes('--debug'));
-    await say(lines);
-    return code;
-  }
+  });
 }

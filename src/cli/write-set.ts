@@ -4,8 +4,10 @@ import {
   copyFileSync,
   fsyncSync,
   linkSync,
+  lstatSync,
   mkdirSync,
   openSync,
+  readdirSync,
   realpathSync,
   renameSync,
   rmdirSync,
@@ -80,14 +82,48 @@ function keepFormer(target: string, former: string): string | undefined {
   return former;
 }
 
+function isThere(path: string): boolean {
+  try {
+    return !lstatSync(path).isDirectory();
+  } catch {
+    return false;
+  }
+}
+
+function isAlive(pid: number): boolean {
+  try {
+    process.kill(pid, 0);
+    return true;
+  } catch (error) {
+    return (error as NodeJS.ErrnoException).code !== 'ESRCH';
+  }
+}
+
+const temporaryName = /^\.(.+)\.(\d+)-\d+\.(?:new|old)$/;
+
+/** Takes away what a run that was killed has left beside these files. */
+function sweep(targets: readonly string[]): void {
+  for (const folder of new Set(targets.map((target) => dirname(target)))) {
+    const ours = new Set(targets.filter((target) => dirname(target) === folder).map((target) => basename(target)));
+    quietly(() => {
+      for (const name of readdirSync(folder)) {
+        const [, of = '', pid = ''] = temporaryName.exec(name) ?? [];
+        if (ours.has(of) && !isAlive(Number(pid))) quietly(() => rmSync(join(folder, name)));
+      }
+    });
+  }
+}
+
 /**
- * Writes files as one set: each whole, and either all or none. Folders on the way are made.
+ * Writes files as one set: each whole, and either all or none. Folders on the way are made. When they are in place, what of `stale` is
+ * there is removed: files of an earlier set that these do not replace.
  *
  * First every file is written beside its target under another name, then all are renamed in one go without a pause in which
  * a signal could be answered. If one fails, those before it are put back.
- * @throws FileError naming the first file that could not be written; everything is as it was then.
+ * @returns those of `stale` that were there
+ * @throws FileError naming the first file that could not be written or removed; everything is as it was then.
  */
-export function writeSet(files: readonly OutputFile[]): void {
+export function writeSet(files: readonly OutputFile[], stale: readonly string[] = []): readonly string[] {
   const created: string[] = [];
   const staged: Staged[] = [];
   let at = '';
@@ -107,7 +143,16 @@ export function writeSet(files: readonly OutputFile[]): void {
       renameSync(file.temporary, file.target);
       file.placed = true;
     }
+    const removed = stale.filter(isThere);
+    for (const [index, path] of removed.entries()) {
+      at = path;
+      const former = join(dirname(path), `.${basename(path)}.${process.pid}-${files.length + index}.old`);
+      renameSync(path, former);
+      staged.push({ path, target: path, temporary: former, former, placed: false });
+    }
     for (const { former } of staged) if (former !== undefined) quietly(() => rmSync(former));
+    sweep([...staged.map(({ target }) => target), ...stale]);
+    return removed;
   } catch (cause) {
     for (const file of staged.reverse()) {
       const { former, target, temporary } = file;

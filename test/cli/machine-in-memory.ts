@@ -1,9 +1,12 @@
 import { readFile, readdir } from 'node:fs/promises';
+import { setImmediate } from 'node:timers/promises';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { FileError } from '../../src/cli/fault.js';
-import type { Bar, Io, OutputFile } from '../../src/cli/io.js';
-import { run } from '../../src/cli/run.js';
+import type { Bar, Io, OutputFile, Rescue, Thread, ThreadListener, ToSearch } from '../../src/cli/io.js';
+import { afterInterrupt } from '../../src/cli/rescue.js';
+import { reporting, run } from '../../src/cli/run.js';
+import { beginStart } from '../../src/index.js';
 
 const root = fileURLToPath(new URL('../../', import.meta.url));
 const missing = (path: string) => Object.assign(new Error(`no ${path}`), { code: 'ENOENT' });
@@ -20,6 +23,7 @@ export class MachineInMemory implements Io {
   stdoutIsTerminal = false;
   stderrIsTerminal = false;
   columns = 80;
+  cores = 1;
   colour = false;
   /** What the next look at the signals brings; counted in breaths. */
   interruptAtBreath = Infinity;
@@ -30,7 +34,8 @@ export class MachineInMemory implements Io {
   readonly root = root;
   #breaths = 0;
   #time = 0;
-  #handler: (() => void) | undefined;
+  #interrupt: (() => void) | undefined;
+  #rescue: Rescue | undefined;
 
   put(path: string, content: string | Uint8Array | object): this {
     const text = typeof content === 'string' || content instanceof Uint8Array ? content : JSON.stringify(content);
@@ -62,13 +67,21 @@ export class MachineInMemory implements Io {
 
   readonly isSameFile = (a: string, b: string): boolean => join(a) === join(b) && this.files.has(join(a));
 
-  readonly writeFiles = (files: readonly OutputFile[]): void => {
-    for (const { path } of files) {
+  readonly writeFiles = (files: readonly OutputFile[], stale: readonly string[] = []): readonly string[] => {
+    const removed = stale.filter((path) => this.files.has(join(path)));
+    for (const path of [...files.map((file) => file.path), ...removed]) {
       const code = this.broken.get(path);
       if (code !== undefined) throw new FileError(path, 'written', Object.assign(new Error(code), { code }));
     }
     this.written.push(files);
     for (const { path, content } of files) this.put(path, content);
+    for (const path of removed) this.files.delete(join(path));
+    return removed;
+  };
+
+  readonly keep = (rescue: Rescue): void => {
+    // It goes from thread to thread.
+    this.#rescue = structuredClone(rescue);
   };
 
   readonly stdout = (text: string): Promise<void> => {
@@ -89,25 +102,58 @@ export class MachineInMemory implements Io {
       },
     });
 
-  readonly onInterrupt = (handler: () => void): (() => void) => {
-    this.#handler = handler;
-    return () => {
-      this.#handler = undefined;
-    };
+  // After Ctrl-C the work goes no further.
+  breath = (): Promise<void> => {
+    if (++this.#breaths !== this.interruptAtBreath) return Promise.resolve();
+    this.#interrupt?.();
+    return new Promise(() => undefined);
   };
 
-  breath = (): Promise<void> => {
-    if (++this.#breaths === this.interruptAtBreath) this.#handler?.();
-    return Promise.resolve();
+  /** How many were started, and how many were ended again. */
+  readonly threads = { started: 0, ended: 0 };
+  /** A thread dies of this at its first message. */
+  deadly: string | undefined;
+
+  readonly startThread = ({ heard, died }: ThreadListener): Thread => {
+    this.threads.started++;
+    let last = 0;
+    const run = async ({ number, job }: ToSearch): Promise<void> => {
+      if (job === undefined) return;
+      const start = beginStart(job);
+      for (let done = start.done; number === last; done = start.done) {
+        heard({ number, result: structuredClone(start.result()), done, progress: start.progress });
+        if (done) return;
+        start.step(50_000);
+        await setImmediate();
+      }
+    };
+    return {
+      give: (message) => {
+        last = message.number;
+        void setImmediate().then(() => (this.deadly === undefined ? run(message) : died(this.deadly)));
+      },
+      end: () => {
+        last = Infinity;
+        this.threads.ended++;
+      },
+    };
   };
 
   readonly now = (): number => (this.#time += this.tick);
 
+  runWords(argv: readonly string[]): Promise<number> {
+    this.#rescue = undefined;
+    const interrupted = new Promise<void>((resolve) => {
+      this.#interrupt = resolve;
+    }).then(() => {
+      this.barStopped = true;
+      return reporting(this, false, () => afterInterrupt(this, this.#rescue));
+    });
+    return Promise.race([run(argv, this), interrupted]);
+  }
+
   /** Runs a command line given as one text, words parted by blanks. */
   run(line: string): Promise<number> {
-    return run(
-      line.split(' ').filter((word) => word !== ''),
-      this,
-    );
+    return this.runWords(line.split(' ').filter((word) => word !== ''));
   }
 }

@@ -203,7 +203,7 @@ describe('Ctrl-C', () => {
     const machine = new MachineInMemory();
     machine.interruptAtBreath = 1;
     expect(await machine.run('place --bits 6 --out o')).toBe(130);
-    expect(machine.err).toBe('steelyard: interrupted before the first placement: nothing written\n');
+    expect(machine.err).toBe('steelyard: interrupted before there was anything to save: nothing written\n');
     expect(machine.out).toBe('');
     expect(machine.written).toEqual([]);
   });

@@ -1,0 +1,53 @@
+import { join } from 'node:path';
+import { Infeasible, drawKept } from '../index.js';
+import type { Drawn } from '../index.js';
+import { deliver } from './deliver.js';
+import { exit, shown } from './fault.js';
+import { guarded } from './guard.js';
+import type { Io, Rescue } from './io.js';
+
+/** Arrays of up to so many units are still wired and drawn after Ctrl-C; of larger ones that takes seconds, and nobody wants to wait. */
+export const UNITS_DRAWN_AT_ONCE = 1023;
+
+const unitsOf = ({ kept }: Rescue): number => kept.floorplan.capacitors.reduce((sum, { units }) => sum + units, 0);
+
+/** Loads what saving takes, so that it need not be loaded when Ctrl-C comes. */
+export async function prepareRescue(rescue: Rescue): Promise<void> {
+  if (rescue.kept.options.wired !== false && unitsOf(rescue) <= UNITS_DRAWN_AT_ONCE) await import('paper');
+}
+
+function drawnAtOnce({ kept, technology }: Rescue, wired: boolean): Drawn {
+  const alone = () => drawKept({ ...kept, options: { ...kept.options, wired: false } }, technology);
+  if (!wired) return alone();
+  try {
+    return drawKept(kept, technology);
+  } catch (error) {
+    // The tracks asked for do not suffice: the placement is worth saving all the same.
+    if (error instanceof Infeasible) return alone();
+    throw error;
+  }
+}
+
+/**
+ * Saves what a run that Ctrl-C has ended put by: a complete set of one floorplan; of a large array its placement alone.
+ * @returns the exit code
+ * @throws FileError where that cannot be written, UsageError where it would take the place of an input.
+ */
+export async function afterInterrupt(io: Io, rescue: Rescue | undefined): Promise<number> {
+  if (rescue === undefined) {
+    await io.stderr('steelyard: interrupted before there was anything to save: nothing written\n');
+    return exit.interrupted;
+  }
+  const asked = rescue.kept.options.wired !== false;
+  const small = unitsOf(rescue) <= UNITS_DRAWN_AT_ONCE;
+  const drawn = drawnAtOnce(rescue, asked && small);
+  const { name } = drawn.metrics;
+  const folder = rescue.folder ?? name;
+  await deliver(guarded(io, rescue.inputs), drawn, { folder, json: rescue.json, bare: !small });
+  const undrawn = asked && drawn.polygons === undefined;
+  const floorplan = join(folder, `${name}.floorplan.json`);
+  const hint = `; to draw it: steelyard export ${floorplan} --to gds,polygons,svg,spice,lef --out ${folder}`;
+  const what = undrawn ? `the best placement so far is saved, without wires${hint}` : 'the best so far is saved';
+  await io.stderr(`steelyard: interrupted; ${shown(what)}\n`);
+  return exit.interrupted;
+}
