@@ -43,10 +43,3 @@ export function inNanometres({ scale, x, y, xx, xy, yy }: Residuals, [px, py]: P
     yy: yy.map((value) => by * by * value),
   };
 }
-
-/** Square of the nuclear norm of the symmetric matrix ((xx, xy), (xy, yy)). */
-export function nuclearNormSquared(xx: bigint, xy: bigint, yy: bigint): bigint {
-  const trace2 = (xx + yy) * (xx + yy);
-  const shear2 = (xx - yy) * (xx - yy) + 4n * xy * xy;
-  return trace2 > shear2 ? trace2 : shear2;
-}
