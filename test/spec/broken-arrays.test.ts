@@ -136,15 +136,14 @@ const cases: [name: string, text: string, problems: string[]][] = [
       '/termination | "rings" | "ring", "core" or "none"',
       '/fillTop | "GND" | "TOP" or "VSS"',
       '/effort | "max" | "quick", "normal" or "thorough"',
-      '/emphasis | "INL" | "balanced", "gradient" or "wiring" ("dispersed" is not available yet)',
+      '/emphasis | "INL" | "balanced", "gradient", "dispersed" or "wiring"',
     ],
   ],
   [
     'values of later versions',
-    withKeys('"bits": 4, "hookup": "under-plate", "emphasis": "dispersed", "balance": "on", "pair": "mirrored"'),
+    withKeys('"bits": 4, "hookup": "under-plate", "balance": "on", "pair": "mirrored"'),
     [
       '/hookup | "under-plate" | "channel" ("under-plate" is not available yet)',
-      '/emphasis | "dispersed" | "balanced", "gradient" or "wiring" ("dispersed" is not available yet)',
       '/balance | "on" | "off" ("on" is not available yet)',
       '/pair | "mirrored" | "none" ("mirrored" is not available yet)',
     ],
