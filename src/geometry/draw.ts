@@ -1,6 +1,6 @@
 import type { Reference } from '../core/layout.js';
 import { Infeasible } from '../core/problem.js';
-import { um } from '../core/units.js';
+import { nm, um } from '../core/units.js';
 import { rectangle } from '../core/rectangle.js';
 import { pitchOf, type Rules, viaBetween } from '../hookup/rules.js';
 import type { Hookup } from '../hookup/wires.js';
@@ -202,12 +202,22 @@ function drawGroundedFills(sheet: Sheet, technology: Technology, placed: Placed,
   const half = rules.padSize / 2;
   const rim = rules.plate[0] / 2;
   const edge = rim + rules.tab[0];
+  if (!placed.cells.some((names) => names.includes('-'))) return;
   const room = rules.plate[1] / 2 - rules.tabLevel - half;
-  if (room < rules.upperSpacing && placed.cells.some((names) => names.includes('-')))
+  if (room < rules.upperSpacing)
     throw new Infeasible(
       `A wire from a fill dummy's top terminal to its tab stands ${um(room)} um from what runs between the rows; ${um(rules.upperSpacing)} um are needed.`,
       'Lower tabLevel_um, take a larger unit, or ask for "fillTop": "TOP".',
     );
+  if (roles.topPlate === roles.bottomPlate) {
+    const { spacing_um, size_um } = viaBetween(technology, roles.bottomPlate, roles.strap);
+    const apart = Math.max(edge - landing - rules.pad[0], Math.abs(rules.pad[1] + rules.tabLevel)) - nm(size_um);
+    if (apart < nm(spacing_um))
+      throw new Infeasible(
+        `The vias on a fill dummy's comb and on its tab stand ${um(apart)} um apart; ${spacing_um} um are needed.`,
+        'Move terminals.top to the left, lengthen tab_um, or ask for "fillTop": "TOP".',
+      );
+  }
   placed.cells.forEach((names, row) =>
     names.forEach((name, column) => {
       if (name !== '-') return;

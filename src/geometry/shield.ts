@@ -67,11 +67,16 @@ export function channelShield(hookup: Hookup, channel: number): Shield {
           continue;
         }
         // The tallest common stretch of this line and the group's slabs takes the via in its middle.
+        // It keeps its spacing to the via at either end of the line: on the frame, or of the trunk that ends below.
+        const own = rules.viaTrack.size + rules.viaTrack.spacing - halfLanding;
+        const onFrame = frame.frameLow + rules.frameWidth / 2;
+        const below = line.y0 > onFrame ? line.y0 - rules.trackWidth - rules.lineSpacing : onFrame;
+        const [lowest, highest] = [below + own, frame.height - rules.frameWidth / 2 - own];
         let best: readonly [number, number] | undefined;
         for (const member of members) {
           if (line.x0 - halfLanding < member.x0 || line.x0 + halfLanding > member.x1) continue;
-          const bottom = Math.max(member.y0, line.y0 - rules.trackWidth / 2);
-          const top = Math.min(member.y1, line.y1 + rules.trackWidth / 2);
+          const bottom = Math.max(member.y0, line.y0 - rules.trackWidth / 2, lowest);
+          const top = Math.min(member.y1, line.y1 + rules.trackWidth / 2, highest);
           if (top - bottom >= rules.viaTrack.landing && (best === undefined || top - bottom > best[1] - best[0]))
             best = [bottom, top];
         }

@@ -26,7 +26,9 @@ export function drawStrips(
   const via = viaBetween(technology, roles.trunk, roles.stub).name;
   const meaning = { net: 'VSS', part: 'shield' } as const;
   const track = rules.trackWidth / 2;
-  const inner = [frameLow + rules.frameWidth, height - rules.frameWidth] as const;
+  // Drops end a track's spacing below the frame, and the strip may be wide metal.
+  const lowest = Math.max(frameLow + rules.frameWidth, frameLow - rules.trackSpacing + spacing);
+  const inner = [lowest, height - rules.frameWidth] as const;
   for (let column = -rings; column < columns + rings; column++) {
     const x = frame.columnX(column);
     const line = ringLines.some((one) => one.column === column);

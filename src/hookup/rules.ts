@@ -42,7 +42,7 @@ export interface Rules {
   readonly tracksPerShield: number;
   /** Half the width of the `VSS` strip under a column, and the room that it keeps; absent without a shield. */
   readonly strip?: { readonly half: number; readonly spacing: number };
-  readonly viaTrack: { readonly size: number; readonly landing: number };
+  readonly viaTrack: { readonly size: number; readonly landing: number; readonly spacing: number };
   readonly viaFrame: { readonly size: number; readonly landing: number };
 }
 
@@ -85,9 +85,8 @@ export function drawingRules(technology: Technology): Rules {
   const wideFrom = plateMetal.wideFrom_um === undefined ? Infinity : nm(plateMetal.wideFrom_um);
 
   const landing = (via: Via) => even(nm(via.size_um) + 2 * nm(via.enclosure_um));
-  const viaTrack = { size: nm(toPlate.size_um), landing: landing(toPlate) };
+  const viaTrack = { size: nm(toPlate.size_um), landing: landing(toPlate), spacing: nm(toPlate.spacing_um) };
   const viaFrame = { size: nm(toUpper.size_um), landing: landing(toUpper) };
-  const tabHeight = unit.kind === 'named-cell' ? 0 : nm(unit.tab_um[1]);
   const lineSpacing = length(lower.minSpacing_um);
   const trackWidth = trackWidthOf(technology);
   const viaApart = nm(toPlate.spacing_um) - (trackWidth - viaTrack.size);
@@ -110,7 +109,8 @@ export function drawingRules(technology: Technology): Rules {
   const strapX = Math.min(0, grid * Math.floor((pad[0] - padSize / 2 - strapWidth / 2 - upperSpacing) / grid));
   const bottomGap = even(Math.max(trackWidth + spacing, metalSpacing));
   const tabLevel = body.tabLevel ?? grid * Math.floor((plate[1] + rowGap) / 4 / grid);
-  const tab = [tabLength, tabHeight || trackWidth] as const;
+  // A stub taller than its tab would leave a notch beside the plate.
+  const tab = [tabLength, trackWidth] as const;
 
   const stop = (because: string, remedy: string): never => {
     throw new Infeasible(because, remedy);
@@ -122,10 +122,10 @@ export function drawingRules(technology: Technology): Rules {
       `The two tab levels stand ${inMicrometres(2 * tabLevel)} apart and ${inMicrometres(plate[1] + rowGap - 2 * tabLevel)} from the next row's; a stub, its spacing and a shield between them need ${inMicrometres(levels)}.`,
       'Change tabLevel_um or take a larger plate.',
     );
-  if (tab[1] > trackWidth || tab[1] < minPlateWidth)
+  if (2 * tabLevel + trackWidth > plate[1])
     stop(
-      `A tab ${inMicrometres(tab[1])} tall does not fit a stub ${inMicrometres(trackWidth)} wide under a width rule of ${inMicrometres(minPlateWidth)}.`,
-      'Change tab_um.',
+      `A stub ${inMicrometres(trackWidth)} tall at a level of ${inMicrometres(tabLevel)} reaches past the edge of its unit.`,
+      'Lower tabLevel_um or take a larger unit.',
     );
   if (strapX - strapWidth / 2 < -plate[0] / 2)
     stop(

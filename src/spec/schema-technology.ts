@@ -60,7 +60,7 @@ const terminal = object({
   at_um: described(pair(position), 'a place on it'),
 });
 const terminals = described(
-  object({ bottom: terminal, top: terminal }),
+  object({ bottom: described(terminal, 'its bottom terminal'), top: described(terminal, 'its top terminal') }),
   'where the hookup meets the unit: about its middle, of a named cell in its own coordinates',
 );
 const capacitance_fF = described(positive, 'capacitance of one unit');
