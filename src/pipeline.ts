@@ -2,6 +2,7 @@ import { bentTerm } from './array/bent-term.js';
 import { candidateCores, type CoreGrid } from './array/core-grid.js';
 import { checkFloorplan } from './check/floorplan.js';
 import { checkPolygons } from './check/polygons.js';
+import { Candidates } from './comparison/candidates.js';
 import type { Finding } from './check/finding.js';
 import { figure } from './core/figure.js';
 import { InputError } from './core/problem.js';
@@ -25,10 +26,11 @@ import { type LeastOfReflected, provedClass } from './linearity/proved.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
 import { ringsToReach, unitMismatch } from './spec/options.js';
 import { workFor } from './placement/effort.js';
-import { arrangementOf, weighings, workOf } from './placement/emphasis.js';
+import { arrangementOf, type Blend, recipes, weighingOf, weighings, workOf } from './placement/emphasis.js';
 import { isSearchable } from './placement/exact-search.js';
 import { firstOrderBound } from './placement/first-order-bound.js';
 import { ProvingSearch } from './placement/proving-search.js';
+import type { Resumable } from './placement/resumable.js';
 import { Search, type SearchOptions, SearchStart, type StartResult } from './placement/search.js';
 import type { Effort } from './spec/array-spec.js';
 import type { Capacitor, Core, Floorplan, Placement, RingUnit } from './spec/floorplan.js';
@@ -41,6 +43,8 @@ export interface PlaceRequest {
   readonly array: ResolvedArray;
   /** Cells only, no wires; on a pitch of one's own where given. */
   readonly floorplanOnly?: { readonly pitch_um?: readonly [x: number, y: number] };
+  /** Weights between those of the array's emphasis and another's. */
+  readonly blend?: Blend;
 }
 
 /** A placed array, wired, drawn and measured. `polygons` and what comes of them are absent without wires. */
@@ -75,25 +79,10 @@ export interface StartJob {
   readonly share: number;
 }
 
-/**
- * A resumable run. It depends on the request alone: neither on how the work is cut into steps nor on how many of its starts were taken and
- * run elsewhere.
- */
-export interface PlaceRun {
-  /** Runs some `work` trial swaps. Returns whether there is more to do, here or elsewhere. */
-  step(work: number): boolean;
-  /** Whether what is left to do now is all in other hands. */
-  readonly waiting: boolean;
-  /** Leaves a start to somebody else, who runs it by `beginStart`. Undefined where there is none to leave at the moment. */
-  take(): StartJob | undefined;
-  /** What a job has come to: at its end, or (`done` false) so far. @returns false where that does not matter any more. */
-  offer(job: Pick<StartJob, 'search'>, result: StartResult, done: boolean): boolean;
-  /** 0 to 1. */
-  readonly progress: number;
+/** A resumable run, whose jobs `beginStart` runs. It depends on the request alone. */
+export interface PlaceRun extends Resumable<StartJob> {
   /** Whether a placement exists that `finish` could draw. */
   readonly started: boolean;
-  /** Trial swaps so far. */
-  readonly work: number;
   /** The best so far, as cells alone. */
   best(interrupted: boolean): Kept;
   /** The best so far, wired, drawn and measured. @throws Infeasible where the tracks asked for do not suffice. */
@@ -155,6 +144,27 @@ export function startPlacement(request: PlaceRequest): PlaceRun {
   return new Run(settingOf(request));
 }
 
+/**
+ * Starts a search of several floorplans, none dominated by another: `count` of them, or fewer where no more are found. The array's own
+ * emphasis is of no account; `best` tells which they are, in the order of their second order.
+ * @throws as `startPlacement`
+ */
+export function startCandidates(request: PlaceRequest, count: number): Candidates<StartJob, Kept> {
+  const { spec, technology } = request.array;
+  return new Candidates<StartJob, Kept>(count, {
+    begin: (number) => {
+      const { emphasis, blend } = recipes[number % recipes.length];
+      const seed = Math.min(spec.seed + Math.floor(number / recipes.length), Number.MAX_SAFE_INTEGER);
+      const array = { ...request.array, spec: { ...spec, emphasis, seed } };
+      return startPlacement({ ...request, array, ...(blend && { blend }) });
+    },
+    measure: (kept) => {
+      const { floorplan, metrics } = drawKept({ ...kept, options: { ...kept.options, measureOnly: true } }, technology);
+      return { kept, floorplan, metrics };
+    },
+  });
+}
+
 /** A job of a run, begun anew wherever this is called: it depends on the job alone. */
 export function beginStart({ request, stage, start }: StartJob): SearchStart {
   return new SearchStart(searchOptions(settingOf(request), stage), start);
@@ -202,6 +212,10 @@ class Run implements PlaceRun {
     return this.#result !== undefined || this.work > 0;
   }
 
+  get over(): boolean {
+    return this.#result !== undefined;
+  }
+
   get waiting(): boolean {
     return !this.#result && this.#round.every((stage) => this.#over.has(stage) || isWaiting(stage));
   }
@@ -219,7 +233,7 @@ class Run implements PlaceRun {
   step(work: number): boolean {
     const stage = this.#round.find((each) => !this.#over.has(each) && !isWaiting(each));
     if (stage && !stage.search.step(work)) this.#end(stage);
-    return this.#result === undefined;
+    return !this.over;
   }
 
   take(): StartJob | undefined {
@@ -233,7 +247,7 @@ class Run implements PlaceRun {
     return undefined;
   }
 
-  offer({ search: number }: Pick<StartJob, 'search'>, result: StartResult, done: boolean): boolean {
+  offer({ search: number }: StartJob, result: StartResult, done: boolean): boolean {
     const stage = this.#round[number - this.#before];
     if (!(stage?.search instanceof Search) || this.#over.has(stage)) return false;
     stage.search.offer(result, done);
@@ -271,13 +285,15 @@ class Run implements PlaceRun {
   }
 
   best(interrupted: boolean): Kept {
-    const { spec, capacitors, wired } = this.#setting;
+    const { request, spec, capacitors, wired } = this.#setting;
     const stage = this.#bestStage();
     const { grid, pitch, tracks, search } = stage;
     const { dealing } = search.best();
     const placed = placedOf(this.#setting, stage);
+    const { blend } = request;
+    const weights = blend ? `, weights ${Math.round(100 * blend.share)} % of the way to ${blend.towards}` : '';
     const placement: Placement = {
-      method: dealing.exactZero ? 'annealed zero-first-order deal' : 'annealed deal',
+      method: `${dealing.exactZero ? 'annealed zero-first-order deal' : 'annealed deal'}${weights}`,
       seed: spec.seed,
       emphasis: spec.emphasis,
       status: interrupted ? 'interrupted' : 'effort-spent',
@@ -324,10 +340,10 @@ export function drawKept({ floorplan, options, because }: Kept, technology: Tech
 
 /** The search of a stage, without its starts: what it deals and what that costs. */
 function searchOptions(
-  { spec, capacitors, inCore }: Setting,
+  { request, spec, capacitors, inCore }: Setting,
   { grid, pitch, weights, relative, effort }: StageRequest,
 ): SearchOptions {
-  const cost = weights === 'own' ? weighings[spec.emphasis] : weighings.gradient;
+  const cost = weights === 'own' ? weighingOf(spec.emphasis, request.blend) : weighings.gradient;
   const bits = capacitors.filter(({ role }) => role === 'bit');
   const total = unitsOf(inCore);
   const nets = dealtNets(inCore);
@@ -376,7 +392,7 @@ function searchOptions(
  */
 function* roundsOf(setting: Setting): Generator<readonly Stage[], Stage, void> {
   const { spec, rules, inCore, wired } = setting;
-  const emphasis = weighings[spec.emphasis];
+  const emphasis = weighingOf(spec.emphasis, setting.request.blend);
   const bits = setting.capacitors.filter((capacitor) => capacitor.role === 'bit');
   const total = unitsOf(inCore);
   const dealt = dealtNets(inCore);
@@ -476,6 +492,8 @@ export interface DrawOptions {
   /** Keep the floorplan's own hookup where it fits its cells. */
   readonly keepHookup?: boolean;
   readonly tracksAtLeast?: number;
+  /** Wires and figures, but no polygons. */
+  readonly measureOnly?: boolean;
   /** What an exact search has proved of a core. */
   readonly known?: LeastOfReflected;
 }
@@ -485,7 +503,7 @@ export interface DrawOptions {
  * @throws Infeasible where the rules or the tracks asked for leave no room.
  */
 export function drawFloorplan(floorplan: Floorplan, technology: Technology, options: DrawOptions = {}): Drawn {
-  const { wired = true, keepHookup = false, tracksAtLeast, known } = options;
+  const { wired = true, keepHookup = false, tracksAtLeast, measureOnly = false, known } = options;
   const { cells, capacitors } = floorplan;
   const { array } = floorplan;
   const gradient = array?.gradient ?? technology.gradient;
@@ -553,7 +571,9 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
   }
   const hookup: Hookup = layWires(rules, placed, plan, buses);
   const { frame } = hookup;
-  const polygons = drawPolygons(name, technology, rules, placed, hookup, array?.fillTop ?? 'TOP');
+  const polygons = measureOnly
+    ? undefined
+    : drawPolygons(name, technology, rules, placed, hookup, array?.fillTop ?? 'TOP');
   const core: Core = { rows: frame.rows, columns: frame.columns, pitch_um: [um(frame.pitch[0]), um(frame.pitch[1])] };
   const drawnAs = {
     ...(array && { array: { ...array, tracksPerChannel: frame.tracks } }),

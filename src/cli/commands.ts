@@ -18,7 +18,7 @@ import type { PlaceFlags } from './place.js';
 /** Commands and options that a later version brings: refused by name rather than taken for a slip of the pen. */
 const laterCommands = ['size', 'simulate'];
 const laterOptions: Readonly<Record<string, readonly string[]>> = {
-  place: ['--candidates', '--samples'],
+  place: ['--samples'],
   compare: ['--out'],
 };
 
@@ -70,6 +70,7 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
   placing
     .option('--floorplan-only', 'place and analyse, draw no wires')
     .option('--pitch <X,Y>', 'pitch in micrometres, with --floorplan-only')
+    .option('--candidates <count>', 'several floorplans, 2 to 16, none dominated by another: NAME-1, NAME-2, ...')
     .option('--workers <count>', 'threads of the search; no file depends on it (default: one per core)')
     .option('--json', 'print the metrics, and nothing else, as JSON')
     .action(async (file: string | undefined, flags: PlaceFlags) => finish(await place(io, file, flags)));
@@ -135,7 +136,7 @@ function refuseWhatComesLater(argv: readonly string[], program: Command): void {
     const existing = program.commands.map((command) => command.name()).join(', ');
     throw new UsageError([`${name}: found a command that is not available yet; wanted one of ${existing}`]);
   }
-  const later = laterOptions[name] ?? [];
+  const later = Object.hasOwn(laterOptions, name) ? (laterOptions[name] ?? []) : [];
   const command = program.commands.find((candidate) => candidate.name() === name);
   const lines = argv
     .map((word) => word.replace(/=.*/s, ''))

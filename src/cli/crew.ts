@@ -1,27 +1,27 @@
-import type { PlaceRun, StartJob } from '../index.js';
+import type { Resumable, StartJob } from '../index.js';
 import type { Io, Thread } from './io.js';
 
-interface Hand {
+interface Hand<Job> {
   readonly thread: Thread;
   /** What it runs; undefined where it has nothing to do. */
-  job?: { readonly number: number; readonly job: StartJob; progress: number };
+  job?: { readonly number: number; readonly job: Job; progress: number };
 }
 
 /**
  * Threads that run starts of a search besides the one that holds the run. Each is started when there is a start for it to run.
- * What comes out does not depend on them: see `PlaceRun`.
+ * What comes out does not depend on them: see `Resumable`.
  */
-export class Crew {
+export class Crew<Job extends StartJob> {
   readonly #io: Pick<Io, 'startThread'>;
   readonly #most: number;
-  readonly #run: PlaceRun;
-  readonly #hands: Hand[] = [];
+  readonly #run: Resumable<Job>;
+  readonly #hands: Hand<Job>[] = [];
   #given = 0;
   #failure: Error | undefined;
   #heard: () => void = () => undefined;
 
   /** @param most threads at a time, this one not counted */
-  constructor(io: Pick<Io, 'startThread'>, run: PlaceRun, most: number) {
+  constructor(io: Pick<Io, 'startThread'>, run: Resumable<Job>, most: number) {
     this.#io = io;
     this.#run = run;
     this.#most = most;
@@ -57,8 +57,8 @@ export class Crew {
     for (const { thread } of this.#hands) thread.end();
   }
 
-  #hire(): Hand {
-    const hand: Hand = {
+  #hire(): Hand<Job> {
+    const hand: Hand<Job> = {
       thread: this.#io.startThread({
         heard: ({ number, result, done, progress }) => {
           const current = hand.job;

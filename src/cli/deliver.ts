@@ -5,7 +5,7 @@ import { allFiles, formats, staleBeside } from './files.js';
 import type { Io } from './io.js';
 import { findingLines, lines, summaryOf } from './summary.js';
 
-interface Delivery {
+export interface Delivery {
   /** Default: a folder of the array's name. */
   readonly folder?: string;
   /** The metrics alone on standard output, what else there is to say on standard error. */

@@ -72,6 +72,7 @@ export async function drawingFiles(
   folder: string,
   options: WriterOptions = {},
   refused?: (format: Format, error: InputError) => void,
+  base = name,
 ): Promise<OutputFile[]> {
   const files: OutputFile[] = [];
   for (const format of formats) {
@@ -79,7 +80,7 @@ export async function drawingFiles(
     const write: Writer = writers[format];
     try {
       for (const [ending, content] of await write(floorplan, polygons, options))
-        files.push({ path: join(folder, name + ending), content });
+        files.push({ path: join(folder, base + ending), content });
     } catch (error) {
       if (refused === undefined || !(error instanceof InputError)) throw error;
       refused(format, error);
@@ -99,12 +100,13 @@ export const staleBeside = (files: readonly OutputFile[], name: string, folder: 
 
 /**
  * All that `place` writes, and a sentence on each format that cannot hold this array.
- * @param chosen what besides the floorplan and its figures
+ * @param chosen what besides the floorplan and its figures. @param base what the files' names begin with
  */
 export async function allFiles(
   drawn: Drawn,
   folder: string,
   chosen = formats,
+  base = drawn.metrics.name,
 ): Promise<{ files: OutputFile[]; left: string[] }> {
   const { floorplan, metrics } = drawn;
   const left: string[] = [];
@@ -112,9 +114,9 @@ export async function allFiles(
     for (const { found, wanted } of problems) left.push(`No ${format} files: found ${found}; wanted ${wanted}.`);
   };
   const files = [
-    { path: join(folder, `${metrics.name}.floorplan.json`), content: formatFloorplan(floorplan) },
-    { path: join(folder, `${metrics.name}.metrics.json`), content: formatMetrics(metrics) },
-    ...(await drawingFiles(drawn, chosen, folder, {}, refused)),
+    { path: join(folder, `${base}.floorplan.json`), content: formatFloorplan(floorplan) },
+    { path: join(folder, `${base}.metrics.json`), content: formatMetrics(metrics) },
+    ...(await drawingFiles(drawn, chosen, folder, {}, refused, base)),
   ];
   return { files, left };
 }

@@ -16,6 +16,8 @@ export interface Bar {
 /** What Ctrl-C leaves of a run: its best placement so far, and how that was to be delivered. Plain data. */
 export interface Rescue {
   readonly kept: Kept;
+  /** Where several floorplans were asked for: those there are, `kept` the first of them. */
+  readonly candidates?: { readonly name: string; readonly asked: number; readonly kept: readonly Kept[] };
   readonly technology: Technology;
   /** Default: a folder of the array's name. */
   readonly folder?: string;
@@ -45,9 +47,9 @@ export interface Thread {
 }
 
 export interface ThreadListener {
-  heard(message: FromSearch): void;
+  readonly heard: (message: FromSearch) => void;
   /** It has ended without being told to. */
-  died(reason: string): void;
+  readonly died: (reason: string) => void;
 }
 
 export interface Io {

@@ -1,6 +1,16 @@
 import { dirname } from 'node:path';
-import { InputError, drawFloorplan, options as settings, parseArray, resolveArray, startPlacement } from '../index.js';
-import type { ArraySpec, Drawn, PlaceRequest, PlaceRun, Problem } from '../index.js';
+import {
+  InputError,
+  drawFloorplan,
+  drawKept,
+  options as settings,
+  parseArray,
+  resolveArray,
+  startCandidates,
+  startPlacement,
+} from '../index.js';
+import type { ArraySpec, Drawn, Kept, PlaceRequest, Problem, Resumable, StartJob } from '../index.js';
+import { countOf, deliverCandidates } from './candidates.js';
 import { Crew } from './crew.js';
 import { deliver } from './deliver.js';
 import { UsageError, exit } from './fault.js';
@@ -25,6 +35,7 @@ export interface PlaceFlags {
   readonly pitch?: string;
   readonly json?: boolean;
   readonly workers?: string;
+  readonly candidates?: string;
 }
 
 // What an array file could say too, the technology aside: each flag is the key of the same name.
@@ -82,7 +93,12 @@ function workersOf({ cores }: Io, text: string | undefined): number {
 }
 
 /** Runs the search to its end, putting by the best so far. What comes out is the same for any number of workers. */
-async function search(io: Io, run: PlaceRun, workers: number, rest: Omit<Rescue, 'kept'>): Promise<void> {
+async function search<Job extends StartJob>(
+  io: Io,
+  run: Resumable<Job>,
+  workers: number,
+  rescue: () => Rescue,
+): Promise<void> {
   const bar = io.stderrIsTerminal ? await io.progressBar('placing') : undefined;
   const crew = new Crew(io, run, workers - 1);
   const begun = io.now();
@@ -103,7 +119,7 @@ async function search(io: Io, run: PlaceRun, workers: number, rest: Omit<Rescue,
       }
       bar?.update(run.progress + crew.progress);
       if (more && start - kept < KEEP_EVERY_ms) continue;
-      io.keep({ ...rest, kept: run.best(true) });
+      io.keep(rescue());
       kept = start;
     }
     await io.breath();
@@ -136,17 +152,13 @@ async function arrayRequest(io: Io, file: string, text: string | undefined, flag
   return { array, floorplanOnly: pitch_um === undefined ? {} : { pitch_um } };
 }
 
-async function started(io: Io, file: string, text: string | undefined, flags: PlaceFlags) {
-  const request = await arrayRequest(io, file, text, flags);
-  const { technology } = request.array;
-  return { run: inFile(file, () => startPlacement(request)), rest: { technology, ...delivery(flags), inputs: [] } };
-}
-
 const delivery = ({ out, json }: PlaceFlags) => ({ json: json === true, ...(out !== undefined && { folder: out }) });
 
 /** A floorplan's cells with new wires. */
 async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): Promise<Drawn> {
-  const idle = arrayFlags.filter((key) => flags[key as keyof PlaceFlags] !== undefined).map((key) => `--${key}`);
+  const idle = [...arrayFlags, 'candidates', 'workers']
+    .filter((key) => flags[key as keyof PlaceFlags] !== undefined)
+    .map((key) => `--${key}`);
   if (idle.length > 0) {
     const wanted = 'none of them with a floorplan: its cells are kept as they are';
     throw new UsageError([`place: found ${idle.join(', ')}; wanted ${wanted}`]);
@@ -157,6 +169,25 @@ async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): P
   const onPitch = { ...floorplan, core: { ...floorplan.core, pitch_um } };
   const drawn = inFile(file, () => drawFloorplan(onPitch, technology, { wired }));
   return { ...drawn, notes: [...notes, ...drawn.notes] };
+}
+
+async function placeCandidates(
+  io: Io,
+  file: string,
+  request: PlaceRequest,
+  asked: number,
+  workers: number,
+  rest: Omit<Rescue, 'kept'>,
+): Promise<number> {
+  const run = inFile(file, () => startCandidates(request, asked));
+  const { name } = request.array.spec;
+  await search(io, run, workers, () => {
+    const kept = run.best();
+    return { ...rest, kept: kept[0], candidates: { name, asked, kept } };
+  });
+  const draw = (kept: Kept): Drawn => drawKept(kept, rest.technology);
+  const found = await deliverCandidates(io, run.best(), draw, { ...rest, name, asked });
+  return found ? exit.failedCheck : exit.done;
 }
 
 /** `place`: an array file, a floorplan file or --bits becomes a set of files and a summary. */
@@ -172,8 +203,17 @@ export async function place(io: Io, file: string | undefined, flags: PlaceFlags)
     return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
   }
   const workers = workersOf(io, flags.workers);
-  const { run, rest } = await started(io, file ?? '', text, flags);
-  await search(io, run, workers, rest);
+  const count = flags.candidates === undefined ? undefined : countOf(flags.candidates);
+  if (count !== undefined && flags.emphasis !== undefined)
+    throw new UsageError([
+      'place: found both --emphasis and --candidates; wanted one of them: candidates have them all',
+    ]);
+  const request = await arrayRequest(io, file ?? '', text, flags);
+  const { technology } = request.array;
+  const rest = { technology, ...delivery(flags), inputs: [] };
+  if (count !== undefined) return placeCandidates(io, file ?? '', request, count, workers, rest);
+  const run = inFile(file ?? '', () => startPlacement(request));
+  await search(io, run, workers, () => ({ ...rest, kept: run.best(true) }));
   const drawn = run.finish(false);
   await deliver(io, drawn, rest);
   return drawn.findings.length > 0 ? exit.failedCheck : exit.done;

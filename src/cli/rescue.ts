@@ -1,6 +1,7 @@
 import { join } from 'node:path';
 import { Infeasible, drawKept } from '../index.js';
-import type { Drawn } from '../index.js';
+import type { Drawn, Kept, Technology } from '../index.js';
+import { deliverCandidates } from './candidates.js';
 import { deliver } from './deliver.js';
 import { exit, shown } from './fault.js';
 import { guarded } from './guard.js';
@@ -16,7 +17,7 @@ export async function prepareRescue(rescue: Rescue): Promise<void> {
   if (rescue.kept.options.wired !== false && unitsOf(rescue) <= UNITS_DRAWN_AT_ONCE) await import('paper');
 }
 
-function drawnAtOnce({ kept, technology }: Rescue, wired: boolean): Drawn {
+function drawnAtOnce(kept: Kept, technology: Technology, wired: boolean): Drawn {
   const alone = () => drawKept({ ...kept, options: { ...kept.options, wired: false } }, technology);
   if (!wired) return alone();
   try {
@@ -40,12 +41,20 @@ export async function afterInterrupt(io: Io, rescue: Rescue | undefined): Promis
   }
   const asked = rescue.kept.options.wired !== false;
   const small = unitsOf(rescue) <= UNITS_DRAWN_AT_ONCE;
-  const drawn = drawnAtOnce(rescue, asked && small);
-  const { name } = drawn.metrics;
+  const { technology, json, candidates } = rescue;
+  const name = candidates?.name ?? rescue.kept.floorplan.name ?? '';
   const folder = rescue.folder ?? name;
-  await deliver(guarded(io, rescue.inputs), drawn, { folder, json: rescue.json, bare: !small });
-  const undrawn = asked && drawn.polygons === undefined;
-  const floorplan = join(folder, `${name}.floorplan.json`);
+  const delivery = { folder, json, bare: !small };
+  let undrawn = false;
+  const draw = (kept: Kept): Drawn => {
+    const drawn = drawnAtOnce(kept, technology, asked && small);
+    undrawn ||= asked && drawn.polygons === undefined;
+    return drawn;
+  };
+  const machine = guarded(io, rescue.inputs);
+  if (candidates === undefined) await deliver(machine, draw(rescue.kept), delivery);
+  else await deliverCandidates(machine, candidates.kept, draw, { ...delivery, ...candidates });
+  const floorplan = join(folder, `${name}${candidates === undefined ? '' : '-1'}.floorplan.json`);
   const hint = `; to draw it: steelyard export ${floorplan} --to gds,polygons,svg,spice,lef --out ${folder}`;
   const what = undrawn ? `the best placement so far is saved, without wires${hint}` : 'the best so far is saved';
   await io.stderr(`steelyard: interrupted; ${shown(what)}\n`);

@@ -119,7 +119,7 @@ function hookupLines({ hookup, area_um2 }: Metrics): readonly Line[] {
 }
 
 /** "10 bits" for binary weights, else the weights. */
-function arrayInWords(capacitors: readonly Capacitor[]): string {
+export function arrayInWords(capacitors: readonly Capacitor[]): string {
   const weights = capacitors.filter(({ role }) => role === 'bit').map(({ weight }) => weight);
   return weights.every((weight, bit) => weight === 2 ** bit)
     ? `${weights.length} bits`

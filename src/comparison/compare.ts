@@ -8,6 +8,7 @@ import { placementSigma } from '../linearity/mismatch.js';
 import type { Floorplan } from '../spec/floorplan.js';
 import type { GradientMap } from '../spec/gradient-map.js';
 import type { Metrics } from '../spec/metrics.js';
+import { isBetter } from './dominance.js';
 import { comparedFigures } from './figures.js';
 import type { ComparedFigures } from './figures.js';
 import { sentencesOn } from './sentences.js';
@@ -122,17 +123,6 @@ function rounded<T>(value: T): T {
   if (Array.isArray(value)) return value.map(rounded) as T;
   if (typeof value !== 'object' || value === null) return value;
   return Object.fromEntries(Object.entries(value).map(([key, each]) => [key, rounded(each as unknown)])) as T;
-}
-
-function isBetter(a: ComparedFigures, b: ComparedFigures): boolean {
-  let better = false;
-  for (const { decides, of } of comparedFigures) {
-    const [mine, other] = [of(a), of(b)];
-    if (!decides || mine === undefined || other === undefined) continue;
-    if (mine > other) return false;
-    if (mine < other) better = true;
-  }
-  return better;
 }
 
 function bestOf(floorplans: readonly ComparedFigures[]): Record<string, string> {

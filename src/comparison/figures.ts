@@ -14,6 +14,13 @@ export interface ComparedFigures {
   readonly area_um2?: number;
 }
 
+/** The figures of a metrics file, each on its own pitch. */
+export const figuresOf = (metrics: Metrics, name: string): ComparedFigures => ({
+  ...metrics,
+  mismatch: metrics.mismatch ?? { placement: { inlSigma_perUnitSigma: NaN } },
+  name,
+});
+
 /** A figure that is less the better. Absent where a floorplan has none. */
 export interface ComparedFigure {
   readonly key: string;

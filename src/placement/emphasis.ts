@@ -63,6 +63,41 @@ export const weighings: Readonly<Record<Emphasis, Weighing>> = {
   },
 };
 
+/** Weights between those of two emphases: `share` of the way from the one to the other. */
+export interface Blend {
+  readonly towards: Emphasis;
+  readonly share: number;
+}
+
+export function weighingOf(emphasis: Emphasis, blend?: Blend): Weighing {
+  const from = weighings[emphasis];
+  if (blend === undefined) return from;
+  const { share } = blend;
+  const to = weighings[blend.towards];
+  const between = (a: number, b: number): number => a + share * (b - a);
+  return {
+    second: between(from.second, to.second),
+    limit: between(from.limit, to.limit),
+    mismatch: between(from.mismatch, to.mismatch),
+    mismatchLimit: between(from.mismatchLimit, to.mismatchLimit),
+    nets: between(from.nets, to.nets),
+    orientation: share < 0.5 ? from.orientation : to.orientation,
+    plans: share < 0.5 ? from.plans : to.plans,
+  };
+}
+
+/** What candidates that differ much are placed with, in turn: the emphases, then weights between them. */
+export const recipes: readonly { readonly emphasis: Emphasis; readonly blend?: Blend }[] = [
+  { emphasis: 'balanced' },
+  { emphasis: 'gradient' },
+  { emphasis: 'wiring' },
+  { emphasis: 'dispersed' },
+  { emphasis: 'balanced', blend: { towards: 'wiring', share: 0.4 } },
+  { emphasis: 'balanced', blend: { towards: 'dispersed', share: 0.4 } },
+  { emphasis: 'balanced', blend: { towards: 'wiring', share: 0.75 } },
+  { emphasis: 'balanced', blend: { towards: 'dispersed', share: 0.75 } },
+];
+
 /** How a start deals; `kernel` is the correlation between columns, made only where a plan asks for it. */
 export function arrangementOf({ plans }: Weighing, start: number, kernel: () => Dispersion['kernel']): Arrangement {
   const plan = plans[start % plans.length];
