@@ -30,7 +30,10 @@ describe('a command line that is none ends with 2, says what was found and what 
     ['place --bits 4 --rings 9', '--rings: found 9; wanted a whole number from 0 to 3'],
     ['place --bits 4 --balance on', '--balance: found "on"; wanted "off" ("on" is not available yet)'],
     ['place --bits 4 --hookup under-plate', '--hookup: found "under-plate"; wanted "channel" ("under-plate" is not'],
-    ['place --bits 4 --technology pp', '--technology: found "pp"; wanted a shipped template (framed-fingers, named-cell, parallel'],
+    [
+      'place --bits 4 --technology pp',
+      '--technology: found "pp"; wanted a shipped template (framed-fingers, named-cell, parallel',
+    ],
     ['pattern', 'pattern: found no --bits; wanted --bits <count>'],
     ['pattern spiral', 'pattern: found no --bits; wanted --bits <count>'],
     ['pattern spirl --bits 6', 'pattern: found "spirl"; wanted "spiral", the nearest known rule'],

@@ -1,3 +1,4 @@
+import { readFileSync, writeFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { checkPolygons } from '../../src/check/polygons.js';
 import { flatten } from '../../src/core/flatten.js';
@@ -155,6 +156,16 @@ it('every key of a template is documented, once for each kind of unit that has i
   for (const key of given) expect([key, keys.has(key)]).toEqual([key, true]);
   const undescribed = Object.entries(schema('technology').properties!).filter(([, part]) => !part.description);
   expect(undescribed.map(([key]) => key)).toEqual(['$schema', 'format', 'version']);
+});
+
+it('the table of keys beside the templates is the one that the schema gives', () => {
+  const file = 'templates/README.md';
+  const text = readFileSync(file, 'utf8');
+  const part = /(<!-- keys -->\n\n)[\s\S]*?(\n<!-- end of keys -->)/;
+  expect(text).toMatch(part);
+  const now = text.replace(part, (_, start: string, end: string) => start + technologyMarkdown() + end);
+  if (process.env.GOLDEN === 'update') writeFileSync(file, now);
+  else expect(text).toBe(now);
 });
 
 describe("a template of one's own, made from the printed one", () => {
