@@ -31,10 +31,12 @@ export function withUnitOf(technology: Technology, wanted_fF: number): Technolog
   const scaled = attempt(technology, unit, wanted_fF);
   const [problem] = problemsOf(scaled);
   if (problem === undefined) return scaled;
-  const reach = (far: number) => figure(Number(lastThatFits(technology, unit, far).toPrecision(4)));
+  // Rounded inwards, so that what is offered can be had.
+  const least = figure(Math.ceil(1000 * lastThatFits(technology, unit, unit.capacitance_fF / 1e4)) / 1000);
+  const most = figure(Math.floor(1000 * lastThatFits(technology, unit, unit.capacitance_fF * 1e4)) / 1000);
   throw new Infeasible(
     `A unit of ${wanted_fF} fF does not keep the rules of technology "${name}": ${problem}.`,
-    `Ask for ${reach(unit.capacitance_fF / 1e4)} to ${reach(unit.capacitance_fF * 1e4)} fF, or change the rule.`,
+    `Ask for ${least} to ${most} fF, or change the rule.`,
   );
 }
 

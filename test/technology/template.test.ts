@@ -249,11 +249,22 @@ describe('unit_fF', () => {
 
   it('is impossible outside the rules, with the rule and what they allow', () => {
     const refused = (name: string, unit_fF: number) => expect(() => resolved(name, unit_fF));
-    refused('parallel-plate', 2).toThrow(/2 fF does not keep .* 4 um2 or more.*Ask for 4.32 to 371.\d+ fF/);
+    refused('parallel-plate', 2).toThrow(/2 fF does not keep .* 4 um2 or more.*Ask for 4.3\d* to 371.\d+ fF/);
     refused('parallel-plate', 500).toThrow(/20 um at most, the maxWidth_um of "plate-metal"/);
     refused('framed-fingers', 0.1).toThrow(/0.4 um or more: the gap.*Ask for 0.28/);
     refused('named-cell', 20).toThrow(/the cell unit_capacitor of 25 fF.*name another cell/);
     for (const name of ['parallel-plate', 'named-cell']) refused(name, 2).toThrow(Infeasible);
     expect(resolved('named-cell', 25)).toEqual(template('named-cell'));
+  });
+
+  it.each(['parallel-plate', 'framed-fingers'])('%s: what is offered instead can be had', (name) => {
+    let message = '';
+    try {
+      resolved(name, 1e-3);
+    } catch (error) {
+      message = (error as Error).message;
+    }
+    const offered = /Ask for ([\d.]+) to ([\d.]+) fF/.exec(message)!.slice(1).map(Number);
+    for (const unit_fF of offered) expect(resolved(name, unit_fF).unit.capacitance_fF / unit_fF).toBeCloseTo(1, 2);
   });
 });
