@@ -8,7 +8,7 @@ export interface Work {
 
 const EFFORTS: Readonly<Record<Effort, Work & { readonly perUnit: number }>> = {
   quick: { starts: 1, workPerStart: 100_000, perUnit: 60 },
-  normal: { starts: 3, workPerStart: 600_000, perUnit: 150 },
+  normal: { starts: 3, workPerStart: 400_000, perUnit: 300 },
   thorough: { starts: 12, workPerStart: 2_000_000, perUnit: 500 },
 };
 
