@@ -1,5 +1,6 @@
 import type { Boxes } from '../core/boxes.js';
 import { boxesOverlap, DisjointSets, eachJoint } from '../core/components.js';
+import { InputError } from '../core/problem.js';
 import type { Layer } from '../spec/technology.js';
 import type { Drawing } from './drawing.js';
 import { conducts, crossedLayers } from './drawing.js';
@@ -31,6 +32,10 @@ export interface Conductors {
   readonly looseVias: readonly LooseVia[];
 }
 
+// A large drawing has some twenty joints a shape. Shapes heaped on each other have one a pair: memory ends before they do.
+const mostJoints = 20_000_000;
+
+/** @throws InputError for shapes that overlap each other more often than any drawing does. */
 export function conductorsOf(drawing: Drawing): Conductors {
   const { technology } = drawing;
   const layers = technology.layers.filter(conducts);
@@ -57,6 +62,10 @@ export function conductorsOf(drawing: Drawing): Conductors {
   const sets = new DisjointSets(count);
   const ends: number[] = [];
   const join = (a: number, b: number) => {
+    if (ends.length === 2 * mostJoints) {
+      const found = `shapes that meet each other in more than ${mostJoints} places`;
+      throw new InputError([{ pointer: '/structures', found, wanted: 'shapes that are not heaped on each other' }]);
+    }
     ends.push(a, b);
     sets.join(a, b);
   };

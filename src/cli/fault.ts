@@ -60,6 +60,17 @@ function reason(cause: unknown): string {
   return words === undefined ? code : `${words} (${code})`;
 }
 
+/** Said where the memory does not suffice, and what would. */
+export const outOfMemory = [
+  'steelyard: impossible as asked: the memory that Node may take does not suffice',
+  '  Give it more, as in: NODE_OPTIONS=--max-old-space-size=16000 steelyard ...',
+] as const;
+
+/** What the engine throws for something larger than it can hold. */
+export const isOutOfMemory = (error: unknown): boolean =>
+  error instanceof RangeError &&
+  /^(Array buffer allocation failed|Invalid string length|(Map|Set) maximum size exceeded)/.test(error.message);
+
 // Control characters, and the marks that turn the direction of text or break a line, would let a file's content write on the terminal.
 const hostile = /[\p{Cc}\p{Cf}\p{Zl}\p{Zp}\p{Cs}]/gu;
 

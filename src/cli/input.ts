@@ -58,14 +58,26 @@ export function inFile<T>(file: string, action: () => T): T {
   }
 }
 
-/** What a file says it is: the part of its top-level `format` after "steelyard/". Text that does not parse is judged by its first format. */
+// What is longer is not worth parsing a second time to learn its kind.
+const longestParsed = 2 ** 23;
+
+function parsedFormat(text: string): unknown {
+  const value: unknown = JSON.parse(text);
+  return typeof value === 'object' && value !== null && 'format' in value ? value.format : undefined;
+}
+
+const firstFormat = (text: string): string | undefined => /"format"\s*:\s*"([^"]*)"/.exec(text)?.[1];
+
+/**
+ * What a file says it is: the part of its top-level `format` after "steelyard/". Text that does not parse, or is very long, is judged by
+ * the first format in it.
+ */
 export function formatOf(text: string): string | undefined {
   let format: unknown;
   try {
-    const value: unknown = JSON.parse(text);
-    format = typeof value === 'object' && value !== null && 'format' in value ? value.format : undefined;
+    format = text.length > longestParsed ? firstFormat(text) : parsedFormat(text);
   } catch {
-    format = /"format"\s*:\s*"([^"]*)"/.exec(text)?.[1];
+    format = firstFormat(text);
   }
   return typeof format === 'string' && format.startsWith('steelyard/') ? format.slice('steelyard/'.length) : undefined;
 }

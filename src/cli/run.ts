@@ -1,5 +1,5 @@
 import { join } from 'node:path';
-import { FileError, UsageError, exit, problemLine, shown } from './fault.js';
+import { FileError, UsageError, exit, isOutOfMemory, outOfMemory, problemLine, shown } from './fault.js';
 import { guarded } from './guard.js';
 import type { Io } from './io.js';
 
@@ -18,6 +18,7 @@ async function verdict(error: unknown, debug: boolean): Promise<{ code: number; 
   if (error instanceof Infeasible) {
     return { code: exit.infeasible, lines: [`steelyard: impossible as asked: ${error.because}`, `  ${error.remedy}`] };
   }
+  if (isOutOfMemory(error)) return { code: exit.infeasible, lines: outOfMemory };
   const text = error instanceof Error ? `${error.name}: ${error.message}` : String(error);
   const stack = error instanceof Error ? (error.stack ?? text).split('\n') : [text];
   const hint = debug ? [] : ['  Run the same command with --debug for the place in the code.'];

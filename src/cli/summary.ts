@@ -129,7 +129,8 @@ export function arrayInWords(capacitors: readonly Capacitor[]): string {
 /** One finding a line: rule, layer, place, what was found against the limit, in words. */
 export const findingLines = (findings: readonly Finding[]): readonly string[] => {
   const rows = findings.map(({ rule, layer, at_um: [x, y], text }) => [rule, layer, `${x}, ${y}`, text]);
-  const widths = [0, 1, 2].map((column) => Math.max(...rows.map((row) => row[column]?.length ?? 0)));
+  // There may be more of them than a call takes arguments.
+  const widths = [0, 1, 2].map((column) => rows.reduce((most, row) => Math.max(most, row[column]?.length ?? 0), 0));
   return rows.map((row) => row.map((cell, column) => cell.padEnd(widths[column] ?? 0)).join('  '));
 };
 

@@ -1,5 +1,6 @@
+import { getHeapStatistics } from 'node:v8';
 import { MessageChannel, Worker } from 'node:worker_threads';
-import { FileError, exit } from './fault.js';
+import { FileError, exit, outOfMemory, shown } from './fault.js';
 import type { Bar, Io, Rescue } from './io.js';
 import { machine, onInterrupt } from './machine.js';
 import type { Answer, FileFault, FromWork, Surroundings, Written } from './messages.js';
@@ -11,16 +12,12 @@ const faultOf = (error: unknown): FileFault => {
 };
 
 /** What went wrong with the working thread itself: it ran out of memory, or it broke. */
-function broken(error: unknown): { code: number; text: string } {
+function broken(error: unknown): { code: number; lines: readonly string[] } {
   if (error instanceof Error && 'code' in error && error.code === 'ERR_WORKER_OUT_OF_MEMORY') {
-    const remedy = 'Give Node more, as in: NODE_OPTIONS=--max-old-space-size=16000 steelyard ...';
-    return {
-      code: exit.infeasible,
-      text: `impossible as asked: the memory that Node may take does not suffice\n  ${remedy}`,
-    };
+    return { code: exit.infeasible, lines: outOfMemory };
   }
   const words = error instanceof Error ? `${error.name}: ${error.message}` : String(error);
-  return { code: exit.defect, text: `a defect of this program, not of your input: ${words}` };
+  return { code: exit.defect, lines: [`steelyard: a defect of this program, not of your input: ${shown(words)}`] };
 }
 
 /** After this long a search is worth being ready to save it at once. */
@@ -75,6 +72,8 @@ function startWork(argv: readonly string[], io: Io) {
   const worker = new Worker(new URL('./command-thread.js', import.meta.url), {
     workerData: { argv, surroundings, answers: port2 },
     transferList: [port2],
+    // With a limit that is stated, running out of memory is an error of the thread instead of the end of the process.
+    resourceLimits: { maxOldGenerationSizeMb: Math.floor(getHeapStatistics().heap_size_limit / 2 ** 20) },
   });
   answers.unref();
 
@@ -132,9 +131,9 @@ function startWork(argv: readonly string[], io: Io) {
       if (state.over) return;
       state.over = true;
       state.bar?.stop();
-      const { code, text } = broken(error);
+      const { code, lines } = broken(error);
       void io
-        .stderr(`steelyard: ${text}\n`)
+        .stderr(lines.map((line) => `${line}\n`).join(''))
         .catch(() => undefined)
         .then(() => {
           resolve(code);

@@ -4,7 +4,15 @@ import { read } from './read.js';
 import type { Refusal } from './read.js';
 import type { Report } from './report.js';
 import { Examination } from './technology-examination.js';
-import { checkDevice, checkGrid, checkLayer, checkNames, checkRoles, checkVia } from './technology-rules.js';
+import {
+  checkDevice,
+  checkGrid,
+  checkLayer,
+  checkNames,
+  checkPinLayers,
+  checkRoles,
+  checkVia,
+} from './technology-rules.js';
 import { checkUnit } from './technology-unit.js';
 import type { Technology } from './technology.js';
 
@@ -16,6 +24,7 @@ export function checkTechnology(value: unknown, report: Report, at: string): voi
   for (const layer of examination.layers) checkLayer(examination, layer);
   for (const via of examination.vias) checkVia(examination, via);
   checkRoles(examination);
+  checkPinLayers(examination);
   checkUnit(examination);
   checkDevice(examination);
   const mismatch = record(examination.technology.mismatch);

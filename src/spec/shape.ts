@@ -7,14 +7,18 @@ import { schema } from './schema.js';
 import type { SchemaName } from './schema.js';
 import { counted, either, meant, quoted, shown } from './words.js';
 
-const compiled = new Map<SchemaName, ValidateFunction>();
+/** Longer texts have their first departure named alone: a list of millions of them would fill the memory. */
+const longest = 8_000_000;
+
+const compiled = new Map<string, ValidateFunction>();
 
 // Compiling takes some tens of milliseconds: only what is used, once.
-function validator(name: SchemaName): ValidateFunction {
-  let validate = compiled.get(name);
+function validator(name: SchemaName, allErrors: boolean): ValidateFunction {
+  const key = `${name} ${allErrors}`;
+  let validate = compiled.get(key);
   if (validate === undefined) {
-    const ajv = new Ajv2020({ allErrors: true, verbose: true, strict: true, allowUnionTypes: true });
-    compiled.set(name, (validate = ajv.compile(schema(name))));
+    const ajv = new Ajv2020({ allErrors, verbose: true, strict: true, allowUnionTypes: true });
+    compiled.set(key, (validate = ajv.compile(schema(name))));
   }
   return validate;
 }
@@ -94,7 +98,7 @@ function addError(report: Report, error: ErrorObject): void {
  * @param settled pointers whose problem is in the report already: nothing more is said about what they hold
  */
 export function checkShape(name: SchemaName, value: unknown, report: Report, settled: readonly string[]): void {
-  const validate = validator(name);
+  const validate = validator(name, report.source.text.length <= longest);
   if (validate(value)) return;
   for (const error of validate.errors ?? []) {
     // The only alternatives that no key decides, bits or weights, have their own rule.

@@ -197,6 +197,22 @@ export function checkRoles(examination: Examination): void {
   joined('strap', 'spine');
 }
 
+/** `VSS`, the bits and `TOP` end in pins, each on the layer of pins that belongs to its metal. */
+export function checkPinLayers(examination: Examination): void {
+  const { layers, roles, report, at } = examination;
+  const pins = layers.filter(({ entry }) => entry.kind === 'pin');
+  // A layer of pins that belongs to nothing is wrong by itself; whose it was meant to be is anybody's guess.
+  if (pins.some(({ entry }) => !conducting.includes(word(examination.layer(entry.of)?.entry.kind) ?? ''))) return;
+  const bearers = { bottomPlate: 'VSS', trunk: 'the bits', spine: 'TOP' } as const;
+  for (const [role, nets] of Object.entries(bearers)) {
+    const metal = word(roles[role]);
+    if (metal === undefined || !layers.some(({ name }) => name === metal)) continue;
+    if (pins.some(({ entry }) => entry.of === metal)) continue;
+    const found = `no layer of kind "pin" of ${quoted(metal)}`;
+    report.add(`${at}/layers`, found, `one: the pins of ${nets} are drawn on it`);
+  }
+}
+
 export function checkDevice({ technology, report, at }: Examination): void {
   const device = record(technology.device);
   const parameters = Object.keys(record(device.parameters));

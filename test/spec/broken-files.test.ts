@@ -231,6 +231,16 @@ const technologies: Case[] = [
   [['layers', 4, 'of'], undefined, ['/layers/4 | no key "of" in a layer of kind "pin" | "of": the name of its metal']],
   [['layers', 4, 'of'], 'boundary', ['/layers/4/of | a layer of kind "outline" | a layer of kind "metal" or "plate"']],
   [
+    ['layers', 4, 'of'],
+    'plate-metal',
+    ['/layers | no layer of kind "pin" of "lower-metal" | one: the pins of the bits are drawn on it'],
+  ],
+  [
+    ['layers', 6, 'kind'],
+    'label',
+    ['/layers | no layer of kind "pin" of "upper-metal" | one: the pins of TOP are drawn on it'],
+  ],
+  [
     ['layers', 0, 'of'],
     'top-plate',
     ['/layers/0/of | "of" in a layer of kind "metal" | it only in layers of kind "pin" or "label"'],
