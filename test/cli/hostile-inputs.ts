@@ -221,6 +221,23 @@ function nudge(root: unknown, dice: Dice): void {
   }
 }
 
+/** Rules and sizes of a technology stretched, on its grid: what reaches the drawing. */
+function stretch(root: unknown, dice: Dice): void {
+  const technology = ((root as Tree).technology ?? root) as Tree;
+  const { layers, vias, unit, grid_nm } = technology;
+  const step = (2 * Number(grid_nm)) / 1000 || 0.01;
+  const lengths = placesIn({ layers, vias, unit }).filter(
+    ({ parent, key }) => typeof parent[key] === 'number' && !['layer', 'datatype'].includes(String(key)),
+  );
+  if (lengths.length === 0) return;
+  const { parent, key } = dice.of(lengths);
+  if (dice.next() < 0.1) delete parent[key];
+  else {
+    const length = Number(parent[key]) * dice.of([0.25, 0.5, 0.8, 1.2, 2, 4, 10, 100]);
+    parent[key] = Number((Math.round(length / step) * step).toFixed(4));
+  }
+}
+
 const encoder = new TextEncoder();
 
 /** Changes to a file's bytes, whatever they mean. */
@@ -266,7 +283,7 @@ export function damaged(text: string, dice: Dice): Uint8Array {
   }
   if (root === undefined || dice.next() < 0.2) bytes = encoder.encode(text);
   else {
-    const change = dice.next() < 0.5 ? nudge : bend;
+    const change = dice.of([bend, bend, nudge, nudge, stretch, stretch]);
     for (let changes = 1 + dice.below(3); changes > 0; changes--) change(root, dice);
     bytes = encoder.encode(JSON.stringify(root, null, dice.next() < 0.5 ? 1 : undefined) ?? '');
     if (dice.next() < 0.9) return bytes;

@@ -169,11 +169,7 @@ const lists: Case[] = [
 ];
 
 const technologies: Case[] = [
-  [
-    ['unit', 'kind'],
-    'spiral',
-    ['/unit/kind | "spiral" | "parallel-plate", "framed-fingers" or "named-cell"'],
-  ],
+  [['unit', 'kind'], 'spiral', ['/unit/kind | "spiral" | "parallel-plate", "framed-fingers" or "named-cell"']],
   [
     ['unit'],
     { kind: 'named-cell', cell: 'mine' },
