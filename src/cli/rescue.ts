@@ -8,7 +8,7 @@ import { guarded } from './guard.js';
 import type { Io, Rescue } from './io.js';
 
 /** Arrays of up to so many units are still wired and drawn after Ctrl-C; of larger ones that takes seconds, and nobody wants to wait. */
-export const UNITS_DRAWN_AT_ONCE = 1023;
+const UNITS_DRAWN_AT_ONCE = 1023;
 
 const unitsOf = ({ kept }: Rescue): number => kept.floorplan.capacitors.reduce((sum, { units }) => sum + units, 0);
 

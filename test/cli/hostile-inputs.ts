@@ -27,7 +27,7 @@ export class Dice {
 }
 
 /** What a stranger may write where a name, a text or a path is wanted. */
-export const wicked = [
+const wicked = [
   '',
   ' ',
   '..',
