@@ -149,6 +149,11 @@ export function drawingRules(technology: Technology): Rules {
     const wide = lower.wideFrom_um !== undefined && most >= nm(lower.wideFrom_um);
     const apart = wide ? Math.max(lineSpacing, length(lower.wideSpacing_um)) : lineSpacing;
     const half = grid * Math.floor(Math.min(most / 2, plate[0] / 2 + wideSpacing - apart) / grid);
+    if (2 * half < trackWidth)
+      stop(
+        `The strip that shields a unit keeps ${inMicrometres(apart)} from the tracks beside it, which leaves it ${inMicrometres(Math.max(0, 2 * half))} wide; its metal needs ${inMicrometres(trackWidth)}.`,
+        'Lower minSpacing_um or wideSpacing_um of the trunks\' layer, or take units without a shield ("shield": false).',
+      );
     strip = { half, spacing: apart };
   }
   const tracksPerShield = Math.floor((wideFrom - 1 + trackSpacing) / (trackWidth + trackSpacing));
