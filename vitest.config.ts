@@ -6,7 +6,7 @@ export default defineConfig(({ mode }) => ({
     include: ['test/**/*.test.ts'],
     exclude: ['test/bench/**'],
     env: mode === 'golden' ? { GOLDEN: 'update' } : {},
-    testTimeout: 60_000,
+    testTimeout: 240_000,
     hookTimeout: 60_000,
     pool: 'forks',
     maxWorkers: 2,
