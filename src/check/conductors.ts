@@ -32,8 +32,8 @@ export interface Conductors {
   readonly looseVias: readonly LooseVia[];
 }
 
-// A large drawing has some twenty joints a shape. Shapes heaped on each other have one a pair: memory ends before they do.
-const mostJoints = 20_000_000;
+// Drawings have one or two joints a shape. Shapes heaped on each other have one a pair: memory would end before they do.
+const mostJoints = (shapes: number): number => Math.min(4_000_000 + 16 * shapes, 50_000_000);
 
 /** @throws InputError for shapes that overlap each other more often than any drawing does. */
 export function conductorsOf(drawing: Drawing): Conductors {
@@ -61,9 +61,10 @@ export function conductorsOf(drawing: Drawing): Conductors {
 
   const sets = new DisjointSets(count);
   const ends: number[] = [];
+  const most = mostJoints(count);
   const join = (a: number, b: number) => {
-    if (ends.length === 2 * mostJoints) {
-      const found = `shapes that meet each other in more than ${mostJoints} places`;
+    if (ends.length === 2 * most) {
+      const found = `${count} shapes that meet each other in more than ${most} places`;
       throw new InputError([{ pointer: '/structures', found, wanted: 'shapes that are not heaped on each other' }]);
     }
     ends.push(a, b);
