@@ -126,7 +126,8 @@ export function machine(): Io {
     stdoutIsTerminal: stdout.isTTY,
     stderrIsTerminal: stderr.isTTY,
     columns: stdout.isTTY && stdout.columns > 0 ? stdout.columns : 80,
-    colour: (env.NO_COLOR ?? '') === '' && env.TERM !== 'dumb' && ((env.FORCE_COLOR ?? '') !== '' || stdout.isTTY),
+    // isTTY is there only where it is true.
+    colour: (env.NO_COLOR ?? '') === '' && env.TERM !== 'dumb' && ((env.FORCE_COLOR ?? '') !== '' || 'isTTY' in stdout),
     progressBar,
   };
 }
