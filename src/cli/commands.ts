@@ -59,7 +59,10 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
       .helpOption('--help', 'print this help')
       .addHelpText('after', `\nExample:\n${(examples[name] ?? []).map((line) => `  ${line}`).join('\n')}`);
 
-  const placing = command('place', 'Places an array, wires and draws it, and writes its files.')
+  const placing = command(
+    'place',
+    'Places an array, wires and draws it, and writes its files. Ctrl-C saves the best placement so far (of more than 256 units without wires).',
+  )
     .argument('[FILE]', 'array file; or a floorplan file: its cells are kept and wired anew')
     .option('--out <folder>', "where the files go (default: a folder of the array's name)");
   for (const { flag, help, values, standard } of settings) {

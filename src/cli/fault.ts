@@ -44,6 +44,7 @@ const reasons: Readonly<Record<string, string>> = {
   ENOTDIR: 'a part of its path is no folder',
   EEXIST: 'a part of its path is no folder',
   ENOSPC: 'no space left',
+  EFBIG: 'it is larger than a file may be here',
   EDQUOT: 'the quota is used up',
   EROFS: 'the file system is read-only',
   ENAMETOOLONG: 'its name is too long',

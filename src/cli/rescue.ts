@@ -3,12 +3,12 @@ import { Infeasible, drawKept } from '../index.js';
 import type { Drawn, Kept, Technology } from '../index.js';
 import { deliverCandidates } from './candidates.js';
 import { deliver } from './deliver.js';
-import { exit, shown } from './fault.js';
+import { shown } from './fault.js';
 import { guarded } from './guard.js';
 import type { Io, Rescue } from './io.js';
 
-/** Arrays of up to so many units are still wired and drawn after Ctrl-C; of larger ones that takes seconds, and nobody wants to wait. */
-const UNITS_DRAWN_AT_ONCE = 1023;
+/** Arrays of up to so many units (8 bits) are still wired and drawn after Ctrl-C; with larger ones whoever pressed it would have to wait. */
+const UNITS_DRAWN_AT_ONCE = 256;
 
 const unitsOf = ({ kept }: Rescue): number => kept.floorplan.capacitors.reduce((sum, { units }) => sum + units, 0);
 
@@ -31,14 +31,9 @@ function drawnAtOnce(kept: Kept, technology: Technology, wired: boolean): Drawn 
 
 /**
  * Saves what a run that Ctrl-C has ended put by: a complete set of one floorplan; of a large array its placement alone.
- * @returns the exit code
  * @throws FileError where that cannot be written, UsageError where it would take the place of an input.
  */
-export async function afterInterrupt(io: Io, rescue: Rescue | undefined): Promise<number> {
-  if (rescue === undefined) {
-    await io.stderr('steelyard: interrupted before there was anything to save: nothing written\n');
-    return exit.interrupted;
-  }
+export async function save(io: Io, rescue: Rescue): Promise<void> {
   const asked = rescue.kept.options.wired !== false;
   const small = unitsOf(rescue) <= UNITS_DRAWN_AT_ONCE;
   const { technology, json, candidates } = rescue;
@@ -58,5 +53,4 @@ export async function afterInterrupt(io: Io, rescue: Rescue | undefined): Promis
   const hint = `; to draw it: steelyard export ${floorplan} --to gds,polygons,svg,spice,lef --out ${folder}`;
   const what = undrawn ? `the best placement so far is saved, without wires${hint}` : 'the best so far is saved';
   await io.stderr(`steelyard: interrupted; ${shown(what)}\n`);
-  return exit.interrupted;
 }

@@ -1,6 +1,7 @@
 import { getHeapStatistics } from 'node:v8';
 import { MessageChannel, Worker } from 'node:worker_threads';
 import { FileError, exit, outOfMemory, shown } from './fault.js';
+import { interrupted } from './interrupted.js';
 import type { Bar, Io, Rescue } from './io.js';
 import { machine, onInterrupt } from './machine.js';
 import type { Answer, FileFault, FromWork, Surroundings, Written } from './messages.js';
@@ -21,7 +22,7 @@ function broken(error: unknown): { code: number; lines: readonly string[] } {
 }
 
 /** After this long a search is worth being ready to save it at once. */
-const READY_AFTER_ms = 1000;
+const READY_AFTER_ms = 300;
 const prepare = (rescue: Rescue): void => {
   // Should loading fail, saving itself will say so.
   void import('./rescue.js').then(({ prepareRescue }) => prepareRescue(rescue)).catch(() => undefined);
@@ -49,10 +50,7 @@ export async function supervised(argv: readonly string[]): Promise<number> {
   work.state.over = true;
   void work.worker.terminate();
   work.state.bar?.stop();
-  return reporting(io, argv.includes('--debug'), async () => {
-    const { afterInterrupt } = await import('./rescue.js');
-    return afterInterrupt(io, work.state.rescue);
-  });
+  return reporting(io, argv.includes('--debug'), () => interrupted(io, work.state.rescue));
 }
 
 interface State {

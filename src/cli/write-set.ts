@@ -1,3 +1,4 @@
+import { randomBytes } from 'node:crypto';
 import {
   chmodSync,
   closeSync,
@@ -99,16 +100,18 @@ function isAlive(pid: number): boolean {
   }
 }
 
-const temporaryName = /^\.(.+)\.(\d+)-\d+\.(?:new|old)$/;
+const temporaryName = /^\.(.+)\.((\d+)-[0-9a-f]{8})-\d+\.(?:new|old)$/;
 
 /** Takes away what a run that was killed has left beside these files. */
-function sweep(targets: readonly string[]): void {
+function sweep(targets: readonly string[], own: string): void {
   for (const folder of new Set(targets.map((target) => dirname(target)))) {
     const ours = new Set(targets.filter((target) => dirname(target) === folder).map((target) => basename(target)));
     quietly(() => {
       for (const name of readdirSync(folder)) {
-        const [, of = '', pid = ''] = temporaryName.exec(name) ?? [];
-        if (ours.has(of) && !isAlive(Number(pid))) quietly(() => rmSync(join(folder, name)));
+        const [, of = '', run = '', pid = ''] = temporaryName.exec(name) ?? [];
+        // A number may have been given to another process since, to this one for instance.
+        const left = Number(pid) === process.pid ? run !== own : !isAlive(Number(pid));
+        if (ours.has(of) && left) quietly(() => rmSync(join(folder, name)));
       }
     });
   }
@@ -124,6 +127,7 @@ function sweep(targets: readonly string[]): void {
  * @throws FileError naming the first file that could not be written or removed; everything is as it was then.
  */
 export function writeSet(files: readonly OutputFile[], stale: readonly string[] = []): readonly string[] {
+  const run = `${process.pid}-${randomBytes(4).toString('hex')}`;
   const created: string[] = [];
   const staged: Staged[] = [];
   let at = '';
@@ -132,7 +136,7 @@ export function writeSet(files: readonly OutputFile[], stale: readonly string[] 
       at = path;
       makeFolder(dirname(path), created);
       const { target, mode } = targetOf(path);
-      const temporary = join(dirname(target), `.${basename(target)}.${process.pid}-${index}.new`);
+      const temporary = join(dirname(target), `.${basename(target)}.${run}-${index}.new`);
       staged.push({ path, target, temporary, placed: false });
       writeTemporary(temporary, content, mode);
     }
@@ -146,12 +150,12 @@ export function writeSet(files: readonly OutputFile[], stale: readonly string[] 
     const removed = stale.filter(isThere);
     for (const [index, path] of removed.entries()) {
       at = path;
-      const former = join(dirname(path), `.${basename(path)}.${process.pid}-${files.length + index}.old`);
+      const former = join(dirname(path), `.${basename(path)}.${run}-${files.length + index}.old`);
       renameSync(path, former);
       staged.push({ path, target: path, temporary: former, former, placed: false });
     }
     for (const { former } of staged) if (former !== undefined) quietly(() => rmSync(former));
-    sweep([...staged.map(({ target }) => target), ...stale]);
+    sweep([...staged.map(({ target }) => target), ...stale], run);
     return removed;
   } catch (cause) {
     for (const file of staged.reverse()) {

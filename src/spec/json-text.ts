@@ -6,6 +6,9 @@
 /** Deeper than any format here. */
 export const deepest = 64;
 
+/** Lists, objects and keys of a text that still fits the memory when it is parsed: more than any drawing here has. */
+const mostParts = 12_000_000;
+
 const quote = 34;
 const comma = 44;
 const colon = 58;
@@ -107,15 +110,20 @@ interface Frame {
   index: number;
 }
 
-/**
- * Calls `repeated` with the place and pointer of every key that its object has already.
- * @returns where the nesting exceeds `deepest`, else -1
- */
-export function survey(text: string, repeated: (offset: number, pointer: string, key: string) => void): number {
+/** What stands against parsing a text: it is nested too deeply (from this offset on), or made of too many parts. */
+interface Survey {
+  readonly tooDeepAt?: number;
+  readonly tooManyParts?: number;
+}
+
+/** Looks over a text before it is parsed. Calls `repeated` with the place and pointer of every key that its object has already. */
+export function survey(text: string, repeated: (offset: number, pointer: string, key: string) => void): Survey {
   const frames: Frame[] = [];
   let top: Frame | undefined;
-  return walk(text, {
+  let parts = 0;
+  const tooDeepAt = walk(text, {
     open(isObject) {
+      parts++;
       top = { isObject, keys: new Set(), last: '', index: -1 };
       frames.push(top);
     },
@@ -124,7 +132,7 @@ export function survey(text: string, repeated: (offset: number, pointer: string,
       top = frames.at(-1);
     },
     key(start, end) {
-      if (top === undefined) return;
+      if (top === undefined || ++parts > mostParts) return;
       top.last = keyOf(text, start, end);
       if (top.keys.has(top.last)) {
         const pointer = frames.map((f) => step(f.isObject ? f.last : f.index)).join('');
@@ -136,6 +144,8 @@ export function survey(text: string, repeated: (offset: number, pointer: string,
       if (top !== undefined) top.index++;
     },
   });
+  if (tooDeepAt !== -1) return { tooDeepAt };
+  return parts > mostParts ? { tooManyParts: mostParts } : {};
 }
 
 interface Place {

@@ -64,11 +64,15 @@ function parseText(text: string, report: Report): unknown {
     report.add('', 'an empty file', 'a JSON object');
     return undefined;
   }
-  const tooDeep = survey(text, (offset, pointer, key) => {
+  const { tooDeepAt, tooManyParts } = survey(text, (offset, pointer, key) => {
     report.add(pointer, `key ${quoted(key)} once more`, 'each key once in its object', offset);
   });
-  if (tooDeep !== -1) {
-    report.add('', `more than ${deepest} levels of nesting`, `${deepest} levels at most`, tooDeep);
+  if (tooDeepAt !== undefined) {
+    report.add('', `more than ${deepest} levels of nesting`, `${deepest} levels at most`, tooDeepAt);
+    return undefined;
+  }
+  if (tooManyParts !== undefined) {
+    report.add('', `more than ${tooManyParts} lists, objects and keys`, `${tooManyParts} at most`);
     return undefined;
   }
   try {

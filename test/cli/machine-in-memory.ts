@@ -4,7 +4,7 @@ import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { FileError } from '../../src/cli/fault.js';
 import type { Bar, Io, OutputFile, Rescue, Thread, ThreadListener, ToSearch } from '../../src/cli/io.js';
-import { afterInterrupt } from '../../src/cli/rescue.js';
+import { interrupted } from '../../src/cli/interrupted.js';
 import { reporting, run } from '../../src/cli/run.js';
 import { beginStart } from '../../src/index.js';
 
@@ -143,13 +143,13 @@ export class MachineInMemory implements Io {
 
   runWords(argv: readonly string[]): Promise<number> {
     this.#rescue = undefined;
-    const interrupted = new Promise<void>((resolve) => {
+    const stopped = new Promise<void>((resolve) => {
       this.#interrupt = resolve;
     }).then(() => {
       this.barStopped = true;
-      return reporting(this, false, () => afterInterrupt(this, this.#rescue));
+      return reporting(this, false, () => interrupted(this, this.#rescue));
     });
-    return Promise.race([run(argv, this), interrupted]);
+    return Promise.race([run(argv, this), stopped]);
   }
 
   /** Runs a command line given as one text, words parted by blanks. */

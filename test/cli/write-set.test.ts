@@ -1,3 +1,4 @@
+import { spawnSync } from 'node:child_process';
 import {
   chmodSync,
   existsSync,
@@ -86,6 +87,41 @@ describe('a set of files', () => {
     expect(text('a.txt')).toBe('old');
     expect(existsSync(at('n.txt'))).toBe(false);
     expect(readdirSync(folder)).toEqual(['a.txt']);
+  });
+
+  it('takes away what is stale when it is in place, and says what that was', () => {
+    for (const name of ['a.txt', 'b.txt', 'c.txt']) writeFileSync(at(name), 'old');
+    mkdirSync(at('d.txt'));
+    const removed = writeSet([{ path: at('a.txt'), content: 'new' }], [at('b.txt'), at('d.txt'), at('none.txt')]);
+    expect(removed).toEqual([at('b.txt')]);
+    expect(readdirSync(folder).sort()).toEqual(['a.txt', 'c.txt', 'd.txt']);
+  });
+
+  it('takes away nothing when it fails', () => {
+    writeFileSync(at('b.txt'), 'old');
+    mkdirSync(at('a.txt'));
+    expect(() => writeSet([{ path: at('a.txt'), content: 'new' }], [at('b.txt')])).toThrow(FileError);
+    expect(text('b.txt')).toBe('old');
+    expect(readdirSync(folder).sort()).toEqual(['a.txt', 'b.txt']);
+  });
+
+  it('sweeps up what a process that is no more has left of it, and nothing else', () => {
+    const gone = spawnSync(process.execPath, ['-e', '']).pid;
+    const others = [
+      `.a.txt.${process.ppid}-0123abcd-0.new`,
+      `.z.txt.${gone}-0123abcd-0.new`,
+      '.a.txt.new',
+      '.a.txt.bak',
+    ];
+    // A process number may be given again, to ours for instance.
+    const left = [
+      `.a.txt.${gone}-0123abcd-0.new`,
+      `.b.txt.${gone}-0123abcd-1.old`,
+      `.a.txt.${process.pid}-0123abcd-0.new`,
+    ];
+    for (const name of [...others, ...left]) writeFileSync(at(name), 'left');
+    writeSet([{ path: at('a.txt'), content: 'new' }], [at('b.txt')]);
+    expect(readdirSync(folder).sort()).toEqual([...others, 'a.txt'].sort());
   });
 
   it('says why: no folder on the way, a name too long, a thing that is no file', () => {

@@ -51,9 +51,10 @@ describe('places in a text', () => {
 
   it('where the nesting goes too deep', () => {
     const never = (): never => expect.unreachable();
-    expect(survey('['.repeat(deepest) + ']'.repeat(deepest), never)).toBe(-1);
-    expect(survey('['.repeat(deepest + 1), never)).toBe(deepest);
-    expect(survey(`["${'['.repeat(1000)}\\"${'['.repeat(1000)}"]`, never)).toBe(-1);
+    expect(survey('['.repeat(deepest) + ']'.repeat(deepest), never)).toEqual({});
+    expect(survey('['.repeat(deepest + 1), never)).toEqual({ tooDeepAt: deepest });
+    expect(survey(`["${'['.repeat(1000)}\\"${'['.repeat(1000)}"]`, never)).toEqual({});
+    expect(survey(`[${'[],'.repeat(12_000_000)}0]`, never)).toEqual({ tooManyParts: 12_000_000 });
   });
 
   it('in any text at all, valid or not', () => {
