@@ -29,6 +29,9 @@ function drawnAtOnce(kept: Kept, technology: Technology, wired: boolean): Drawn 
   }
 }
 
+/** A word as a shell takes it whole, whatever is in it. */
+const inShell = (word: string): string => (/^[\w./][\w./-]*$/.test(word) ? word : `'${word.replaceAll("'", "'\\''")}'`);
+
 /**
  * Saves what a run that Ctrl-C has ended put by: a complete set of one floorplan; of a large array its placement alone.
  * @throws FileError where that cannot be written, UsageError where it would take the place of an input.
@@ -50,7 +53,7 @@ export async function save(io: Io, rescue: Rescue): Promise<void> {
   if (candidates === undefined) await deliver(machine, draw(rescue.kept), delivery);
   else await deliverCandidates(machine, candidates.kept, draw, { ...delivery, ...candidates });
   const floorplan = join(folder, `${name}${candidates === undefined ? '' : '-1'}.floorplan.json`);
-  const hint = `; to draw it: steelyard export ${floorplan} --to gds,polygons,svg,spice,lef --out ${folder}`;
+  const hint = `; to draw it: steelyard export ${inShell(floorplan)} --to gds,polygons,svg,spice,lef --out ${inShell(folder)}`;
   const what = undrawn ? `the best placement so far is saved, without wires${hint}` : 'the best so far is saved';
   await io.stderr(`steelyard: interrupted; ${shown(what)}\n`);
 }
