@@ -7,6 +7,7 @@ import type { Schema } from './schema-parts.js';
 import { schema } from './schema.js';
 import type { SchemaName } from './schema.js';
 import type { Technology } from './technology.js';
+import { harmlessText } from './words.js';
 
 /** Values up to this many characters stand on one line. */
 const lineWidth = 155;
@@ -36,7 +37,8 @@ function numberText(n: number): string {
 const entriesOf = (value: Keyed): [string, unknown][] => Object.entries(value).filter(([, v]) => v !== undefined);
 
 function scalar(value: unknown): string {
-  return typeof value === 'number' ? numberText(value) : JSON.stringify(value);
+  // What does not print is escaped: a file may be shown on a terminal.
+  return typeof value === 'number' ? numberText(value) : harmlessText(JSON.stringify(value));
 }
 
 function flat(value: unknown): string {

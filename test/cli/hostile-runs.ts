@@ -45,6 +45,7 @@ const plainName = /^[A-Za-z][A-Za-z0-9_]{0,23}\.[a-z.-]+$/;
 export interface Outcome {
   readonly code: number;
   readonly ms: number;
+  readonly err: string;
   /** What should not have happened. */
   readonly faults: readonly string[];
 }
@@ -76,5 +77,5 @@ export async function outcomeOf({ argv, files }: HostileRun): Promise<Outcome> {
     expect(!unprintable.test(content.replaceAll('\t', '')), `unprintable characters in ${path}`);
     expect(!/<script|<!--|<!\[CDATA|\.include/i.test(content), `somebody's markup in ${path}`);
   }
-  return { code, ms, faults };
+  return { code, ms, err: machine.err, faults };
 }

@@ -4,7 +4,6 @@ import { findingLines } from '../../src/cli/summary.js';
 import type { Finding } from '../../src/index.js';
 import { changed } from '../spec/kiln4.js';
 import { hostileRun, outcomeOf, soundFiles } from './hostile-runs.js';
-import { MachineInMemory } from './machine-in-memory.js';
 
 let files: ReadonlyMap<string, string>;
 beforeAll(async () => {
@@ -51,16 +50,16 @@ describe('what once did harm', () => {
   });
 
   it.each(fixtures)('$name does none', async (fixture) => {
-    const machine = new MachineInMemory();
-    for (const [path, text] of files) machine.put(path, text);
+    const given = new Map(files);
     if (fixture.changed !== undefined) {
       const { file, at, value } = fixture.changed;
-      machine.put(file, changed(files.get(file) ?? '', at, value));
+      given.set(file, changed(files.get(file) ?? '', at, value));
     }
-    if (fixture.heap !== undefined) machine.put('p.json', heap(fixture.heap));
-    expect(await machine.runWords(fixture.argv)).toBe(fixture.code);
-    expect(machine.err).toMatch(new RegExp(fixture.says));
-    if (fixture.code > 1) expect(machine.written).toEqual([]);
+    if (fixture.heap !== undefined) given.set('p.json', heap(fixture.heap));
+    const bytes = new Map([...given].map(([path, text]) => [path, new TextEncoder().encode(text)]));
+    const { code, err, faults } = await outcomeOf({ argv: fixture.argv, files: bytes });
+    expect({ code, faults }).toEqual({ code: fixture.code, faults: [] });
+    expect(err).toMatch(new RegExp(fixture.says));
   });
 
   it('more findings than a call takes arguments become a table', () => {
