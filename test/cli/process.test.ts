@@ -154,6 +154,9 @@ async function interrupted(bits: number) {
 }
 
 describe('Ctrl-C', () => {
+  /** What is saved of 12 bits, too large to be drawn in the time that an interrupted run has. */
+  const placementAlone = ['o/cdac12.floorplan.json', 'o/cdac12.metrics.json'];
+
   it(
     'in a run of 8 bits gives 130 and a whole set of files, which the check accepts',
     { timeout: 180_000 },
@@ -174,19 +177,20 @@ describe('Ctrl-C', () => {
     const { code, err } = await interrupted(12);
     expect(code).toBe(130);
     expect(err).toMatch(/^steelyard: interrupted; the best placement so far is saved, without wires; to draw it:/);
-    expect(filesBelow(folder)).toEqual(['o/cdac12.floorplan.json', 'o/cdac12.metrics.json']);
+    expect(filesBelow(folder)).toEqual(placementAlone);
     expect(JSON.parse(text('o/cdac12.metrics.json')).status).toBe('interrupted');
     const checked = await finished(folder, ['check', 'o/cdac12.floorplan.json']);
     expect(checked).toMatchObject({ code: 0, out: 'no findings\n' });
   });
 
-  it('twice ends at once; what is there is whole or not there', { timeout: 180_000 }, async () => {
+  it('twice ends at once; what is there is the whole set or nothing', { timeout: 180_000 }, async () => {
     const { child, ended } = await searching(12);
     child.kill('SIGINT');
     await pause(400);
     child.kill('SIGINT');
     const { code, signal } = await ended;
     expect(code === 130 || signal === 'SIGINT').toBe(true);
-    expect([0, endings.length]).toContain(filesBelow(folder).length);
+    const saved = filesBelow(folder);
+    if (saved.length > 0) expect(saved).toEqual(placementAlone);
   });
 });
