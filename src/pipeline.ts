@@ -11,10 +11,8 @@ import { um } from './core/units.js';
 import { drawPolygons } from './geometry/draw.js';
 import { columnNets, columnNetsTerm } from './hookup/column-nets.js';
 import { hookupFigures } from './hookup/figures.js';
-import { misfit } from './hookup/misfit.js';
-import { type Placed, type Plan, planHookup } from './hookup/plan.js';
-import { drawingRules, pitchOf, type Rules } from './hookup/rules.js';
-import { type Hookup, layWires } from './hookup/wires.js';
+import type { Placed } from './hookup/plan.js';
+import { drawingRules, pitchOf, planOf, ringColumn, type StyledRules, tracksNeeded, wire } from './hookup/style.js';
 import { analyseGradient, type GradientFigures } from './linearity/analyse-gradient.js';
 import { firstOrderTerm, secondOrderTerm } from './linearity/cost-terms.js';
 import { columnCorrelation, comparisonLength, correlationOf } from './linearity/correlation.js';
@@ -117,7 +115,7 @@ interface Setting {
   readonly capacitors: readonly Capacitor[];
   /** Those with units inside the core. */
   readonly inCore: readonly Capacitor[];
-  readonly rules: Rules;
+  readonly rules: StyledRules;
   /** The pitch asked for, where the drawing does not decide it. */
   readonly pitch?: Pitch;
   readonly wired: boolean;
@@ -428,8 +426,7 @@ function* roundsOf(setting: Setting): Generator<readonly Stage[], Stage, void> {
   const near = probes.filter(({ least }) => least <= emphasis.orientation * bySecondOrder.least);
   const contenders = emphasis.orientation === 1 ? [bySecondOrder] : near;
   let { grid, relative } = bySecondOrder;
-  const needed = (of: Stage) =>
-    wired ? planHookup(placedOf(setting, of), spec.tracksPerChannel).channels[0].length : of.tracks;
+  const needed = (of: Stage) => (wired ? tracksNeeded(rules, placedOf(setting, of), spec.tracksPerChannel) : of.tracks);
   const scouts = contenders.map(({ grid, relative }) =>
     stage({ ...short, grid, weights: 'own', relative, share: 0.1 / contenders.length }),
   );
@@ -472,16 +469,20 @@ function placedOf(setting: Setting, { grid, search }: Stage): Placed {
   const cells = Array.from({ length: grid.rows }, (_, row) =>
     Array.from({ length: grid.columns }, (_, column) => name(row * grid.columns + column)),
   );
-  return withRingUnits(setting.capacitors, cells, setting.spec.rings);
+  return withRingUnits(setting.rules, setting.capacitors, cells, setting.spec.rings);
 }
 
 /** Puts what has no cell into the ring row below the core: at its left end, or where a free track lies beside it if more rings follow. */
-function withRingUnits(capacitors: readonly Capacitor[], cells: readonly (readonly string[])[], rings: number): Placed {
+function withRingUnits(
+  rules: StyledRules,
+  capacitors: readonly Capacitor[],
+  cells: readonly (readonly string[])[],
+  rings: number,
+): Placed {
   const outside = capacitors.filter(({ name }) => !cells.some((row) => row.includes(name)));
   const bare: Placed = { cells, capacitors, ringUnits: [], rings };
   if (outside.length === 0) return bare;
-  const free = rings > 1 ? planHookup(bare).channels.findIndex((list) => list.includes('VSS')) : 0;
-  const column = Math.min(Math.max(free, 0), cells[0].length - 1);
+  const column = ringColumn(rules, bare);
   const ringUnits = outside.map(({ name }): RingUnit => ({ capacitor: name, row: cells.length, column }));
   return { ...bare, ringUnits };
 }
@@ -554,31 +555,20 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
   const rings = array?.rings ?? ringsToReach(technology);
   const placed: Placed = floorplan.ringUnits
     ? { cells, capacitors, ringUnits: floorplan.ringUnits, rings }
-    : withRingUnits(capacitors, cells, rings);
-  let plan: Plan | undefined;
-  let buses: readonly string[] | undefined;
-  if (keepHookup && floorplan.hookup) {
-    const reason = misfit(placed, floorplan.hookup);
-    if (reason === undefined) {
-      plan = floorplan.hookup as Plan;
-      buses = floorplan.hookup.buses.filter((net) => net !== 'VSS');
-    } else notes.push(`The floorplan's hookup does not fit its cells (${reason}); it was routed anew.`);
-  }
-  if (plan === undefined) {
-    plan = planHookup(placed, array?.tracksPerChannel);
-    const width = plan.channels[0].length;
-    if (tracksAtLeast !== undefined && width < tracksAtLeast) plan = planHookup(placed, tracksAtLeast);
-  }
-  const hookup: Hookup = layWires(rules, placed, plan, buses);
+    : withRingUnits(rules, capacitors, cells, rings);
+  const { hookup, unfit } = wire(rules, placed, {
+    ...(keepHookup && floorplan.hookup && { given: floorplan.hookup }),
+    ...(array?.tracksPerChannel !== undefined && { tracks: array.tracksPerChannel }),
+    ...(tracksAtLeast !== undefined && { atLeast: tracksAtLeast }),
+  });
+  if (unfit !== undefined) notes.push(`The floorplan's hookup does not fit its cells (${unfit}); it was routed anew.`);
   const { frame } = hookup;
-  const polygons = measureOnly
-    ? undefined
-    : drawPolygons(name, technology, rules, placed, hookup, array?.fillTop ?? 'TOP');
+  const polygons = measureOnly ? undefined : drawPolygons(name, technology, placed, hookup, array?.fillTop ?? 'TOP');
   const core: Core = { rows: frame.rows, columns: frame.columns, pitch_um: [um(frame.pitch[0]), um(frame.pitch[1])] };
   const drawnAs = {
     ...(array && { array: { ...array, tracksPerChannel: frame.tracks } }),
     ...(placed.ringUnits.length > 0 && { ringUnits: placed.ringUnits }),
-    hookup: { sides: plan.sides, channels: plan.channels, buses: ['VSS', ...hookup.buses] },
+    hookup: planOf(hookup),
   };
   const area_um2 = figure(um(frame.width) * um(frame.height));
   return finish(core, drawnAs, { hookup: hookupFigures(placed, hookup), area_um2 }, polygons);

@@ -1,7 +1,7 @@
 import type { Point } from '../core/layout.js';
 import { rectangle } from '../core/rectangle.js';
 import { nm } from '../core/units.js';
-import type { Rules } from '../hookup/rules.js';
+import type { ChannelRules } from '../hookup/channel-rules.js';
 import type { FramedFingersUnit, Technology } from '../spec/technology.js';
 import { fingerSizes } from '../spec/unit-geometry.js';
 import type { Sheet } from './sheet.js';
@@ -17,7 +17,12 @@ import type { Sheet } from './sheet.js';
  *     | +-----------+   |
  *     +-----------------+
  */
-export function drawFramedFingers(sheet: Sheet, technology: Technology, unit: FramedFingersUnit, rules: Rules): void {
+export function drawFramedFingers(
+  sheet: Sheet,
+  technology: Technology,
+  unit: FramedFingersUnit,
+  rules: ChannelRules,
+): void {
   const { roles } = technology;
   const sizes = fingerSizes(unit);
   const [px, py] = [sizes.frame[0] / 2, sizes.frame[1] / 2];

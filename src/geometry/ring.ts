@@ -30,6 +30,7 @@ export function drawRing(sheet: Sheet, technology: Technology, frame: Frame, cel
   const half = rules.trackWidth / 2;
   const pad = rules.padSize / 2;
   const [px, py] = [rules.plate[0] / 2, rules.plate[1] / 2];
+  const low = rules.plateLow;
   const last = rows - 1 + rings;
   const right = columns - 1 + rings;
   const landing = w / 2;
@@ -39,7 +40,7 @@ export function drawRing(sheet: Sheet, technology: Technology, frame: Frame, cel
     // Upwards from every ring row above the core, downwards from every one below: unit to unit, the outermost to the frame.
     for (let row = -1; row >= -rings; row--) {
       const y = frame.rowY(row);
-      const next = row === -rings ? height - w : frame.rowY(row - 1) - py;
+      const next = row === -rings ? height - w : frame.rowY(row - 1) - low;
       sheet.add(plateMetal, rectangle(x - half, y + py, x + half, next), inFrame);
       const padNext = row === -rings ? height : frame.rowY(row - 1) + rules.pad[1] + pad;
       sheet.add(roles.strap, rectangle(x - pad, y + rules.pad[1] - pad, x + pad, padNext), inFrame);
@@ -49,7 +50,7 @@ export function drawRing(sheet: Sheet, technology: Technology, frame: Frame, cel
       if (cellAt(row, column) !== '-') continue;
       const y = frame.rowY(row);
       const next = row === last ? frameLow + w : frame.rowY(row + 1) + py;
-      sheet.add(plateMetal, rectangle(x - half, next, x + half, y - py), inFrame);
+      sheet.add(plateMetal, rectangle(x - half, next, x + half, y - low), inFrame);
       const padNext = row === last ? frameLow : frame.rowY(row + 1) + rules.pad[1] - pad;
       sheet.add(roles.strap, rectangle(x - pad, padNext, x + pad, y + rules.pad[1] + pad), inFrame);
       if (row === last) sheet.via(via, rules.viaFrame.size, x, frameLow + landing, 'VSS');

@@ -1,5 +1,5 @@
 import type { Rectangle } from '../core/rectangle.js';
-import type { Hookup } from '../hookup/wires.js';
+import type { ChannelHookup } from '../hookup/channel-wires.js';
 
 /** Pieces of the `VSS` shield on the plates' metal in one channel, and where they join the `VSS` lines below. */
 export interface Shield {
@@ -18,7 +18,7 @@ export interface Shield {
  * Slabs that touch hang together. Such a group is drawn if it touches the frame or lies over a `VSS` line long enough for a via; one that
  * has neither would float and is left out. At the width that counts as wide the shield is slit between two tracks.
  */
-export function channelShield(hookup: Hookup, channel: number): Shield {
+export function channelShield(hookup: ChannelHookup, channel: number): Shield {
   const { frame } = hookup;
   const { rules, tracks } = frame;
   const pieces: Rectangle[] = [];

@@ -1,7 +1,7 @@
 import { rectangle } from '../core/rectangle.js';
-import type { Rules } from '../hookup/rules.js';
 import { viaBetween } from '../hookup/rules.js';
-import type { Hookup } from '../hookup/wires.js';
+import type { ChannelHookup } from '../hookup/channel-wires.js';
+import type { ChannelRules } from '../hookup/channel-rules.js';
 import type { Technology } from '../spec/technology.js';
 import type { Sheet } from './sheet.js';
 
@@ -18,8 +18,8 @@ import type { Sheet } from './sheet.js';
 export function drawStrips(
   sheet: Sheet,
   technology: Technology,
-  { frame, ringLines }: Hookup,
-  { half, spacing }: NonNullable<Rules['strip']>,
+  { frame, ringLines }: ChannelHookup,
+  { half, spacing }: NonNullable<ChannelRules['strip']>,
 ): void {
   const { rules, rings, columns, rows, frameLow, height } = frame;
   const { roles } = technology;

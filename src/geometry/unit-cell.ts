@@ -1,6 +1,7 @@
 import type { Structure } from '../core/layout.js';
 import { rectangle } from '../core/rectangle.js';
 import { nm } from '../core/units.js';
+import type { ChannelRules } from '../hookup/channel-rules.js';
 import type { Rules } from '../hookup/rules.js';
 import { viaBetween } from '../hookup/rules.js';
 import type { ParallelPlateUnit, Technology } from '../spec/technology.js';
@@ -12,7 +13,7 @@ import { Sheet } from './sheet.js';
  * The unit capacitor around 0,0, and the named cell that it refers to where there is one. Every unit is this one, dummies too, in one
  * orientation, so that all surroundings match.
  */
-export function unitStructures(name: string, technology: Technology, rules: Rules): [Structure, ...Structure[]] {
+export function unitStructures(name: string, technology: Technology, rules: ChannelRules): [Structure, ...Structure[]] {
   const { unit, roles } = technology;
   const sheet = new Sheet(technology);
   if (unit.kind === 'parallel-plate') drawPlates(sheet, technology, unit, rules);
@@ -36,7 +37,7 @@ export function unitStructures(name: string, technology: Technology, rules: Rule
  *        |  +-----+  +-+
  *        +-----------+
  */
-function drawPlates(sheet: Sheet, { roles }: Technology, unit: ParallelPlateUnit, rules: Rules): void {
+function drawPlates(sheet: Sheet, { roles }: Technology, unit: ParallelPlateUnit, rules: ChannelRules): void {
   const [px, py] = [rules.plate[0] / 2, rules.plate[1] / 2];
   const [length, height] = rules.tab;
   const level = rules.tabLevel;

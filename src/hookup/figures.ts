@@ -2,7 +2,8 @@ import { um } from '../core/units.js';
 import type { HookupFigures } from '../spec/metrics.js';
 import { columnNets } from './column-nets.js';
 import type { Placed } from './plan.js';
-import type { Hookup, Wire } from './wires.js';
+import type { Hookup } from './style.js';
+import type { Wire } from './wires.js';
 
 /** Counts what the wires of the bits come to; definitions: README, "Figures". Fill, termination and `VSS` do not count. */
 export function hookupFigures(placed: Placed, hookup: Hookup): HookupFigures {

@@ -1,19 +1,23 @@
 import { Infeasible } from '../core/problem.js';
 import { nm } from '../core/units.js';
 import type { Layer, Technology, Via } from '../spec/technology.js';
-import { tabLevelsApart, trackWidthOf } from '../spec/tracks.js';
+import { trackWidthOf } from '../spec/tracks.js';
 import { isWideUnit } from '../spec/unit-geometry.js';
 import { unitBody } from './unit-body.js';
 
-/** What the channel style needs of a technology, in whole nanometres on its grid. Widths are even multiples of the grid, so that centre lines lie on it. */
+/**
+ * What a drawing needs of a technology whatever the style, in whole nanometres on its grid. Widths are even multiples of the grid, so that
+ * centre lines lie on it.
+ */
 export interface Rules {
   readonly grid: number;
-  /** All that a unit has of the bottom terminal's metal, its tabs aside: bottom plate, frame, or the landing around a named cell. */
+  /** All that a unit has of the bottom terminal's metal, its tabs and strip aside: bottom plate, frame, or the landing around a named cell. */
   readonly plate: readonly [width: number, height: number];
+  /** From the unit's middle down to its lower edge: half the plate, and the landing strip where it has one. */
+  readonly plateLow: number;
   /** The least that is solid at the plate's edge. */
   readonly plateRim: number;
-  /** Tab on the bottom plate: how far it stands out, how tall it is. The left one sits `tabLevel` above the middle, the right one below. */
-  readonly tab: readonly [length: number, height: number];
+  /** A unit is met from the left at this level above its middle, from the right as far below. */
   readonly tabLevel: number;
   /** Where the pad that leads from the top plate to the straps has its middle. */
   readonly pad: readonly [x: number, y: number];
@@ -26,7 +30,7 @@ export interface Rules {
   readonly trackSpacing: number;
   /** Spacing on the straps' metal. */
   readonly upperSpacing: number;
-  /** End-to-end spacing of two wires on one track. */
+  /** Spacing on the trunks' metal. */
   readonly lineSpacing: number;
   /** Between two drops, whose vias may stand side by side on one bus. */
   readonly dropSpacing: number;
@@ -35,18 +39,18 @@ export interface Rules {
   /** The middle of a strap from the middle of its column: 0 unless the pad needs the room. */
   readonly strapX: number;
   readonly frameWidth: number;
-  /** Between the frame's bottom side and the plates above it: a track and its spacing fit there. */
+  /** Between the frame's bottom side and the plates above it. */
   readonly bottomGap: number;
-  readonly minPlateWidth: number;
-  /** The most tracks under one piece of shield before it would count as wide metal. */
-  readonly tracksPerShield: number;
-  /** Half the width of the `VSS` strip under a column, and the room that it keeps; absent without a shield. */
-  readonly strip?: { readonly half: number; readonly spacing: number };
   readonly viaTrack: { readonly size: number; readonly landing: number; readonly spacing: number };
   readonly viaFrame: { readonly size: number; readonly landing: number };
 }
 
-const layerOf = (technology: Technology, name: string): Layer => {
+export const inMicrometres = (value: number): string => `${value / 1000} um`;
+
+/** A length of a technology, 0 where it states none. */
+export const lengthOf = (value: number | undefined): number => nm(value ?? 0);
+
+export const layerOf = (technology: Technology, name: string): Layer => {
   const layer = technology.layers.find((candidate) => candidate.name === name);
   if (layer === undefined) throw new Infeasible(`The technology has no layer ${name}.`, 'Name a layer that it has.');
   return layer;
@@ -61,16 +65,13 @@ export function viaBetween(technology: Technology, lower: string, upper: string)
 }
 
 /**
- * Derives the dimensions of a channel-style drawing from a technology's rules.
+ * Derives the dimensions that both styles share. What a style changes of them: room beside and below the plates, where a unit is met.
  * @throws Infeasible where the rules leave no room: which rule, and what would make it possible.
  */
-export function drawingRules(technology: Technology): Rules {
-  const { unit, roles } = technology;
-  if (technology.hookup !== 'channel')
-    throw new Infeasible(`The technology is made for the ${technology.hookup} hookup.`, 'Use a channel technology.');
+export function commonRules(technology: Technology): Rules {
+  const { roles } = technology;
   const grid = technology.grid_nm;
   const even = (length: number) => Math.ceil(length / (2 * grid)) * 2 * grid;
-  const length = (value: number | undefined) => nm(value ?? 0);
 
   const lower = layerOf(technology, roles.trunk);
   const plateMetal = layerOf(technology, roles.bottomPlate);
@@ -80,53 +81,31 @@ export function drawingRules(technology: Technology): Rules {
   const toTop = roles.topPlate === roles.strap ? undefined : viaBetween(technology, roles.topPlate, roles.strap);
   const toUpper = viaBetween(technology, roles.bottomPlate, roles.strap);
 
-  const spacing = length(plateMetal.minSpacing_um);
-  const minPlateWidth = length(plateMetal.minWidth_um);
-  const wideFrom = plateMetal.wideFrom_um === undefined ? Infinity : nm(plateMetal.wideFrom_um);
-
+  const spacing = lengthOf(plateMetal.minSpacing_um);
   const landing = (via: Via) => even(nm(via.size_um) + 2 * nm(via.enclosure_um));
   const viaTrack = { size: nm(toPlate.size_um), landing: landing(toPlate), spacing: nm(toPlate.spacing_um) };
   const viaFrame = { size: nm(toUpper.size_um), landing: landing(toUpper) };
-  const lineSpacing = length(lower.minSpacing_um);
+  const lineSpacing = lengthOf(lower.minSpacing_um);
   const trackWidth = trackWidthOf(technology);
   const viaApart = nm(toPlate.spacing_um) - (trackWidth - viaTrack.size);
   const trackSpacing = Math.max(spacing, lineSpacing, viaApart);
   const dropSpacing = Math.max(lineSpacing, viaApart);
-  const upperSpacing = length(upper.minSpacing_um);
-  const padSize = even(Math.max(toTop ? landing(toTop) : 0, viaFrame.landing, length(upper.minWidth_um)));
-  const frameWidth = even(Math.max(minPlateWidth, viaFrame.landing, trackWidth));
+  const upperSpacing = lengthOf(upper.minSpacing_um);
+  const padSize = even(Math.max(toTop ? landing(toTop) : 0, viaFrame.landing, lengthOf(upper.minWidth_um)));
+  const frameWidth = even(Math.max(lengthOf(plateMetal.minWidth_um), viaFrame.landing, trackWidth));
 
-  const isWide = isWideUnit(technology);
-  const metalSpacing = isWide ? Math.max(spacing, length(plateMetal.wideSpacing_um)) : spacing;
-  const body = unitBody(technology, { frameWidth, clearance: Math.max(spacing, length(plateMetal.wideSpacing_um)) });
-  const { plate, pad, tabLength } = body;
-  // A shield stands off the tabs by the plain spacing, so it may pass them.
-  const wideSpacing = Math.max(metalSpacing, tabLength + spacing);
+  const wideSpacing = Math.max(spacing, lengthOf(plateMetal.wideSpacing_um));
+  const metalSpacing = isWideUnit(technology) ? wideSpacing : spacing;
+  const { plate, pad, rim, topInset } = unitBody(technology, { frameWidth, clearance: wideSpacing });
   const rowGap = even(
-    Math.max(metalSpacing, length(upper.minWidth_um), length(topPlateLayer.minSpacing_um) - 2 * body.topInset),
+    Math.max(metalSpacing, lengthOf(upper.minWidth_um), lengthOf(topPlateLayer.minSpacing_um) - 2 * topInset),
   );
   const strapWidth = rowGap;
   const strapX = Math.min(0, grid * Math.floor((pad[0] - padSize / 2 - strapWidth / 2 - upperSpacing) / grid));
-  const bottomGap = even(Math.max(trackWidth + spacing, metalSpacing));
-  const tabLevel = body.tabLevel ?? grid * Math.floor((plate[1] + rowGap) / 4 / grid);
-  // A stub taller than its tab would leave a notch beside the plate.
-  const tab = [tabLength, trackWidth] as const;
 
   const stop = (because: string, remedy: string): never => {
     throw new Infeasible(because, remedy);
   };
-  const inMicrometres = (value: number) => `${value / 1000} um`;
-  const levels = tabLevelsApart(technology);
-  if (2 * tabLevel < levels || plate[1] + rowGap - 2 * tabLevel < levels)
-    stop(
-      `The two tab levels stand ${inMicrometres(2 * tabLevel)} apart and ${inMicrometres(plate[1] + rowGap - 2 * tabLevel)} from the next row's; a stub, its spacing and a shield between them need ${inMicrometres(levels)}.`,
-      'Change tabLevel_um or take a larger plate.',
-    );
-  if (2 * tabLevel + trackWidth > plate[1])
-    stop(
-      `A stub ${inMicrometres(trackWidth)} tall at a level of ${inMicrometres(tabLevel)} reaches past the edge of its unit.`,
-      'Lower tabLevel_um or take a larger unit.',
-    );
   if (strapX - strapWidth / 2 < -plate[0] / 2)
     stop(
       `A strap ${inMicrometres(strapWidth)} wide, left of the top terminal by ${inMicrometres(upperSpacing)}, does not lie over its column.`,
@@ -143,34 +122,15 @@ export function drawingRules(technology: Technology): Rules {
       `The pad of the top terminal stands ${inMicrometres(beyondPad)} from what runs between the rows; ${inMicrometres(upperSpacing)} are needed on its metal.`,
       'Move terminals.top to the middle or take a larger unit.',
     );
-  let strip: Rules['strip'];
-  if (unit.kind === 'framed-fingers' && unit.shield === true) {
-    const most = Math.min(plate[0], length(lower.maxWidth_um) || Infinity);
-    const wide = lower.wideFrom_um !== undefined && most >= nm(lower.wideFrom_um);
-    const apart = wide ? Math.max(lineSpacing, length(lower.wideSpacing_um)) : lineSpacing;
-    const half = grid * Math.floor(Math.min(most / 2, plate[0] / 2 + wideSpacing - apart) / grid);
-    if (2 * half < trackWidth)
-      stop(
-        `The strip that shields a unit keeps ${inMicrometres(apart)} from the tracks beside it, which leaves it ${inMicrometres(Math.max(0, 2 * half))} wide; its metal needs ${inMicrometres(trackWidth)}.`,
-        'Lower minSpacing_um or wideSpacing_um of the trunks\' layer, or take units without a shield ("shield": false).',
-      );
-    strip = { half, spacing: apart };
-  }
-  const tracksPerShield = Math.floor((wideFrom - 1 + trackSpacing) / (trackWidth + trackSpacing));
-  if (tracksPerShield < 1)
-    stop(
-      `A shield one track wide (${inMicrometres(trackWidth)}) already counts as wide metal.`,
-      'Raise wideFrom_um of the plate metal or narrow the track.',
-    );
   return {
     grid,
     plate,
-    plateRim: body.rim,
-    tab,
-    tabLevel,
+    plateLow: plate[1] / 2,
+    plateRim: rim,
+    tabLevel: 0,
     pad,
     padSize,
-    wideSpacing,
+    wideSpacing: metalSpacing,
     spacing,
     trackWidth,
     trackSpacing,
@@ -181,17 +141,8 @@ export function drawingRules(technology: Technology): Rules {
     strapWidth,
     strapX,
     frameWidth,
-    bottomGap,
-    minPlateWidth,
-    tracksPerShield: Math.min(tracksPerShield, 1000),
-    ...(strip && { strip }),
+    bottomGap: even(metalSpacing),
     viaTrack,
     viaFrame,
   };
 }
-
-/** Column and row pitch in nanometres for a number of tracks per channel. */
-export const pitchOf = (rules: Rules, tracks: number): [x: number, y: number] => [
-  rules.plate[0] + 2 * rules.wideSpacing + tracks * rules.trackWidth + (tracks - 1) * rules.trackSpacing,
-  rules.plate[1] + rules.rowGap,
-];

@@ -1,5 +1,5 @@
 import { nm } from '../core/units.js';
-import type { Technology } from '../spec/technology.js';
+import type { Technology, Unit } from '../spec/technology.js';
 import { cellOutline, fingerSizes } from '../spec/unit-geometry.js';
 
 /** What of a unit the hookup goes by, in nanometres about the unit's middle. */
@@ -7,9 +7,6 @@ export interface UnitBody {
   readonly plate: readonly [width: number, height: number];
   /** The least that is solid at the plate's edge. */
   readonly rim: number;
-  readonly tabLength: number;
-  /** Absent where the hookup may choose it. */
-  readonly tabLevel?: number;
   /** Where the top terminal is met from above. */
   readonly pad: readonly [x: number, y: number];
   /** By how much the top plate's edge lies within the plate's. */
@@ -30,34 +27,27 @@ export function unitBody(
     case 'parallel-plate': {
       const inset = nm(unit.plateEnclosure_um);
       const plate = [nm(unit.topPlate_um[0]) + 2 * inset, nm(unit.topPlate_um[1]) + 2 * inset] as const;
-      return {
-        plate,
-        rim: Math.min(...plate),
-        tabLength: nm(unit.tab_um[0]),
-        tabLevel: nm(unit.tabLevel_um),
-        pad,
-        topInset: inset,
-      };
+      return { plate, rim: Math.min(...plate), pad, topInset: inset };
     }
-    case 'framed-fingers':
-      return {
-        plate: fingerSizes(unit).frame,
-        rim: nm(unit.frameWidth_um),
-        tabLength: nm(unit.tab_um[0]),
-        tabLevel: nm(unit.tabLevel_um),
-        pad,
-        topInset: nm(unit.frameWidth_um) + nm(unit.gap_um),
-      };
+    case 'framed-fingers': {
+      const wall = nm(unit.frameWidth_um);
+      return { plate: fingerSizes(unit).frame, rim: wall, pad, topInset: wall + nm(unit.gap_um) };
+    }
     case 'named-cell': {
       const { x0, y0, x1, y1 } = cellOutline(unit);
       const around = 2 * (room.clearance + room.frameWidth);
       return {
         plate: [x1 - x0 + around, y1 - y0 + around],
         rim: room.frameWidth,
-        tabLength: 0,
         pad: [pad[0] - (x0 + x1) / 2, pad[1] - (y0 + y1) / 2],
         topInset: room.clearance + room.frameWidth,
       };
     }
   }
+}
+
+/** How far a unit's tabs stand out, and at which level; without one where the hookup may choose it. */
+export function unitTabs(unit: Unit): { readonly length: number; readonly level?: number } {
+  if (unit.kind === 'named-cell') return { length: 0 };
+  return { length: nm(unit.tab_um[0]), level: nm(unit.tabLevel_um) };
 }

@@ -4,7 +4,7 @@ import { checkPolygons } from '../../src/check/polygons.js';
 import { flatten } from '../../src/core/flatten.js';
 import { Infeasible } from '../../src/core/problem.js';
 import { writeStream } from '../../src/export/gdsii.js';
-import { drawingRules } from '../../src/hookup/rules.js';
+import { drawingRules } from '../../src/hookup/style.js';
 import { parseTechnology } from '../../src/spec/parse-technology.js';
 import { resolveArray } from '../../src/spec/resolve.js';
 import { technologyMarkdown } from '../../src/spec/schema-technology.js';
