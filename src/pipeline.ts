@@ -19,7 +19,7 @@ import { columnCorrelation, comparisonLength, correlationOf } from './linearity/
 import { mismatchTerm } from './linearity/mismatch-term.js';
 import { secondOrderInl } from './linearity/exact-inl.js';
 import { lowerBound, type PlacementClass } from './linearity/lower-bound.js';
-import { mismatchFigures } from './linearity/mismatch.js';
+import { analyseMismatch } from './linearity/mismatch.js';
 import { type LeastOfReflected, provedClass } from './linearity/proved.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
 import { ringsToReach, unitMismatch } from './spec/options.js';
@@ -535,7 +535,7 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       core,
       ...(placement?.status && { status: placement.status }),
       gradient: metricsGradient,
-      mismatch: mismatchFigures({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology)),
+      mismatch: analyseMismatch({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology)).figures,
       ...figures,
     };
     const findings = [...checkFloorplan(complete), ...(polygons ? checkPolygons(polygons) : [])];

@@ -4,14 +4,14 @@ import { comparisonLength, correlationOf } from './correlation.js';
 import { GRAIN, pairSums } from './covariance.js';
 import { worstOverSigns, worstOverSteps } from './worst-variance.js';
 
-interface Placed {
+export interface Placed {
   readonly core: Core;
   readonly capacitors: readonly Capacitor[];
   /** Rows of capacitor names from the top; what is no bit's name (dummies, the termination) counts for nothing. */
   readonly cells: readonly (readonly string[])[];
 }
 
-interface Mismatch {
+export interface Mismatch {
   /** Relative standard deviation of one unit, of the part that it has for itself. */
   readonly localSigma_percent: number;
   /** The same of the part that neighbours share: correlated by exp(-distance / correlationLength_um), 0: with nobody. */
@@ -19,11 +19,21 @@ interface Mismatch {
   readonly correlationLength_um: number;
 }
 
-/** Standard deviations over all codes, at most; `dnl` absent beyond 14 capacitors that are not straight binary. */
+/**
+ * Standard deviations over all codes, at most; `dnl` absent beyond 14 capacitors that are not straight binary. `endPoint`: the covariance
+ * (LSB^2) of what each bit has besides gain, bits by ascending weight.
+ */
 interface Sigma {
   readonly inl: number;
   readonly dnl?: number;
   readonly inlLeastSquares: number;
+  readonly endPoint: readonly Float64Array[];
+}
+
+/** Figures of random mismatch, and the covariance that they come from (see `Sigma`). */
+export interface MismatchAnalysis {
+  readonly figures: MismatchFigures;
+  readonly endPoint: readonly Float64Array[];
 }
 
 /**
@@ -31,20 +41,21 @@ interface Sigma {
  * (INL) from the least-squares line; and the same for units of variance 1, wholly correlated, 0.9 at a distance of one pitch, which judges
  * the placement alone. In the linear model (errors small against the unit), exact over all codes.
  */
-export function mismatchFigures(placed: Placed, mismatch: Mismatch): MismatchFigures {
+export function analyseMismatch(placed: Placed, mismatch: Mismatch): MismatchAnalysis {
   const { localSigma_percent, correlatedSigma_percent, correlationLength_um } = mismatch;
-  const { inl, dnl, inlLeastSquares } = worstSigma(
+  const { inl, dnl, inlLeastSquares, endPoint } = worstSigma(
     placed,
     localSigma_percent / 100,
     correlatedSigma_percent / 100,
     correlationLength_um,
   );
-  return {
+  const figures: MismatchFigures = {
     inlSigma_lsb: inl,
     ...(dnl !== undefined && { dnlSigma_lsb: dnl }),
     inlSigmaLeastSquares_lsb: inlLeastSquares,
     placement: placementSigma(placed, comparisonLength(placed.core.pitch_um)),
   };
+  return { figures, endPoint };
 }
 
 /** Sigma INL and DNL of the worst code per sigma of one unit, for units of variance 1 that are wholly correlated over `length_um`. */
@@ -75,6 +86,7 @@ function worstSigma({ core, capacitors, cells }: Placed, local: number, correlat
     inl: Math.sqrt(Math.max(0, worstOverSigns(endPoint))),
     ...(dnl !== undefined && { dnl: Math.sqrt(dnl) }),
     inlLeastSquares: Math.sqrt(Math.max(0, worstOverSigns(left(weight)))),
+    endPoint,
   };
 }
 

@@ -35,15 +35,30 @@ export function worstOverSigns(matrix: Matrix): number {
   return form(matrix, worst) / 4;
 }
 
+/** Called for a step from subset `from` of the bits to subset `to`, bit k being 1 << k, with the variance of the difference. */
+type StepVisit = (from: number, to: number, variance: number) => void;
+
 /**
  * The largest v'Mv over the steps v between neighbouring nominal levels (see `stepsOf`).
  * @returns undefined where there are no steps.
  */
 export function worstOverSteps(weight: readonly number[], matrix: Matrix): number | undefined {
+  let most = 0;
+  const some = eachStep(weight, matrix, (_, __, variance) => {
+    if (variance > most) most = variance;
+  });
+  return some ? most : undefined;
+}
+
+/**
+ * Visits every step v between neighbouring nominal levels (see `stepsOf`), with v'Mv.
+ * @returns false where there are no steps.
+ */
+export function eachStep(weight: readonly number[], matrix: Matrix, visit: StepVisit): boolean {
   const count = weight.length;
   const units = weight.map((_, k) => weight.map((__, l) => (k === l ? 1 : 0)));
   const steps = stepsOf(weight, units);
-  if (!steps) return undefined;
+  if (!steps) return false;
   const { points, groups } = steps;
   // (b - a)'M(b - a) = a'Ma + b'Mb - 2 a'Mb, and a has nothing but zeros and ones.
   const on = Int32Array.from(points[0], (_, p) => points.reduce((set, point, k) => set | (point[p] << k), 0));
@@ -58,19 +73,16 @@ export function worstOverSteps(weight: readonly number[], matrix: Matrix): numbe
   const low = new Float64Array(1 << half);
   const high = new Float64Array(1 << (count - half));
   const lowest = (1 << half) - 1;
-  let most = 0;
   for (let group = 0; group < groups.length; group += 4) {
     for (let b = groups[group + 2]; b < groups[group + 3]; b++) {
       const across = matrix.map((row) => row.reduce((sum, entry, k) => sum + entry * points[k][b], 0));
       fillSums(low, across, 0);
       fillSums(high, across, half);
-      for (let a = groups[group]; a < groups[group + 1]; a++) {
-        const variance = own[a] + own[b] - 2 * (low[on[a] & lowest] + high[on[a] >> half]);
-        if (variance > most) most = variance;
-      }
+      for (let a = groups[group]; a < groups[group + 1]; a++)
+        visit(on[a], on[b], own[a] + own[b] - 2 * (low[on[a] & lowest] + high[on[a] >> half]));
     }
   }
-  return most;
+  return true;
 }
 
 /** sums[set] = sum of `values` over the members of the set, counted from `first`. */

@@ -5,7 +5,7 @@ import { describe, expect, it } from 'vitest';
 import { Random } from '../../src/core/random.js';
 import { comparisonLength, correlationOf } from '../../src/linearity/correlation.js';
 import { GRAIN, pairSums } from '../../src/linearity/covariance.js';
-import { mismatchFigures, placementSigma } from '../../src/linearity/mismatch.js';
+import { analyseMismatch, placementSigma } from '../../src/linearity/mismatch.js';
 import { anyPlan, anyWeights, binaryWeights, bitsOf, codes, isOn, plan } from './brute-force.js';
 import type { Plan } from './brute-force.js';
 
@@ -116,7 +116,7 @@ describe('sigma of the worst code', () => {
   ])('is that of all codes one by one, for %s', (_, weights) => {
     fc.assert(
       fc.property(anyPlan(weights), mismatch, (given, m) => {
-        const figures = mismatchFigures(given, m);
+        const figures = analyseMismatch(given, m).figures;
         const local = m.localSigma_percent / 100;
         const own = bruteForce(
           given,
@@ -144,9 +144,9 @@ describe('sigma of the worst code', () => {
           cells: Array.from({ length: columns }, (_, row) => given.cells.map((line) => line[columns - 1 - row])),
         };
         const m = { localSigma_percent: 0.1, correlatedSigma_percent: 0.2, correlationLength_um: 9 };
-        const figures = mismatchFigures(given, m);
-        expect(mismatchFigures(mirrored, m)).toEqual(figures);
-        expect(mismatchFigures(turned, m)).toEqual(figures);
+        const figures = analyseMismatch(given, m).figures;
+        expect(analyseMismatch(mirrored, m).figures).toEqual(figures);
+        expect(analyseMismatch(turned, m).figures).toEqual(figures);
       }),
     );
   });
@@ -154,11 +154,11 @@ describe('sigma of the worst code', () => {
   it('has no DNL beyond 14 capacitors that are not straight binary', () => {
     const names = Array.from({ length: 15 }, (_, k) => `C${k}`);
     const given = plan([names.join(' ')], Object.fromEntries(names.map((name) => [name, 1])));
-    const figures = mismatchFigures(given, {
+    const figures = analyseMismatch(given, {
       localSigma_percent: 1,
       correlatedSigma_percent: 0,
       correlationLength_um: 0,
-    });
+    }).figures;
     expect(figures).not.toHaveProperty('dnlSigma_lsb');
     expect(figures.placement).not.toHaveProperty('dnlSigma_perUnitSigma');
     // The middle of n equal ones: sqrt(m (n - m) / n), as of a random walk tied at both ends.
@@ -184,11 +184,11 @@ describe('independent units', () => {
     [8, 15, 7.9843, 7.96877],
     [10, 31, 15.99218, 15.98438],
   ])('%d bits have the handbook figures', (bits, rows, inl, leastSquares) => {
-    const figures = mismatchFigures(binary(bits, rows, 1), {
+    const figures = analyseMismatch(binary(bits, rows, 1), {
       localSigma_percent: 100,
       correlatedSigma_percent: 0,
       correlationLength_um: 0,
-    });
+    }).figures;
     const last = 2 ** bits - 1;
     expect(figures.dnlSigma_lsb).toBeCloseTo(Math.sqrt(last - 1 / last), 11);
     expect(figures.inlSigma_lsb).toBeCloseTo(inl, 5);
@@ -199,7 +199,7 @@ describe('independent units', () => {
     const local = { localSigma_percent: 3, correlatedSigma_percent: 0, correlationLength_um: 50 };
     const alone = { localSigma_percent: 0, correlatedSigma_percent: 3, correlationLength_um: 0 };
     const all = [1, 2, 3].flatMap((shuffle) =>
-      [3, 7, 9, 21].flatMap((rows) => [local, alone].map((m) => mismatchFigures(binary(6, rows, shuffle), m))),
+      [3, 7, 9, 21].flatMap((rows) => [local, alone].map((m) => analyseMismatch(binary(6, rows, shuffle), m).figures)),
     );
     for (const figures of all) {
       expect(Math.abs((figures.inlSigma_lsb ?? NaN) - (all[0].inlSigma_lsb ?? NaN))).toBeLessThan(1e-12);
@@ -253,11 +253,11 @@ describe('sampled fields', () => {
     const inl = endPointFactors(given).map((factors) =>
       standardDeviation(fields.map((field) => field.reduce((sum, error, i) => sum + error * factors[i], 0))),
     );
-    const figures = mismatchFigures(given, {
+    const figures = analyseMismatch(given, {
       localSigma_percent: 50,
       correlatedSigma_percent: 100,
       correlationLength_um: 20,
-    });
+    }).figures;
     expect(Math.max(...inl) / (figures.inlSigma_lsb ?? NaN)).toBeCloseTo(1, 1);
     const steps = inl.slice(1).map((_, code) => {
       const [from, to] = [endPointFactors(given)[code], endPointFactors(given)[code + 1]];

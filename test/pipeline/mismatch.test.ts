@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { summaryOf } from '../../src/cli/summary.js';
-import { mismatchFigures } from '../../src/linearity/mismatch.js';
+import { analyseMismatch } from '../../src/linearity/mismatch.js';
 import { drawFloorplan } from '../../src/pipeline.js';
 import { placeByRule } from '../../src/placement/published-rules.js';
 import { drawn, parallelPlate } from './drawn.js';
@@ -12,7 +12,7 @@ describe('random mismatch in the metrics', () => {
     const placed = drawn({ bits: 4, effort: 'quick', mismatch: own });
     const { floorplan, metrics } = placed;
     expect(floorplan.array?.mismatch).toEqual(own);
-    expect(metrics.mismatch).toEqual(mismatchFigures(floorplan, own));
+    expect(metrics.mismatch).toEqual(analyseMismatch(floorplan, own).figures);
     const line = summaryOf(placed, [], { columns: 80, colour: false }).find((each) => each.startsWith('mismatch'));
     expect(line).toMatch(
       /^mismatch {6}sigma INL 0\.00\d+ LSB, DNL 0\.0\d+ LSB at the worst code; the placement alone: /,
@@ -23,10 +23,10 @@ describe('random mismatch in the metrics', () => {
     // 0.44 % um over the root of 4.4 x 4.4 um.
     const expected = { localSigma_percent: 0.1, correlatedSigma_percent: 0.05, correlationLength_um: 60 };
     const { floorplan, metrics } = drawn({ bits: 4, effort: 'quick' });
-    expect(metrics.mismatch).toEqual(mismatchFigures(floorplan, expected));
+    expect(metrics.mismatch).toEqual(analyseMismatch(floorplan, expected).figures);
     const spiral = placeByRule('spiral', 4, [1, 1]);
     const { metrics: ofRule } = drawFloorplan(spiral, parallelPlate, { wired: false });
-    expect(ofRule.mismatch).toEqual(mismatchFigures(spiral, expected));
+    expect(ofRule.mismatch).toEqual(analyseMismatch(spiral, expected).figures);
     expect(ofRule).not.toHaveProperty('status');
   });
 
