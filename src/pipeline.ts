@@ -11,6 +11,7 @@ import { um } from './core/units.js';
 import { drawPolygons } from './geometry/draw.js';
 import { columnNets, columnNetsTerm } from './hookup/column-nets.js';
 import { hookupFigures } from './hookup/figures.js';
+import { asWired, planAsWired } from './hookup/orientation.js';
 import type { Placed } from './hookup/plan.js';
 import { drawingRules, pitchOf, planOf, ringColumn, type StyledRules, tracksNeeded, wire } from './hookup/style.js';
 import { analyseGradient, type GradientFigures } from './linearity/analyse-gradient.js';
@@ -33,6 +34,7 @@ import { Search, type SearchOptions, SearchStart, type StartResult } from './pla
 import type { Effort } from './spec/array-spec.js';
 import type { Capacitor, Core, Floorplan, Placement, RingUnit } from './spec/floorplan.js';
 import type { Metrics } from './spec/metrics.js';
+import { type PinsWanted, pinsWanted } from './spec/pins.js';
 import type { Polygons } from './spec/polygons.js';
 import type { ResolvedArray, ResolvedSpec } from './spec/resolve.js';
 import type { Technology } from './spec/technology.js';
@@ -116,6 +118,7 @@ interface Setting {
   /** Those with units inside the core. */
   readonly inCore: readonly Capacitor[];
   readonly rules: StyledRules;
+  readonly pins: PinsWanted;
   /** The pitch asked for, where the drawing does not decide it. */
   readonly pitch?: Pitch;
   readonly wired: boolean;
@@ -182,7 +185,8 @@ function settingOf(request: PlaceRequest): Setting {
     ]);
   const inCore = capacitors.filter((capacitor) => capacitor.role === 'bit' || spec.termination === 'core');
   const rules = drawingRules(technology);
-  return { request, spec, technology, capacitors, inCore, rules, wired, ...(pitch && { pitch }) };
+  const pins = pinsWanted(capacitors, spec.pins);
+  return { request, spec, technology, capacitors, inCore, rules, pins, wired, ...(pitch && { pitch }) };
 }
 
 const isWaiting = ({ search }: Stage): boolean => search instanceof Search && search.waiting;
@@ -426,7 +430,8 @@ function* roundsOf(setting: Setting): Generator<readonly Stage[], Stage, void> {
   const near = probes.filter(({ least }) => least <= emphasis.orientation * bySecondOrder.least);
   const contenders = emphasis.orientation === 1 ? [bySecondOrder] : near;
   let { grid, relative } = bySecondOrder;
-  const needed = (of: Stage) => (wired ? tracksNeeded(rules, placedOf(setting, of), spec.tracksPerChannel) : of.tracks);
+  const needed = (of: Stage) =>
+    wired ? tracksNeeded(rules, asWired(placedOf(setting, of), setting.pins), spec.tracksPerChannel) : of.tracks;
   const scouts = contenders.map(({ grid, relative }) =>
     stage({ ...short, grid, weights: 'own', relative, share: 0.1 / contenders.length }),
   );
@@ -469,22 +474,25 @@ function placedOf(setting: Setting, { grid, search }: Stage): Placed {
   const cells = Array.from({ length: grid.rows }, (_, row) =>
     Array.from({ length: grid.columns }, (_, column) => name(row * grid.columns + column)),
   );
-  return withRingUnits(setting.rules, setting.capacitors, cells, setting.spec.rings);
+  return withRingUnits(setting.rules, setting.capacitors, cells, setting.spec.rings, setting.pins);
 }
 
-/** Puts what has no cell into the ring row below the core: at its left end, or where a free track lies beside it if more rings follow. */
+/**
+ * Puts what has no cell into the ring row between the core and the bits' pins: at its left end, or where a free track lies beside it if
+ * more rings follow.
+ */
 function withRingUnits(
   rules: StyledRules,
   capacitors: readonly Capacitor[],
   cells: readonly (readonly string[])[],
   rings: number,
+  pins: PinsWanted,
 ): Placed {
   const outside = capacitors.filter(({ name }) => !cells.some((row) => row.includes(name)));
-  const bare: Placed = { cells, capacitors, ringUnits: [], rings };
-  if (outside.length === 0) return bare;
-  const column = ringColumn(rules, bare);
+  const bare: Placed = asWired({ cells, capacitors, ringUnits: [], rings }, pins);
+  const column = outside.length === 0 ? 0 : ringColumn(rules, bare);
   const ringUnits = outside.map(({ name }): RingUnit => ({ capacitor: name, row: cells.length, column }));
-  return { ...bare, ringUnits };
+  return asWired({ ...bare, ringUnits }, pins);
 }
 
 export interface DrawOptions {
@@ -553,25 +561,35 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
 
   const rules = drawingRules(technology);
   const rings = array?.rings ?? ringsToReach(technology);
-  const placed: Placed = floorplan.ringUnits
-    ? { cells, capacitors, ringUnits: floorplan.ringUnits, rings }
-    : withRingUnits(rules, capacitors, cells, rings);
-  const { hookup, unfit } = wire(rules, placed, {
-    ...(keepHookup && floorplan.hookup && { given: floorplan.hookup }),
+  const pins = pinsWanted(capacitors, array?.pins);
+  const ringRow = pins.bits === 'bottom' ? cells.length : -1;
+  const { ringUnits } = floorplan;
+  const stands = ringUnits?.every(({ row }) => row === ringRow);
+  if (stands === false)
+    notes.push("Units in the ring were moved: they are wired in the row between the core and the bits' pins.");
+  const placed: Placed =
+    ringUnits && stands
+      ? { cells, capacitors, ringUnits, rings }
+      : withRingUnits(rules, capacitors, cells, rings, pins);
+  const facing = asWired(placed, pins);
+  const { hookup, unfit } = wire(rules, facing, pins, {
+    ...(keepHookup && floorplan.hookup && { given: planAsWired(floorplan.hookup, pins) }),
     ...(array?.tracksPerChannel !== undefined && { tracks: array.tracksPerChannel }),
     ...(tracksAtLeast !== undefined && { atLeast: tracksAtLeast }),
   });
   if (unfit !== undefined) notes.push(`The floorplan's hookup does not fit its cells (${unfit}); it was routed anew.`);
   const { frame } = hookup;
-  const polygons = measureOnly ? undefined : drawPolygons(name, technology, placed, hookup, array?.fillTop ?? 'TOP');
+  const polygons = measureOnly
+    ? undefined
+    : drawPolygons(name, technology, facing, hookup, { fillTop: array?.fillTop ?? 'TOP', pins });
   const core: Core = { rows: frame.rows, columns: frame.columns, pitch_um: [um(frame.pitch[0]), um(frame.pitch[1])] };
   const drawnAs = {
     ...(array && { array: { ...array, tracksPerChannel: frame.tracks } }),
     ...(placed.ringUnits.length > 0 && { ringUnits: placed.ringUnits }),
-    hookup: planOf(hookup),
+    hookup: planAsWired(planOf(hookup), pins),
   };
-  const area_um2 = figure(um(frame.width) * um(frame.height));
-  return finish(core, drawnAs, { hookup: hookupFigures(placed, hookup), area_um2 }, polygons);
+  const area_um2 = figure(um(frame.blockWidth) * um(frame.height));
+  return finish(core, drawnAs, { hookup: hookupFigures(facing, hookup), area_um2 }, polygons);
 }
 
 /** @param provedFor asked where the search came to its end by itself: the class in which the placement is proved to be the best. */

@@ -28,3 +28,15 @@ export function orderBy(first: Int32Array, second: Int32Array): Uint32Array {
   }
   return order;
 }
+
+/** Index of the first value of an ascending list that is at least `least`; the list's length where none is. */
+export function firstAtLeast(ascending: readonly number[], least: number): number {
+  let low = 0;
+  let high = ascending.length;
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if (ascending[middle] < least) low = middle + 1;
+    else high = middle;
+  }
+  return low;
+}

@@ -1,15 +1,18 @@
-import type { Reference } from '../core/layout.js';
+import type { Reference, Structure } from '../core/layout.js';
 import { Infeasible } from '../core/problem.js';
 import { rectangle } from '../core/rectangle.js';
 import type { Placed } from '../hookup/plan.js';
 import { viaBetween } from '../hookup/rules.js';
 import type { Hookup } from '../hookup/style.js';
 import type { Wires } from '../hookup/wires.js';
+import type { PinsWanted } from '../spec/pins.js';
 import type { Polygons } from '../spec/polygons.js';
 import type { Technology } from '../spec/technology.js';
 import { drawChannels, drawGroundedFills } from './channel.js';
+import { mirrorImage } from './mirror.js';
 import { drawRing } from './ring.js';
 import { Sheet } from './sheet.js';
+import { drawTopAside } from './top-aside.js';
 import { unitStructures } from './unit-cell.js';
 
 /** Where the fill dummies' top plates go. */
@@ -19,19 +22,20 @@ export type FillTop = 'TOP' | 'VSS';
  * Draws the block as polygons: one unit structure, and a top structure with an array of it and all wires. The lower left corner of the
  * bounding box is 0,0.
  * @param name of the array; the structures' names begin with it.
+ * @param placed as it is wired, the bits' pins at the bottom: the drawing is upside down where they are wanted at the top.
  */
 export function drawPolygons(
   name: string,
   technology: Technology,
   placed: Placed,
   hookup: Hookup,
-  fillTop: FillTop,
+  { fillTop, pins }: { readonly fillTop: FillTop; readonly pins: PinsWanted },
 ): Polygons {
   const { frame } = hookup;
   const { rows, columns, rings } = frame;
   const { roles } = technology;
   const sheet = new Sheet(technology);
-  const block = rectangle(0, 0, frame.width, frame.height);
+  const block = rectangle(0, 0, frame.blockWidth, frame.height);
   sheet.add(roles.boundary, block);
   sheet.add(roles.fillExclusion, block);
 
@@ -71,6 +75,8 @@ export function drawPolygons(
     angle_deg: 0,
     cells,
   };
+  const upright: Structure = { name, polygons: sheet.polygons, references: [units], labels: sheet.labels };
+  const top = pins.bits === 'bottom' ? upright : mirrorImage(upright, 'y', frame.height);
   return {
     format: 'steelyard/polygons',
     version: 1,
@@ -79,7 +85,7 @@ export function drawPolygons(
     topStructure: name,
     technology,
     capacitors: placed.capacitors,
-    structures: [...cellsOfUnit, unit, { name, polygons: sheet.polygons, references: [units], labels: sheet.labels }],
+    structures: [...cellsOfUnit, unit, top],
   };
 }
 
@@ -107,7 +113,7 @@ function drawPins(sheet: Sheet, { roles }: Technology, { frame: { rules }, pins 
   for (const { net, x } of pins) sheet.pin(roles.trunk, rectangle(x, 0, x + rules.trackWidth, rules.trackWidth), net);
 }
 
-/** Straps along the columns, a tab to each unit's pad, the spine above the topmost row, and the pin at the top. */
+/** Straps along the columns, a tab to each unit's pad, the spine above the topmost row, and the pin. */
 function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: Wires, fillTop: FillTop): void {
   const { frame } = hookup;
   const { rules, rows, columns } = frame;
@@ -145,6 +151,7 @@ function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: W
   const first = frame.columnX(0) + rules.strapX;
   const last = frame.columnX(columns - 1) + rules.strapX;
   sheet.add(roles.spine, rectangle(first - half, plateTop, last + half, spineTop), { net: 'TOP', part: 'spine' });
+  if (frame.aside) return drawTopAside(sheet, technology, frame, frame.aside, { x: last, y0: plateTop, y1: spineTop });
   const middle = frame.columnX((columns - 1) >> 1) + rules.strapX;
   sheet.add(roles.spine, rectangle(middle - half, plateTop, middle + half, frame.height), {
     net: 'TOP',

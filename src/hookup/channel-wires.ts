@@ -1,7 +1,8 @@
+import type { PinsWanted } from '../spec/pins.js';
 import { channelFrame, type ChannelFrame } from './channel-frame.js';
 import type { ChannelRules } from './channel-rules.js';
 import { channelStubs, nearestVss, needsTrack, type Placed, type Plan, type Side, trunkTop } from './plan.js';
-import { busWires, type Joint, lowEnd, pinOrder, pinsAlong, type Wire, type Wires } from './wires.js';
+import { busWires, type Joint, lowEnd, pinsAlong, type Wire, type Wires } from './wires.js';
 
 /** Stubs cut the shield of their channel where they stand. */
 interface StubCut {
@@ -24,18 +25,19 @@ export interface ChannelHookup extends Wires {
 /**
  * Turns a plan into wires.
  * @param buses the nets that are to have a bus, from the ring down; chosen where absent.
- * @throws Infeasible where the pins do not fit the bottom edge.
+ * @throws Infeasible where the pins do not fit the bottom edge, or cannot be reached on the pitch asked for.
  */
 export function layChannelWires(
   rules: ChannelRules,
   placed: Placed,
   plan: Plan,
+  wanted: PinsWanted,
   buses?: readonly string[],
 ): ChannelHookup {
   const rows = placed.cells.length;
   const columns = placed.cells[0].length;
   const tracks = plan.channels[0].length;
-  const size = { rows, columns, rings: placed.rings, tracks };
+  const size = { rows, columns, rings: placed.rings, tracks, topAside: wanted.top === wanted.bits };
   const half = rules.trackWidth / 2;
   // Positions along x do not depend on the number of buses, so the pins come first.
   const flat = channelFrame(rules, { ...size, buses: 0 });
@@ -46,7 +48,7 @@ export function layChannelWires(
       column: unit.column,
       x: flat.columnX(unit.column) + rules.pad[0] - half,
     }));
-  const nets = pinOrder(placed.capacitors).map((net) => ({
+  const nets = wanted.order.map((net) => ({
     net,
     trunks: [
       ...plan.channels.flatMap((list, channel) =>
@@ -55,7 +57,7 @@ export function layChannelWires(
       ...ringLines.filter((line) => line.capacitor === net).map((line) => line.x),
     ],
   }));
-  const pins = pinsAlong(rules, flat.width, nets, buses);
+  const pins = pinsAlong(rules, flat.width, nets, wanted, buses);
   const frame = channelFrame(rules, { ...size, buses: pins.buses.length });
 
   const horizontal: Wire[] = [];

@@ -1,3 +1,4 @@
+import { firstAtLeast } from '../core/order.js';
 import { um } from '../core/units.js';
 import type { HookupFigures } from '../spec/metrics.js';
 import { columnNets } from './column-nets.js';
@@ -44,17 +45,6 @@ function crossovers(hookup: Hookup, bits: ReadonlySet<string>): number {
   }
   return count;
 }
-
-const firstAtLeast = (sorted: readonly number[], value: number): number => {
-  let low = 0;
-  let high = sorted.length;
-  while (low < high) {
-    const middle = (low + high) >> 1;
-    if (sorted[middle] < value) low = middle + 1;
-    else high = middle;
-  }
-  return low;
-};
 
 /** Pairs of wires of different nets on one metal that touch, as drawn `width` wide. */
 function touching(wires: readonly Wire[], width: number): number {

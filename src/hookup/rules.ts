@@ -39,6 +39,8 @@ export interface Rules {
   /** The middle of a strap from the middle of its column: 0 unless the pad needs the room. */
   readonly strapX: number;
   readonly frameWidth: number;
+  /** Of a line on the straps' metal that a via to the frame fits on. */
+  readonly guardWidth: number;
   /** Between the frame's bottom side and the plates above it. */
   readonly bottomGap: number;
   readonly viaTrack: { readonly size: number; readonly landing: number; readonly spacing: number };
@@ -141,6 +143,7 @@ export function commonRules(technology: Technology): Rules {
     strapWidth,
     strapX,
     frameWidth,
+    guardWidth: Math.max(frameWidth, padSize),
     bottomGap: even(metalSpacing),
     viaTrack,
     viaFrame,

@@ -1,4 +1,5 @@
 import type { HookupPlan } from '../spec/floorplan.js';
+import type { PinsWanted } from '../spec/pins.js';
 import type { Technology } from '../spec/technology.js';
 import { channelPitch } from './channel-frame.js';
 import { type ChannelRules, channelRules } from './channel-rules.js';
@@ -34,21 +35,22 @@ export function ringColumn(_rules: StyledRules, bare: Placed): number {
  * Wires a placement: by the plan given where it fits, else anew.
  * @param tracks asked for; `atLeast`: what the pitch was made for.
  * @returns `unfit`: why the plan given does not fit.
- * @throws Infeasible where the tracks asked for do not suffice, or the pins do not fit the bottom edge.
+ * @throws Infeasible where the tracks asked for do not suffice, or the pins do not fit the bottom edge as they are wanted.
  */
 export function wire(
   rules: StyledRules,
   placed: Placed,
+  pins: PinsWanted,
   { given, tracks, atLeast = 0 }: { given?: HookupPlan; tracks?: number; atLeast?: number },
 ): { readonly hookup: Hookup; readonly unfit?: string } {
   const unfit = given && misfit(placed, given);
   if (given !== undefined && unfit === undefined) {
     const buses = given.buses.filter((net) => net !== 'VSS');
-    return { hookup: layChannelWires(rules, placed, given as Plan, buses) };
+    return { hookup: layChannelWires(rules, placed, given as Plan, pins, buses) };
   }
   const plan = planHookup(placed, tracks);
   const wide = plan.channels[0].length < atLeast ? planHookup(placed, atLeast) : plan;
-  return { hookup: layChannelWires(rules, placed, wide), ...(unfit !== undefined && { unfit }) };
+  return { hookup: layChannelWires(rules, placed, wide, pins), ...(unfit !== undefined && { unfit }) };
 }
 
 /** A hookup as a floorplan's file has it. */

@@ -1,5 +1,6 @@
-import type { Capacitor } from '../spec/floorplan.js';
+import type { PinsWanted } from '../spec/pins.js';
 import type { Frame } from './frame.js';
+import { placeOnPitch } from './pin-row.js';
 import { type Leaving, type Pins, placePins } from './pins.js';
 import type { Side } from './plan.js';
 import type { Rules } from './rules.js';
@@ -36,28 +37,27 @@ export interface Wires {
   readonly buses: readonly string[];
 }
 
-/** Pin order from left to right: the termination where there is one, then the bits from the least. */
-export const pinOrder = (capacitors: readonly Capacitor[]): string[] => [
-  ...capacitors.filter((capacitor) => capacitor.role === 'termination').map((capacitor) => capacitor.name),
-  ...capacitors.filter((capacitor) => capacitor.role === 'bit').map((capacitor) => capacitor.name),
-];
-
 /**
  * Pins along the bottom edge of a block this wide, and the buses that lead to them.
+ * @param nets in the order of the pins.
  * @param given the nets that are to have a bus, from the ring down; chosen where absent.
- * @throws Infeasible where the pins do not fit the bottom edge.
+ * @throws Infeasible where the pins do not fit the bottom edge, or cannot be reached on the pitch asked for.
  */
-export const pinsAlong = (rules: Rules, width: number, nets: readonly Leaving[], given?: readonly string[]): Pins =>
-  placePins(
-    nets,
-    {
-      first: rules.spacing,
-      last: width - rules.frameWidth - rules.spacing - rules.trackWidth,
-      pitch: rules.trackWidth + rules.dropSpacing,
-      grid: rules.grid,
-    },
-    given,
-  );
+export function pinsAlong(
+  rules: Rules,
+  width: number,
+  nets: readonly Leaving[],
+  { pitch_um }: PinsWanted,
+  given?: readonly string[],
+): Pins {
+  const size = {
+    first: rules.spacing,
+    last: width - rules.frameWidth - rules.spacing - rules.trackWidth,
+    pitch: rules.trackWidth + rules.dropSpacing,
+    grid: rules.grid,
+  };
+  return pitch_um === undefined ? placePins(nets, size, given) : placeOnPitch(nets, pitch_um, size, given);
+}
 
 /** The middle of a net's bus, or the block's edge where it has none: so far down its trunks run. */
 export function lowEnd(frame: Frame, { buses }: Pins, net: string): number {

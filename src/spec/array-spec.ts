@@ -30,8 +30,12 @@ export interface ArraySpec {
     readonly correlationLength_um: number;
   };
   readonly pins?: {
-    readonly bits?: { readonly side: 'bottom' | 'top'; readonly order?: readonly string[]; readonly pitch_um?: number };
-    readonly top?: { readonly side: 'bottom' | 'top' };
+    readonly bits?: {
+      readonly side?: 'bottom' | 'top';
+      readonly order?: readonly string[];
+      readonly pitch_um?: number;
+    };
+    readonly top?: { readonly side?: 'bottom' | 'top' };
   };
   readonly pair?: 'none' | 'mirrored';
 }

@@ -1,6 +1,5 @@
 import { figure } from '../core/figure.js';
 import type { ArraySpec } from './array-spec.js';
-import { record } from './loose.js';
 import {
   atLeastZero,
   choice,
@@ -40,6 +39,8 @@ export interface Option {
   readonly works?: { readonly accepts: (value: unknown) => boolean; readonly wanted: string };
   /** The default, from the keys resolved before this one; absent where the tool chooses later or nothing is the default. */
   readonly resolve?: (before: ArraySpec, technology: Technology) => unknown;
+  /** True: the value may be given in part, and `resolve` makes it whole. */
+  readonly partly?: true;
 }
 
 const mostBits = 14;
@@ -49,13 +50,6 @@ export const mostCells = 40000;
 export const mostRings = 3;
 
 const side = choice('bottom', 'top');
-const standardPins = { bits: { side: 'bottom' }, top: { side: 'top' } };
-
-function hasStandardPins(value: unknown): boolean {
-  const { bits = standardPins.bits, top = standardPins.top } = record(value);
-  const keys = Object.keys(record(bits));
-  return record(bits).side === 'bottom' && record(top).side === 'top' && keys.length === 1;
-}
 
 const allBut = (later: string, ...now: string[]): NonNullable<Option['works']> => ({
   accepts: (value) => now.some((v) => v === value),
@@ -279,19 +273,16 @@ export const options: readonly Option[] = [
   },
   {
     key: 'pins',
-    values: '`{bits: {side, order, pitch_um}, top: {side}}`; others than the default are not available yet',
-    standard: '`{bits: {side: "bottom"}, top: {side: "top"}}`',
+    values: '`{bits: {side: "bottom" or "top", order, pitch_um}, top: {side}}`, each of them optional',
+    standard: '`{bits: {side: "bottom"}, top: {side: "top"}}`, in the order of the weights, where the wires end',
     help: 'where the pins lie',
     available: true,
     schema: object({
-      'bits?': object({ side, 'order?': list(name, 1, mostWeights + 1), 'pitch_um?': length }),
-      'top?': object({ side }),
+      'bits?': object({ 'side?': side, 'order?': list(name, 1, mostWeights + 1), 'pitch_um?': length }),
+      'top?': object({ 'side?': side }),
     }),
-    works: {
-      accepts: hasStandardPins,
-      wanted: '{"bits": {"side": "bottom"}, "top": {"side": "top"}} (other pins are not available yet)',
-    },
-    resolve: () => standardPins,
+    resolve: ({ pins }) => ({ bits: { side: 'bottom', ...pins?.bits }, top: { side: 'top', ...pins?.top } }),
+    partly: true,
   },
   {
     key: 'pair',

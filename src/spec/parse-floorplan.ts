@@ -4,6 +4,7 @@ import { integer, items, record, word } from './loose.js';
 import { mostCells, mostRings, mostWeights } from './options.js';
 import { checkArray, checkPitch } from './parse-array.js';
 import { checkTechnology, technologyRefusals } from './parse-technology.js';
+import { checkPinOrder } from './pins.js';
 import { read } from './read.js';
 import type { Refusal } from './read.js';
 import type { Report } from './report.js';
@@ -118,7 +119,14 @@ function check(value: unknown, report: Report): void {
       `${placed}, as many as are placed, or other cells`,
     );
   });
-  if (floorplan.array !== undefined) checkArray(floorplan.array, report, '/array');
+  if (floorplan.array !== undefined) {
+    checkArray(floorplan.array, report, '/array');
+    const capacitors = items(floorplan.capacitors).map((capacitor) => {
+      const { name, role } = record(capacitor);
+      return { name: word(name) ?? '', role: word(role) ?? '' };
+    });
+    checkPinOrder(record(floorplan.array).pins, capacitors, report, '/array/pins');
+  }
   if (floorplan.technology !== undefined) checkTechnology(floorplan.technology, report, '/technology');
 }
 

@@ -3,6 +3,7 @@ import type { Problem, Result } from '../core/problem.js';
 import type { ArraySpec } from './array-spec.js';
 import type { Capacitor } from './floorplan.js';
 import { mostRings, options } from './options.js';
+import { checkPinOrder } from './pins.js';
 import { Report } from './report.js';
 import type { Source } from './report.js';
 import { withUnitOf } from './scale-unit.js';
@@ -37,6 +38,7 @@ function capacitorsOf({ bits = 0, weights, termination }: ResolvedSpec): Capacit
  */
 export function resolveArray(spec: ArraySpec, template: Technology, source?: Source): Result<ResolvedArray> {
   const report = new Report(source ?? { text: '', file: '' });
+  const refused = () => ({ ok: false, issues: report.problems().map((p) => (source ? p : withoutPlace(p))) }) as const;
   if (spec.hookup !== undefined && spec.hookup !== template.hookup) {
     report.add('/hookup', shown(spec.hookup), `"${template.hookup}", as technology "${template.name}" has it`);
   }
@@ -47,19 +49,21 @@ export function resolveArray(spec: ArraySpec, template: Technology, source?: Sou
       'one of the two',
     );
   }
-  if (report.count > 0) return { ok: false, issues: report.problems().map((p) => (source ? p : withoutPlace(p))) };
+  if (report.count > 0) return refused();
 
   const technology = spec.unit_fF === undefined ? template : withUnitOf(template, spec.unit_fF);
   // `technology` names the template; a file's name would mean nothing where the array travels inside a floorplan.
   const { $schema: _schema, ...given } = spec as ArraySpec & { readonly $schema?: string };
   const filled: Record<string, unknown> = { ...given };
   if ('technology' in filled) filled.technology = technology.name;
-  for (const { key, resolve } of options) {
-    if (resolve !== undefined && filled[key] === undefined)
+  for (const { key, resolve, partly } of options) {
+    if (resolve !== undefined && (filled[key] === undefined || partly))
       filled[key] = resolve(filled as unknown as ArraySpec, technology);
   }
   const resolved = filled as unknown as ResolvedSpec;
   const capacitors = capacitorsOf(resolved);
+  checkPinOrder(resolved.pins, capacitors, report, '/pins');
+  if (report.count > 0) return refused();
   refuseImpossible(spec, resolved, technology, capacitors);
   return { ok: true, value: { spec: resolved, technology, capacitors } };
 }

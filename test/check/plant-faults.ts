@@ -91,7 +91,7 @@ interface FlatBox extends Rectangle {
 }
 
 /** All rectangles of a layer, with the net that each is meant to carry: those of units after their cell. */
-function flatBoxes(flat: FlatDrawing, layer: FlatLayer | undefined): FlatBox[] {
+export function flatBoxes(flat: FlatDrawing, layer: FlatLayer | undefined): FlatBox[] {
   if (!layer) return [];
   return Array.from(layer.x0, (x0, i) => {
     const polygon = flat.shapes.polygon[layer.shape[i]];

@@ -45,6 +45,33 @@ describe('an array file, resolved', () => {
     });
   });
 
+  it('has every default of its pins where only a part of them is given', () => {
+    expect(resolve({ bits: 4, pins: { bits: { pitch_um: 4 } } }).spec.pins).toEqual({
+      bits: { side: 'bottom', pitch_um: 4 },
+      top: { side: 'top' },
+    });
+    expect(resolve({ bits: 4, pins: { top: { side: 'bottom' } } }).spec.pins).toEqual({
+      bits: { side: 'bottom' },
+      top: { side: 'bottom' },
+    });
+  });
+
+  it('has pins in an order that names each bit once', () => {
+    const refused = (order: string[], more: Partial<ArraySpec> = {}) => {
+      const text = JSON.stringify(array({ bits: 3, ...more, pins: { bits: { order } } }), null, 1);
+      const result = resolveArray(valueOf(parseArray(text, 'a')), technology, { text, file: 'a.json' });
+      return result.ok ? [] : result.issues.map(({ pointer, found, wanted }) => `${pointer} | ${found} | ${wanted}`);
+    };
+    expect(refused(['B2', 'TERM', 'B1', 'B0'])).toEqual([]);
+    expect(refused(['B2', 'B1', 'B0'])).toEqual([]);
+    expect(refused(['B2', 'B1', 'B1', 'BO'])).toEqual([
+      '/pins/bits/order | 4 pins without "B0" | every bit once',
+      '/pins/bits/order/2 | "B1" once more | each pin once',
+      '/pins/bits/order/3 | "BO" | "B0", the nearest known pin',
+    ]);
+    expect(refused(['TERM', 'B0', 'B1', 'B2'], { termination: 'none' })[0]).toMatch('/pins/bits/order/0 | "TERM" | ');
+  });
+
   it('lists the bits from the least significant up, then the termination', () => {
     const { spec, capacitors } = resolve({ weights: [1, 2, 3, 5], termination: 'core' });
     expect(spec.name).toBe('cdac4w');
