@@ -1,5 +1,5 @@
 import { Command, CommanderError } from 'commander';
-import { publishedRules, schemaNames, options as settings } from '../index.js';
+import { converterOptions, publishedRules, schemaNames, options as settings } from '../index.js';
 import { printSchema, printTechnology } from './catalogue.js';
 import { check } from './check.js';
 import type { CheckFlags } from './check.js';
@@ -7,6 +7,7 @@ import { compareFiles } from './compare.js';
 import type { CompareFlags } from './compare.js';
 import { exportFiles } from './export.js';
 import type { ExportFlags } from './export.js';
+import type { TableRow } from '../index.js';
 import { UsageError, exit } from './fault.js';
 import { formats } from './files.js';
 import type { Io } from './io.js';
@@ -14,9 +15,11 @@ import { pattern } from './pattern.js';
 import type { PatternFlags } from './pattern.js';
 import { place } from './place.js';
 import type { PlaceFlags } from './place.js';
+import { size } from './size.js';
+import type { SizeFlags } from './size.js';
 
 /** Commands and options that a later version brings: refused by name rather than taken for a slip of the pen. */
-const laterCommands = ['size', 'simulate'];
+const laterCommands = ['simulate'];
 const laterOptions: Readonly<Record<string, readonly string[]>> = {
   place: ['--samples'],
   compare: ['--out'],
@@ -35,11 +38,25 @@ const examples: Readonly<Record<string, readonly string[]>> = {
     'steelyard pattern interleaved --bits 6 --out interleaved.floorplan.json',
     'steelyard compare spiral.floorplan.json interleaved.floorplan.json',
   ],
+  size: [
+    'steelyard size --bits 12 --full-scale 1 --differential --sample-rate 1 --out adc.array.json',
+    'steelyard size --bits 10 --explain',
+    'steelyard size --ratio 2.314',
+  ],
   schema: ['steelyard schema array'],
   technology: ['steelyard technology parallel-plate'],
 };
 
 const plain = (words: string): string => words.replace(/[`"]/g, '');
+
+/** The keys of a table that are on the command line too, each with its choices and its default in the help. */
+function tableFlags(command: Command, table: readonly TableRow[]): void {
+  for (const { flag, help, values, standard } of table) {
+    if (flag === undefined) continue;
+    const choice = values.startsWith('`"') ? `: ${plain(values)}` : '';
+    command.option(flag, help + choice + (standard === '-' ? '' : ` (default: ${plain(standard)})`));
+  }
+}
 
 /** The commands, their options and their help; `finish` receives what the chosen one ends with. */
 function build(io: Io, version: string, finish: (code: number) => void): Command {
@@ -65,11 +82,7 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
   )
     .argument('[FILE]', 'array file; or a floorplan file: its cells are kept and wired anew')
     .option('--out <folder>', "where the files go (default: a folder of the array's name)");
-  for (const { flag, help, values, standard } of settings) {
-    if (flag === undefined) continue;
-    const choice = values.startsWith('`"') ? `: ${plain(values)}` : '';
-    placing.option(flag, help + choice + (standard === '-' ? '' : ` (default: ${plain(standard)})`));
-  }
+  tableFlags(placing, settings);
   placing
     .option('--floorplan-only', 'place and analyse, draw no wires')
     .option('--pitch <X,Y>', 'pitch in micrometres, with --floorplan-only')
@@ -117,6 +130,19 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
       'date in the stream file (default: a fixed one, so that equal drawings are equal files)',
     )
     .action(async (file: string, flags: ExportFlags) => finish(await exportFiles(io, file, flags)));
+
+  const sizing = command(
+    'size',
+    'Tells how large the unit of a converter has to be for noise, mismatch and the technology, and writes the array file.',
+  ).argument('[CONVERTER]', 'converter file');
+  tableFlags(sizing, converterOptions);
+  sizing
+    .option('--ratio <units>', "sides of a plate that is no whole number of units, with the unit's perimeter to area")
+    .option('--undercut <um>', 'with --ratio: what etching takes off each edge')
+    .option('--explain', 'every formula with its numbers and its source')
+    .option('--out <file>', 'write the array file')
+    .option('--json', 'print the figures, and nothing else, as JSON')
+    .action(async (file: string | undefined, flags: SizeFlags) => finish(await size(io, file, flags)));
 
   command('schema', 'Prints the JSON Schema of a file format; without a name, the names.')
     .argument('[NAME]', `one of ${schemaNames.join(', ')}`)

@@ -9,6 +9,10 @@ type Line = readonly [label: string, text: string, colour?: (text: string) => st
 /** Texts as lines, each with its end. */
 export const lines = (texts: readonly string[]): string => texts.map((text) => `${text}\n`).join('');
 
+/** Labels and texts as lines, the texts below each other. */
+export const labelled = (rows: readonly (readonly [label: string, text: string])[]): readonly string[] =>
+  rows.map(([label, text]) => `${label.padEnd(14)}${text}`);
+
 const counted = (count: number, noun: string): string => `${count} ${noun}${count === 1 ? '' : 's'}`;
 
 const lsb = (figures: { readonly inl_lsb: number; readonly dnl_lsb?: number | undefined }): string =>

@@ -1,3 +1,4 @@
+import type { Drive, Limits } from './converter.js';
 import type { Gradient } from './technology.js';
 
 export type Emphasis = 'balanced' | 'gradient' | 'dispersed' | 'wiring';
@@ -38,4 +39,8 @@ export interface ArraySpec {
     readonly top?: { readonly side?: 'bottom' | 'top' };
   };
   readonly pair?: 'none' | 'mirrored';
+  readonly drive?: Drive;
+  /** What hangs on `TOP` outside the array. */
+  readonly topLoad_fF?: number;
+  readonly limits?: Limits;
 }

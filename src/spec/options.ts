@@ -1,5 +1,6 @@
 import { figure } from '../core/figure.js';
 import type { ArraySpec } from './array-spec.js';
+import type { TableRow } from './option-table.js';
 import {
   atLeastZero,
   choice,
@@ -22,17 +23,7 @@ import { isWideUnit, matchedArea_um2, unitSize_um } from './unit-geometry.js';
 import { either } from './words.js';
 
 /** One key of an array file. This table is its only description: schema, defaults, help and documentation come from it. */
-export interface Option {
-  readonly key: string;
-  /** What the file may hold, in words. */
-  readonly values: string;
-  /** The default in words; "-" where one is required. */
-  readonly standard: string;
-  /** One line of help. */
-  readonly help: string;
-  /** The command line's form, where it has one. */
-  readonly flag?: string;
-  /** False: the key is refused by name in this version. */
+export interface Option extends TableRow {
   readonly available: boolean;
   readonly schema: Schema;
   /** Which of the schema's values work in this version; absent: all. */
@@ -43,11 +34,18 @@ export interface Option {
   readonly partly?: true;
 }
 
-const mostBits = 14;
+export const mostBits = 14;
 export const mostWeights = 20;
 export const mostWeight = 16383;
 export const mostCells = 40000;
 export const mostRings = 3;
+
+/** Resistances of switches and reference, of an array as of a converter. */
+export const driveSchema = object({
+  switch_ohm: { type: ['number', 'array'], minimum: 0, maximum: 1e12, items: atLeastZero, maxItems: mostWeights },
+  'reference_ohm?': atLeastZero,
+});
+export const limitsSchema = object({ 'inl_lsb?': positive, 'dnl_lsb?': positive, 'yield?': share });
 
 const side = choice('bottom', 'top');
 
@@ -258,10 +256,7 @@ export const options: readonly Option[] = [
     standard: 'none: no settling',
     help: 'resistance of the switches and of the reference',
     available: false,
-    schema: object({
-      switch_ohm: { type: ['number', 'array'], minimum: 0, maximum: 1e12, items: atLeastZero, maxItems: mostWeights },
-      'reference_ohm?': atLeastZero,
-    }),
+    schema: driveSchema,
   },
   {
     key: 'topLoad_fF',
@@ -300,22 +295,6 @@ export const options: readonly Option[] = [
     standard: 'none',
     help: 'what the drawn array must keep',
     available: false,
-    schema: object({ 'inl_lsb?': positive, 'dnl_lsb?': positive, 'yield?': share }),
+    schema: limitsSchema,
   },
 ];
-
-/** The table as Markdown, for the documentation. */
-export function optionsMarkdown(): string {
-  const escape = (cell: string): string => cell.replaceAll('|', '\\|').replaceAll('<', '&lt;');
-  const code = (words: string): string => `\`${words.replaceAll('|', '\\|')}\``;
-  const inCode = (cell: string): string =>
-    cell
-      .split('`')
-      .map((part, i) => (i % 2 ? code(part) : escape(part)))
-      .join('');
-  const rows = options.map(({ key, values, standard, help, flag, available }) => {
-    const what = available ? inCode(values) : `${inCode(values)}; not available yet`;
-    return `| ${code(key)} | ${help} | ${what} | ${inCode(standard)} | ${flag === undefined ? '' : code(flag)} |`;
-  });
-  return ['| key | what it is | values | default | command line |', '|---|---|---|---|---|', ...rows, ''].join('\n');
-}

@@ -28,11 +28,10 @@ export function withUnitOf(technology: Technology, wanted_fF: number): Technolog
       `The unit of technology "${name}" is the cell ${unit.cell} of ${unit.capacitance_fF} fF, which is not drawn here; ${wanted_fF} fF are asked for.`,
       `Leave "unit_fF" out, or name another cell in the technology.`,
     );
-  const scaled = attempt(technology, unit, wanted_fF);
+  const scaled = redrawn(technology, unit, wanted_fF);
   const [problem] = problemsOf(scaled);
   if (problem === undefined) return scaled;
-  // Rounded inwards, so that what is offered can be had.
-  const least = figure(Math.ceil(1000 * lastThatFits(technology, unit, unit.capacitance_fF / 1e4)) / 1000);
+  const least = leastUnit_fF(technology);
   const most = figure(Math.floor(1000 * lastThatFits(technology, unit, unit.capacitance_fF * 1e4)) / 1000);
   throw new Infeasible(
     `A unit of ${wanted_fF} fF does not keep the rules of technology "${name}": ${problem}.`,
@@ -40,7 +39,16 @@ export function withUnitOf(technology: Technology, wanted_fF: number): Technolog
   );
 }
 
-const attempt = (technology: Technology, unit: Scalable, wanted_fF: number): Technology =>
+/** The smallest unit (fF) that the technology's rules allow; of a cell that is not drawn, its own. */
+export function leastUnit_fF(technology: Technology): number {
+  const { unit } = technology;
+  if (unit.kind === 'named-cell') return unit.capacitance_fF;
+  // Rounded inwards, so that what is offered can be had.
+  return figure(Math.ceil(1000 * lastThatFits(technology, unit, unit.capacitance_fF / 1e4)) / 1000);
+}
+
+/** The technology with its unit redrawn for a capacitance, whatever the rules say to it. */
+export const redrawn = (technology: Technology, unit: Scalable, wanted_fF: number): Technology =>
   unit.kind === 'parallel-plate'
     ? rebuilt(technology, plateOf(technology, unit, wanted_fF))
     : rebuilt(technology, fingersOf(technology, unit, wanted_fF));
@@ -59,7 +67,7 @@ function lastThatFits(technology: Technology, unit: Scalable, far: number): numb
   let bad = far;
   for (let i = 0; i < 40; i++) {
     const middle = Math.sqrt(good * bad);
-    if (problemsOf(attempt(technology, unit, middle)).length === 0) good = middle;
+    if (problemsOf(redrawn(technology, unit, middle)).length === 0) good = middle;
     else bad = middle;
   }
   return good;

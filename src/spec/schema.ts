@@ -1,4 +1,5 @@
 import { arraySchema } from './schema-array.js';
+import { converterSchema } from './schema-converter.js';
 import { floorplanSchema } from './schema-floorplan.js';
 import { layersSchema } from './schema-layers.js';
 import { metricsSchema } from './schema-metrics.js';
@@ -15,6 +16,7 @@ const schemas = {
   technology: technologySchema,
   layers: layersSchema,
   pins: pinsSchema,
+  converter: converterSchema,
 } satisfies Record<string, Schema>;
 
 /** Names of the file formats: `format` is `steelyard/NAME`. */

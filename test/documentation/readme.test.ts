@@ -2,7 +2,7 @@ import { execFileSync, spawnSync } from 'node:child_process';
 import { chmodSync, existsSync, mkdirSync, readFileSync, readdirSync, symlinkSync, writeFileSync } from 'node:fs';
 import { dirname, join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { optionsMarkdown } from '../../src/index.js';
+import { converterOptions, options, tableMarkdown } from '../../src/index.js';
 import { buildTool, remove, root, temporaryFolder, tool } from '../cli/built-tool.js';
 
 const readmeFile = join(root, 'README.md');
@@ -63,15 +63,16 @@ describe('README.md', () => {
     expect(played.match(/```console\n\$ /g)?.length).toBeGreaterThan(4);
   });
 
-  it('has the table of options as the tool has it', () => {
-    const part = /(<!-- options -->\n\n)[\s\S]*?(\n<!-- end of options -->)/;
-    const now = readFileSync(readmeFile, 'utf8').replace(
-      part,
-      (_, start: string, end: string) => start + optionsMarkdown() + end,
-    );
+  it.each([
+    ['options', options],
+    ['converter options', converterOptions],
+  ])('has the table of %s as the tool has it', (name, table) => {
+    const part = new RegExp(`(<!-- ${name} -->\\n\\n)[\\s\\S]*?(\\n<!-- end of ${name} -->)`);
+    const text = readFileSync(readmeFile, 'utf8');
+    const now = text.replace(part, (_, start: string, end: string) => start + tableMarkdown(table) + end);
     if (update) writeFileSync(readmeFile, now);
-    else expect(readme).toBe(now);
-    expect(readme).toMatch(part);
+    else expect(text).toBe(now);
+    expect(text).toMatch(part);
   });
 
   it('names npm scripts that exist', () => {

@@ -20,6 +20,7 @@ const files = {
   metrics: kiln4('kiln4.metrics.json'),
   technology: kiln4('parallel-plate.technology.json'),
   layers: map,
+  converter: '{"format": "steelyard/converter", "version": 1, "bits": 12, "fullScale_Vpp": 1, "switching": "vcmBased"}',
   pins: '{"format": "steelyard/pins", "version": 1, "pins": [{"pin": "B0", "name": "dac_d[0]"}]}',
 };
 

@@ -1,7 +1,8 @@
 import { describe, expect, it } from 'vitest';
 import { Infeasible } from '../../src/core/problem.js';
 import type { ArraySpec } from '../../src/spec/array-spec.js';
-import { options, optionsMarkdown } from '../../src/spec/options.js';
+import { tableMarkdown } from '../../src/spec/option-table.js';
+import { options } from '../../src/spec/options.js';
 import { parseArray } from '../../src/spec/parse-array.js';
 import { parseTechnology } from '../../src/spec/parse-technology.js';
 import { resolveArray } from '../../src/spec/resolve.js';
@@ -155,7 +156,7 @@ describe('the table of options', () => {
     const keys = options.map((o) => o.key);
     expect(Object.keys(schema('array').properties ?? {})).toEqual(['$schema', 'format', 'version', ...keys]);
     expect(new Set(keys).size).toBe(keys.length);
-    const rows = optionsMarkdown().split('\n');
+    const rows = tableMarkdown(options).split('\n');
     for (const { key, help, flag } of options) {
       const row = rows.find((r) => r.startsWith(`| \`${key}\` |`));
       expect(row).toContain(help);
@@ -164,7 +165,7 @@ describe('the table of options', () => {
   });
 
   it('renders as a table of one width', () => {
-    const cells = optionsMarkdown()
+    const cells = tableMarkdown(options)
       .trimEnd()
       .split('\n')
       .map((row) => row.replaceAll('\\|', '').split('|').length);

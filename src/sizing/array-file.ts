@@ -1,0 +1,36 @@
+import type { ArraySpec } from '../spec/array-spec.js';
+import type { ResolvedConverter } from '../spec/converter.js';
+import { options, unitMismatch } from '../spec/options.js';
+import { withUnitOf } from '../spec/scale-unit.js';
+import type { Technology } from '../spec/technology.js';
+import type { Sizing } from './size.js';
+
+/** Keys that an array file may not have yet. */
+const waiting = new Set(options.filter(({ available }) => !available).map(({ key }) => key));
+
+/**
+ * The array file of a sized converter.
+ * @param reference how the file names its technology; absent: the standard one
+ */
+export function arrayFileOf(
+  { unit, array: { bits, weights, limits }, switch: resistances }: Sizing,
+  converter: ResolvedConverter,
+  technology: Technology,
+  reference?: string,
+): ArraySpec {
+  const { mismatch, topLoad_fF } = converter;
+  const drive = resistances?.drive ?? converter.drive;
+  const made = withUnitOf(technology, unit.capacitance_fF);
+  const array: ArraySpec = {
+    format: 'steelyard/array',
+    version: 1,
+    ...(weights ? { weights } : { bits }),
+    ...(reference !== undefined && { technology: reference }),
+    unit_fF: unit.capacitance_fF,
+    ...(mismatch && { mismatch: unitMismatch({ ...made, mismatch: { ...made.mismatch, ...mismatch } }) }),
+    ...(drive && { drive }),
+    ...(topLoad_fF > 0 && { topLoad_fF }),
+    limits,
+  };
+  return Object.fromEntries(Object.entries(array).filter(([key]) => !waiting.has(key))) as unknown as ArraySpec;
+}
