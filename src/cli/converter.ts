@@ -19,7 +19,7 @@ const numberOr = (value: unknown): unknown =>
   typeof value === 'string' && /^[+-]?\d{1,15}(\.\d{1,15})?$/.test(value) ? Number(value) : value;
 
 /** The keys that the command line gives, judged by the rules of a converter file. */
-export function converterOfFlags(flags: ConverterFlags): Partial<Converter> {
+function converterOfFlags(flags: ConverterFlags): Partial<Converter> {
   const given: Record<string, unknown> = {};
   const longOf = new Map<string, string>();
   for (const { key, flag } of converterOptions) {

@@ -18,7 +18,7 @@ export interface SizeFlags extends ConverterFlags {
 }
 
 /** A plate that is no whole number of units, and what etching leaves of its ratio. */
-export type Ratioed = NonUnitPlate & { readonly etchResidue?: number };
+type Ratioed = NonUnitPlate & { readonly etchResidue?: number };
 
 const mostUnits = 16383;
 

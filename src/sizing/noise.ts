@@ -14,7 +14,7 @@ export const thermalNoise_uV = (capacitance_fF: number, temperature_K: number): 
   Math.sqrt((BOLTZMANN * temperature_K) / (capacitance_fF * FEMTO)) / MICRO;
 
 /** An LSB in microvolts. */
-export const lsb_uV = ({ bits, fullScale_Vpp }: Pick<Sized, 'bits' | 'fullScale_Vpp'>): number =>
+const lsb_uV = ({ bits, fullScale_Vpp }: Pick<Sized, 'bits' | 'fullScale_Vpp'>): number =>
   fullScale_Vpp / powerOfTwo(bits) / MICRO;
 
 export function quantizationNoise(converter: Sized): Worked {

@@ -3,7 +3,7 @@ import { digits } from './worked.js';
 import type { Worked } from './worked.js';
 
 /** Clock cycles of a conversion: two to sample, one for each decision. */
-export const cyclesOf = (decisions: number): number => decisions + 2;
+const cyclesOf = (decisions: number): number => decisions + 2;
 
 /** Time constants until half an LSB is left of a full-scale step: (N + 1) ln 2. */
 export const timeConstants = (bits: number): number => (bits + 1) * Math.LN2;

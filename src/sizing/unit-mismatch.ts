@@ -14,7 +14,7 @@ interface SigmaFactor {
 }
 
 /** Sigmas that a limit stands for. */
-export const SIGMAS = 3;
+const SIGMAS = 3;
 
 /**
  * Sigma of INL and DNL of a converter with independent units, exact to first order (end-point line), at the worst code.
@@ -56,7 +56,7 @@ export function unitSigma(converter: Sized): Worked {
   ].flatMap(({ of, limit, factor }) =>
     limit === undefined ? [] : [{ of, limit, factor, value: (100 * limit) / (SIGMAS * factor.value) }],
   );
-  const least = demands.reduce((a, b) => (b.value < a.value ? b : a), demands[0]!);
+  const least = demands.reduce((a, b) => (b.value < a.value ? b : a), demands[0]);
   return {
     name: 'mismatch',
     value: least.value,
