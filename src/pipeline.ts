@@ -25,7 +25,7 @@ import { type LeastOfReflected, provedClass } from './linearity/proved.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
 import { ringsToReach, unitMismatch } from './spec/options.js';
 import { workFor } from './placement/effort.js';
-import { arrangementOf, type Blend, recipes, weighingOf, weighings, workOf } from './placement/emphasis.js';
+import { arrangementOf, type Blend, heatOf, recipes, weighingOf, weighings, workOf } from './placement/emphasis.js';
 import { isSearchable } from './placement/exact-search.js';
 import { firstOrderBound } from './placement/first-order-bound.js';
 import { ProvingSearch } from './placement/proving-search.js';
@@ -131,6 +131,8 @@ const BEYOND_LIMIT = 80;
  */
 const chessboardSigma = (units: number): number =>
   Math.sqrt(units) * (0.168 - 0.00024 * Math.max(0, Math.sqrt(units) - 16));
+/** What a chessboard's column nets come to: exactly so for an even number of bits. */
+const chessboardNets = (units: number): number => 3 * (Math.sqrt(units + 1) - 1);
 /** One um of first order against one um^2 of second. */
 const FIRST_BEFORE_ALL = 1e3;
 
@@ -360,7 +362,7 @@ function searchOptions(
         ...grid,
         nets,
         random: new Random(spec.seed, start),
-        arrangement: arrangementOf(cost, start, () => columnCorrelation(correlation)),
+        arrangement: arrangementOf(cost, start, chessboardNets(total), () => columnCorrelation(correlation)),
       }),
     terms: (deal) => [
       // Where the first order is 0 by the deal this term stays 0; elsewhere it comes before all others.
@@ -369,7 +371,14 @@ function searchOptions(
         term: bentTerm(secondOrderTerm(deal, pitch), cost.limit * reference, BEYOND_LIMIT),
         weight: cost.second / reference,
       },
-      ...(cost.nets > 0 ? [{ term: columnNetsTerm(deal), weight: cost.nets / fewestNets }] : []),
+      ...(cost.nets > 0
+        ? [
+            {
+              term: bentTerm(columnNetsTerm(deal), cost.netsLimit * chessboardNets(total), BEYOND_LIMIT),
+              weight: cost.nets / fewestNets / BEYOND_LIMIT,
+            },
+          ]
+        : []),
       ...(cost.mismatch > 0
         ? [
             {
@@ -380,6 +389,7 @@ function searchOptions(
         : []),
     ],
     ...workOf(cost, workFor(effort, total), total),
+    heat: (start) => heatOf(cost, start),
     seed: spec.seed,
     stopWhen: ({ dealing }) =>
       cost === weighings.gradient && bound?.squared === secondOrderInl(dealing.deal, pitch).squared,

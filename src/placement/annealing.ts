@@ -65,7 +65,8 @@ export class AnnealedStart {
   #j = 0;
   #sinceGain = 0;
 
-  constructor(dealing: Dealing, terms: readonly WeightedTerm[], work: number, random: Random) {
+  /** @param heat what cooling begins at, over the mean change by an exchange: below 1 much of what was dealt stays as it is. */
+  constructor(dealing: Dealing, terms: readonly WeightedTerm[], work: number, random: Random, heat = 1) {
     this.dealing = dealing;
     this.#terms = terms.map(({ term }) => term);
     this.#weights = Float64Array.from(terms, ({ weight }) => weight);
@@ -86,11 +87,11 @@ export class AnnealedStart {
     this.#work = Math.max(1, Math.floor(work));
     this.#trialsPerLevel = Math.max(1, Math.floor((COOLING * this.#work) / LEVELS));
     this.#trialsLeft = this.#trialsPerLevel;
-    this.#cooling = exp(ln(COLDEST) / (LEVELS - 1));
+    this.#cooling = exp(ln(COLDEST / heat) / (LEVELS - 1));
     this.#cost = this.#bestCost = this.#recount();
     this.#best = nets.slice();
     this.#done = this.#cost === 0 || segments.length === 0;
-    this.#temperature = this.#done ? 0 : this.#meanChange();
+    this.#temperature = this.#done ? 0 : this.#meanChange() * heat;
   }
 
   get done(): boolean {

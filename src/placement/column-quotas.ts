@@ -5,8 +5,10 @@ import type { Random } from '../core/random.js';
 export interface Dispersion {
   /** [class * classes + class]: sum of the correlations of a pair in the one class with a pair in the other. */
   readonly kernel: Float64Array;
-  /** Of 1 LSB of sigma INL, the root mean square over all codes, per sigma of a unit. */
+  /** Of 1 LSB of sigma INL, the root mean square over all codes, per sigma of a unit; what the annealing begins with. */
   readonly price: number;
+  /** (column, net) pairs that there may be. Dispersion costs less as long as there are more, and more as long as there are fewer. */
+  readonly netsLimit: number;
 }
 
 export interface ColumnQuotaRequest {
@@ -34,7 +36,13 @@ export interface ColumnQuotaRequest {
 const LEVELS = 100;
 const HOTTEST = 4;
 const COLDEST = 0.02;
-const MOVES_PER_ENTRY = 5000;
+const MOVES_PER_ENTRY = 20_000;
+/** One move in so many exchanges two whole classes of columns. */
+const WHOLE_CLASSES = 16;
+/** What the moment costs at the end, over what it costs in the beginning: while hot, columns are shared out; then the moment is trimmed. */
+const HARDENING = 5;
+/** The price of dispersion follows the column nets from the level where these begin to settle to the last few, when it stands still. */
+const FOLLOWED = { from: 30, to: 70, step: 1.05 };
 
 /**
  * How many pairs of each net to put into each class of columns, so that few columns hold a net while the second moment across the
@@ -44,113 +52,220 @@ const MOVES_PER_ENTRY = 5000;
  * Random mismatch, where it counts, costs the root of 1/4 sum_k q_k' K q_k, q_k = the net's pairs by class minus its share of all pairs, K
  * the correlation between classes: that of a placement whose columns have each net's cells evenly spread.
  *
- * Annealed on the table of quotas itself, where a whole lot of a net changes places with as much of another in one move; where in their
- * columns the cells stand is left to the search.
+ * Annealed on the table of quotas itself: a lot of a net changes places with as much of another, or two classes with each other, in one
+ * move; where in their columns the cells stand is left to the search.
  *
  * @returns [net * classes + class].
  */
 export function columnQuotas(request: ColumnQuotaRequest): Int32Array {
-  const { capacity, width, square, pairs, weight, present, random } = request;
-  const classes = capacity.length;
-  const nets = pairs.length;
-  const fill = nets - 1;
-  const total = weight.reduce((sum, w) => sum + w, 0);
-  const quota = firstQuotas(capacity, pairs);
-  const moment = Float64Array.from(request.moment);
-  for (let net = 0; net < nets; net++) {
-    for (let c = 0; c < classes; c++) moment[net] += 2 * quota[net * classes + c] * square[c];
-  }
-  const holds = (net: number, c: number): number => {
-    if (net === fill) return 0;
-    const i = net * classes + c;
-    return quota[i] > 0 ? width[c] : present[i];
-  };
-  const residue = (): number => {
-    let sum = 0;
-    let bits = 0;
-    for (let net = 0; net < nets; net++) if (weight[net] > 0) bits += moment[net];
-    for (let net = 0; net < nets; net++)
-      if (weight[net] > 0) sum += Math.abs(moment[net] - (weight[net] / total) * bits);
-    return bits > 0 ? (request.price * sum * total) / (2 * bits) : 0;
-  };
-  const move = (p: number, c: number, q: number, d: number, count: number): void => {
-    quota[p * classes + c] -= count;
-    quota[p * classes + d] += count;
-    quota[q * classes + d] -= count;
-    quota[q * classes + c] += count;
-    const shift = 2 * count * (square[d] - square[c]);
-    moment[p] += shift;
-    moment[q] -= shift;
-  };
-  const kernel = request.dispersion?.kernel;
-  const sigmaPrice = request.dispersion?.price ?? 0;
-  // field[net * classes + c] = (K q_net)_c; the fill disturbs nobody.
-  const field = new Float64Array(nets * classes);
-  const addToField = (net: number, c: number, count: number): void => {
-    if (kernel === undefined || net === fill) return;
-    for (let d = 0; d < classes; d++) field[net * classes + d] += count * kernel[c * classes + d];
-  };
-  // The largest bit counts three times, as in the search that follows.
-  const largest = weight.reduce((a, b) => Math.max(a, b), 0);
-  const times = weight.map((w) => (w > 0 && w === largest ? 3 : 1));
-  let variance = 0;
-  for (let net = 0; net < fill; net++) {
-    if (weight[net] === 0) continue;
-    const pairsOff = (c: number) => quota[net * classes + c] - (weight[net] / total) * capacity[c];
-    for (let c = 0; c < classes; c++) addToField(net, c, pairsOff(c));
-    for (let c = 0; c < classes; c++) variance += times[net] * pairsOff(c) * field[net * classes + c];
-  }
-  /** What the variance changes by if `count` pairs of a net go from class c to class d. */
-  const varianceOf = (net: number, c: number, d: number, count: number): number => {
-    if (kernel === undefined || net === fill || weight[net] === 0) return 0;
-    const within = kernel[c * classes + c] + kernel[d * classes + d] - 2 * kernel[c * classes + d];
-    return times[net] * count * (2 * (field[net * classes + d] - field[net * classes + c]) + count * within);
-  };
-  const sigma = (v: number): number => sigmaPrice * 0.5 * Math.sqrt(v > 0 ? v : 0);
-  const around = (p: number, c: number, q: number, d: number): number =>
-    holds(p, c) + holds(p, d) + holds(q, c) + holds(q, d);
-
-  let least = Infinity;
-  let best = quota.slice();
-  let columnNets = 0;
-  for (let net = 0; net < nets; net++) for (let c = 0; c < classes; c++) columnNets += holds(net, c);
-  let spread = residue();
+  const { random } = request;
+  const table = new QuotaTable(request);
   const cooling = exp(ln(COLDEST / HOTTEST) / (LEVELS - 1));
-  const moves = Math.ceil((MOVES_PER_ENTRY * nets * classes) / LEVELS);
+  const hardening = exp(ln(HARDENING) / (LEVELS - 1));
+  const moves = Math.ceil((MOVES_PER_ENTRY * table.nets * table.classes) / LEVELS);
   let temperature = HOTTEST;
+  const accepts = (more: number): boolean =>
+    more <= 0 || more <= -temperature * ln((random.bits() + 0.5) / 0x1_0000_0000);
   for (let level = 0; level < LEVELS; level++) {
     for (let n = 0; n < moves; n++) {
-      const p = random.below(nets);
-      const q = random.below(nets);
-      const c = random.below(classes);
-      const d = random.below(classes);
-      const most = Math.min(quota[p * classes + c], quota[q * classes + d]);
-      if (p === q || c === d || most === 0) continue;
-      const count = random.below(2) === 0 ? most : 1 + random.below(most);
-      const before = around(p, c, q, d);
-      const moved = varianceOf(p, c, d, count) + varianceOf(q, d, c, count);
-      move(p, c, q, d, count);
-      const change = around(p, c, q, d) - before;
-      const now = residue();
-      const more = change + now - spread + sigma(variance + moved) - sigma(variance);
-      if (more <= 0 || more <= -temperature * ln((random.bits() + 0.5) / 0x1_0000_0000)) {
-        columnNets += change;
-        spread = now;
-        variance += moved;
-        addToField(p, c, -count);
-        addToField(p, d, count);
-        addToField(q, d, -count);
-        addToField(q, c, count);
-        const cost = columnNets + spread + sigma(variance);
-        if (cost < least) {
-          least = cost;
-          best = quota.slice();
-        }
-      } else move(p, d, q, c, count);
+      const c = random.below(table.classes);
+      const d = random.below(table.classes);
+      if (random.below(WHOLE_CLASSES) === 0) table.exchangeClasses(c, d, accepts);
+      else table.exchangeLots(random.below(table.nets), c, random.below(table.nets), d, random, accepts);
     }
     temperature *= cooling;
+    if (level === LEVELS - 1) break;
+    const follows = level >= FOLLOWED.from && level < FOLLOWED.to;
+    table.reprice(hardening, follows ? FOLLOWED.step : 1);
   }
-  return best;
+  return table.best;
+}
+
+type Accepts = (more: number) => boolean;
+
+/** The table of quotas with what it costs, and the least that was met at the present price of the moment. */
+class QuotaTable {
+  readonly nets: number;
+  readonly classes: number;
+  readonly #request: ColumnQuotaRequest;
+  readonly #fill: number;
+  /** Sum of the weights. */
+  readonly #total: number;
+  readonly #quota: Int32Array;
+  /** [net]: second moment across the columns. */
+  readonly #moment: Float64Array;
+  /** [net * classes + class]: (K q_net); the fill disturbs nobody. */
+  readonly #field: Float64Array;
+  /** [net]: how often its variance counts. The largest bit's counts three times, as in the search that follows. */
+  readonly #times: readonly number[];
+  /** [net]: what goes from one class to another in the exchange under way. */
+  readonly #going: Int32Array;
+  #price: number;
+  #sigmaPrice: number;
+  #columnNets = 0;
+  #spread: number;
+  #variance = 0;
+  #least: number;
+  #best: Int32Array;
+
+  constructor(request: ColumnQuotaRequest) {
+    const { capacity, width, square, pairs, weight } = request;
+    this.#request = request;
+    const nets = (this.nets = pairs.length);
+    const classes = (this.classes = capacity.length);
+    this.#fill = nets - 1;
+    this.#total = weight.reduce((sum, w) => sum + w, 0);
+    this.#quota = firstQuotas(capacity, pairs);
+    this.#moment = Float64Array.from(request.moment);
+    this.#field = new Float64Array(nets * classes);
+    const largest = weight.reduce((a, b) => Math.max(a, b), 0);
+    this.#times = weight.map((w) => (w > 0 && w === largest ? 3 : 1));
+    this.#going = new Int32Array(nets);
+    this.#price = request.price;
+    this.#sigmaPrice = request.dispersion?.price ?? 0;
+    for (let net = 0; net < nets; net++) {
+      for (let c = 0; c < classes; c++) {
+        this.#moment[net] += 2 * this.#quota[net * classes + c] * square[c];
+        this.#columnNets += this.#holds(net, c, width);
+      }
+      if (weight[net] === 0) continue;
+      const pairsOff = (c: number) => this.#quota[net * classes + c] - (weight[net] / this.#total) * capacity[c];
+      for (let c = 0; c < classes; c++) this.#addToField(net, c, pairsOff(c));
+      for (let c = 0; c < classes; c++)
+        this.#variance += this.#times[net] * pairsOff(c) * this.#field[net * classes + c];
+    }
+    this.#spread = this.#residue();
+    this.#least = this.#cost();
+    this.#best = this.#quota.slice();
+  }
+
+  get best(): Int32Array {
+    return this.#best;
+  }
+
+  /**
+   * From now on the moment costs `harder` times as much, and dispersion `step` times as much as it did or its inverse, as the column nets
+   * ask for; what was the least before is forgotten.
+   */
+  reprice(harder: number, step: number): void {
+    this.#price *= harder;
+    const { dispersion } = this.#request;
+    if (dispersion !== undefined) this.#sigmaPrice *= this.#columnNets > dispersion.netsLimit ? 1 / step : step;
+    this.#spread = this.#residue();
+    this.#least = Infinity;
+    this.#keep();
+  }
+
+  /** A lot of net p in class c for as much of net q in class d: all that can be, every other time. */
+  exchangeLots(p: number, c: number, q: number, d: number, random: Random, accepts: Accepts): void {
+    const { classes } = this;
+    const most = Math.min(this.#quota[p * classes + c], this.#quota[q * classes + d]);
+    if (p === q || c === d || most === 0) return;
+    const going = random.below(2) === 0 ? most : 1 + random.below(most);
+    this.#going.fill(0);
+    this.#going[p] = going;
+    this.#going[q] = -going;
+    this.#try(c, d, [p, q], accepts);
+  }
+
+  /** All that is in class c for all that is in class d. */
+  exchangeClasses(c: number, d: number, accepts: Accepts): void {
+    const { capacity, width } = this.#request;
+    if (c === d || capacity[c] !== capacity[d] || width[c] !== width[d]) return;
+    const nets = this.#everyNet;
+    for (const net of nets)
+      this.#going[net] = this.#quota[net * this.classes + c] - this.#quota[net * this.classes + d];
+    this.#try(c, d, nets, accepts);
+  }
+
+  get #everyNet(): readonly number[] {
+    return this.#times.map((_, net) => net);
+  }
+
+  /** Takes `#going` of the nets from class c to class d, and back if that is not accepted. */
+  #try(c: number, d: number, nets: readonly number[], accepts: Accepts): void {
+    const { width } = this.#request;
+    let change = 0;
+    let moved = 0;
+    for (const net of nets) {
+      moved += this.#varianceOf(net, c, d, this.#going[net]);
+      change -= this.#holds(net, c, width) + this.#holds(net, d, width);
+      this.#shift(net, c, d, this.#going[net]);
+      change += this.#holds(net, c, width) + this.#holds(net, d, width);
+    }
+    const spread = this.#residue();
+    const sigmas = this.#sigma(this.#variance + moved) - this.#sigma(this.#variance);
+    if (!accepts(change + spread - this.#spread + sigmas)) {
+      for (const net of nets) this.#shift(net, c, d, -this.#going[net]);
+      return;
+    }
+    for (const net of nets) {
+      this.#addToField(net, c, -this.#going[net]);
+      this.#addToField(net, d, this.#going[net]);
+    }
+    this.#columnNets += change;
+    this.#spread = spread;
+    this.#variance += moved;
+    this.#keep();
+  }
+
+  #keep(): void {
+    const cost = this.#cost();
+    if (cost >= this.#least) return;
+    this.#least = cost;
+    this.#best = this.#quota.slice();
+  }
+
+  #cost(): number {
+    return this.#columnNets + this.#spread + this.#sigma(this.#variance);
+  }
+
+  #shift(net: number, c: number, d: number, count: number): void {
+    const { square } = this.#request;
+    this.#quota[net * this.classes + c] -= count;
+    this.#quota[net * this.classes + d] += count;
+    this.#moment[net] += 2 * count * (square[d] - square[c]);
+  }
+
+  /** Columns of a class that hold a net. */
+  #holds(net: number, c: number, width: readonly number[]): number {
+    if (net === this.#fill) return 0;
+    const i = net * this.classes + c;
+    return this.#quota[i] > 0 ? width[c] : this.#request.present[i];
+  }
+
+  #residue(): number {
+    const { weight } = this.#request;
+    let bits = 0;
+    for (let net = 0; net < this.nets; net++) if (weight[net] > 0) bits += this.#moment[net];
+    if (bits === 0) return 0;
+    let sum = 0;
+    for (let net = 0; net < this.nets; net++)
+      if (weight[net] > 0) sum += Math.abs(this.#moment[net] - (weight[net] / this.#total) * bits);
+    return (this.#price * sum * this.#total) / (2 * bits);
+  }
+
+  #sigma(variance: number): number {
+    return this.#sigmaPrice * 0.5 * Math.sqrt(variance > 0 ? variance : 0);
+  }
+
+  /** What the variance changes by if `count` pairs of a net go from class c to class d. */
+  #varianceOf(net: number, c: number, d: number, count: number): number {
+    const { dispersion, weight } = this.#request;
+    if (dispersion === undefined || weight[net] === 0) return 0;
+    const { classes } = this;
+    const { kernel } = dispersion;
+    const field = this.#field;
+    const within = kernel[c * classes + c] + kernel[d * classes + d] - 2 * kernel[c * classes + d];
+    return this.#times[net] * count * (2 * (field[net * classes + d] - field[net * classes + c]) + count * within);
+  }
+
+  #addToField(net: number, c: number, count: number): void {
+    const kernel = this.#request.dispersion?.kernel;
+    if (kernel === undefined || count === 0) return;
+    const { classes } = this;
+    for (let d = 0; d < classes; d++) this.#field[net * classes + d] += count * kernel[c * classes + d];
+  }
 }
 
 /** Large nets first, class after class. */

@@ -226,8 +226,31 @@ function dealPairs(
     random,
   });
   inClass.forEach((cells, c) => {
-    const nets = shares.flatMap((share, i) => Array<number>(quota[i * classes + c]).fill(share.net));
-    cells.forEach((cell, i) => add(blocks, [cell, last - cell], nets[i], FIRST_CLASS + c));
+    const inRows = [...cells].sort((a, b) => a - b);
+    const counts = shares.map((_, i) => quota[i * classes + c]);
+    evenly(counts, random).forEach((i, row) =>
+      add(blocks, [inRows[row], last - inRows[row]], shares[i].net, FIRST_CLASS + c),
+    );
+  });
+}
+
+/**
+ * Who stands where in a row of places, so that each is spread evenly: `counts[i]` places for i. Every place goes to the one that lags
+ * most behind its share, beginning with lags of chance.
+ */
+function evenly(counts: readonly number[], random: Random): number[] {
+  const places = counts.reduce((sum, count) => sum + count, 0);
+  const left = [...counts];
+  const lag = counts.map(() => random.below(1024) / 1024);
+  return Array.from({ length: places }, () => {
+    let next = -1;
+    counts.forEach((count, i) => {
+      lag[i] += count / places;
+      if (left[i] > 0 && (next < 0 || lag[i] > lag[next])) next = i;
+    });
+    lag[next] -= 1;
+    left[next] -= 1;
+    return next;
   });
 }
 

@@ -18,6 +18,8 @@ export interface Weighing {
   /** Up to this multiple mismatch hardly counts, beyond it heavily. */
   readonly mismatchLimit: number;
   readonly nets: number;
+  /** Column nets up to this multiple of a chessboard's hardly count, beyond it heavily. */
+  readonly netsLimit: number;
   /** The core's other orientation is as good if its second order is within this multiple of the better one's: the fewer column nets decide. */
   readonly orientation: number;
   /** The deals of the starts, in turn. */
@@ -27,21 +29,40 @@ export interface Weighing {
 const freely: readonly ColumnPlan[] = [null];
 
 export const weighings: Readonly<Record<Emphasis, Weighing>> = {
-  gradient: { second: 1, limit: Infinity, mismatch: 0, mismatchLimit: 0, nets: 0, orientation: 1, plans: freely },
-  dispersed: { second: 0.1, limit: 1.2, mismatch: 3, mismatchLimit: 0, nets: 0, orientation: 1, plans: freely },
-  balanced: {
+  gradient: {
+    second: 1,
+    limit: Infinity,
+    mismatch: 0,
+    mismatchLimit: 0,
+    nets: 0,
+    netsLimit: 0,
+    orientation: 1,
+    plans: freely,
+  },
+  dispersed: {
     second: 0.3,
-    limit: 1.3,
-    mismatch: 0.2,
-    mismatchLimit: 1.13,
-    nets: 4,
+    limit: 1.2,
+    mismatch: 3,
+    mismatchLimit: 0,
+    nets: 0,
+    netsLimit: 0,
+    orientation: 1,
+    plans: freely,
+  },
+  balanced: {
+    second: 0.2,
+    limit: 1.35,
+    mismatch: 0.6,
+    mismatchLimit: 0,
+    nets: 10,
+    netsLimit: 0.745,
     orientation: 1.05,
     plans: [
-      { moment: 1, dispersion: 10 },
-      { moment: 2, dispersion: 8 },
-      { moment: 1, dispersion: 7 },
-      { moment: 1, dispersion: 13 },
-      { moment: 3, dispersion: 10 },
+      { moment: 0.4, dispersion: 10 },
+      { moment: 0.6, dispersion: 10 },
+      { moment: 0.8, dispersion: 12 },
+      { moment: 0.4, dispersion: 8 },
+      { moment: 1.2, dispersion: 10 },
       null,
     ],
   },
@@ -51,12 +72,13 @@ export const weighings: Readonly<Record<Emphasis, Weighing>> = {
     mismatch: 0,
     mismatchLimit: 0,
     nets: 6,
+    netsLimit: 0,
     orientation: Infinity,
     plans: [
       { moment: 0.7, dispersion: 0 },
-      { moment: 0.85, dispersion: 0 },
+      { moment: 0.5, dispersion: 0 },
       { moment: 1, dispersion: 0 },
-      { moment: 0.6, dispersion: 0 },
+      { moment: 0.35, dispersion: 0 },
       { moment: 1.3, dispersion: 0 },
       null,
     ],
@@ -81,6 +103,7 @@ export function weighingOf(emphasis: Emphasis, blend?: Blend): Weighing {
     mismatch: between(from.mismatch, to.mismatch),
     mismatchLimit: between(from.mismatchLimit, to.mismatchLimit),
     nets: between(from.nets, to.nets),
+    netsLimit: between(from.netsLimit, to.netsLimit),
     orientation: share < 0.5 ? from.orientation : to.orientation,
     plans: share < 0.5 ? from.plans : to.plans,
   };
@@ -99,23 +122,45 @@ export const recipes: readonly { readonly emphasis: Emphasis; readonly blend?: B
 ];
 
 /** How a start deals; `kernel` is the correlation between columns, made only where a plan asks for it. */
-export function arrangementOf({ plans }: Weighing, start: number, kernel: () => Dispersion['kernel']): Arrangement {
+export function arrangementOf(
+  { plans, netsLimit }: Weighing,
+  start: number,
+  chessboardNets: number,
+  kernel: () => Dispersion['kernel'],
+): Arrangement {
   const plan = plans[start % plans.length];
   if (plan === null) return 'scattered';
   return {
     columns: {
       momentPrice: plan.moment,
-      ...(plan.dispersion > 0 && { dispersion: { kernel: kernel(), price: plan.dispersion } }),
+      ...(plan.dispersion > 0 && {
+        dispersion: {
+          kernel: kernel(),
+          price: plan.dispersion,
+          netsLimit: netsLimit * chessboardNets,
+        },
+      }),
     },
   };
 }
+
+/** Where a plan has spread the nets evenly along their columns, a start cools from so little that it stays so. */
+const KEEPS_THE_DEAL = 0.005;
+
+/** What the cooling of a start begins at, over the mean change by an exchange. */
+export const heatOf = ({ plans }: Weighing, start: number): number =>
+  (plans[start % plans.length]?.dispersion ?? 0) > 0 ? KEEPS_THE_DEAL : 1;
 
 /**
  * The work of one search. An accepted exchange costs the mismatch term a sweep over the whole core, so where it counts a large array gets
  * fewer trials.
  */
 export function workOf(weighing: Weighing, work: Work, units: number): Work {
-  if (weighing.mismatch === 0) return work;
+  if (weighing.mismatch === 0) {
+    const { starts, workPerStart } = work;
+    // How few nets there are is decided by the plan: many of them, and a shorter search after each.
+    return weighing.nets > 0 ? { starts: 2 * starts, workPerStart: Math.ceil(workPerStart / 2) } : work;
+  }
   const large = units > 2000;
   const share = large ? 1 / 2 : 1;
   // Different plans want a start each; without a plan a long start is worth more than several short ones.

@@ -14,6 +14,8 @@ export interface SearchOptions {
   /** Trial exchanges of each start. */
   readonly workPerStart: number;
   readonly seed: number;
+  /** What the cooling of a numbered start begins at, over the mean change by an exchange; 1 if not given. */
+  readonly heat?: (start: number) => number;
   /** Asked after each start about the best so far; true (no better one exists) leaves out the starts of higher numbers. */
   readonly stopWhen?: (best: Best) => boolean;
 }
@@ -46,11 +48,18 @@ export class SearchStart {
   readonly #run: AnnealedStart;
   #work = 0;
 
-  constructor({ deals, terms, workPerStart, seed }: Omit<SearchOptions, 'starts' | 'stopWhen'>, start: number) {
+  constructor(options: Omit<SearchOptions, 'starts' | 'stopWhen'>, start: number) {
+    const { deals, terms, workPerStart, seed, heat } = options;
     const dealing = deals(start);
     this.#start = start;
     // Streams from -1 down: those from 0 up are left to whoever deals the numbered starts from the same seed.
-    this.#run = new AnnealedStart(dealing, terms(dealing.deal), workPerStart, new Random(seed, -1 - start));
+    this.#run = new AnnealedStart(
+      dealing,
+      terms(dealing.deal),
+      workPerStart,
+      new Random(seed, -1 - start),
+      heat?.(start),
+    );
   }
 
   get done(): boolean {
