@@ -2,7 +2,8 @@
 export { layerDensities } from './check/density.js';
 export { checkFloorplan, comparePolygons } from './check/floorplan.js';
 export type { Finding } from './check/finding.js';
-export { checkPolygons } from './check/polygons.js';
+export type { Likeness, Neighbourhood } from './check/neighbourhood.js';
+export { checkPolygons, judgePolygons } from './check/polygons.js';
 export { compare } from './comparison/compare.js';
 export type { Candidate, CompareOptions, Comparison } from './comparison/compare.js';
 export { comparedFigures, figuresOf } from './comparison/figures.js';

@@ -1,7 +1,8 @@
 import { bentTerm } from './array/bent-term.js';
 import { candidateCores, type CoreGrid } from './array/core-grid.js';
 import { checkFloorplan } from './check/floorplan.js';
-import { checkPolygons } from './check/polygons.js';
+import type { Neighbourhood } from './check/neighbourhood.js';
+import { judgePolygons } from './check/polygons.js';
 import { Candidates } from './comparison/candidates.js';
 import type { Finding } from './check/finding.js';
 import { figure } from './core/figure.js';
@@ -54,6 +55,8 @@ export interface Drawn {
   readonly metrics: Metrics;
   readonly gradient: GradientFigures;
   readonly findings: readonly Finding[];
+  /** How alike the surroundings of the units are. */
+  readonly neighbourhood?: Neighbourhood;
   /** What the user should know before using the result; a sentence each. */
   readonly warnings: readonly string[];
   /** What was decided on the way; a sentence each. */
@@ -556,13 +559,15 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       mismatch: analyseMismatch({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology)).figures,
       ...figures,
     };
-    const findings = [...checkFloorplan(complete), ...(polygons ? checkPolygons(polygons) : [])];
+    const judged = polygons && judgePolygons(polygons);
+    const findings = [...checkFloorplan(complete), ...(judged?.findings ?? [])];
     return {
       floorplan: complete,
       ...(polygons && { polygons }),
       metrics,
       gradient: analysed,
       findings,
+      ...(judged && { neighbourhood: judged.neighbourhood }),
       warnings: [],
       notes,
     };

@@ -4,7 +4,9 @@ import { checkConnectivity } from './connectivity.js';
 import { coveredArea, Drawing } from './drawing.js';
 import type { Finding } from './finding.js';
 import { inOrder, placeUm } from './finding.js';
-import { pieceNames, pinLabels } from './nets.js';
+import { checkLattice } from './lattice.js';
+import { type BitUnit, type Neighbourhood, neighbourhoodOf } from './neighbourhood.js';
+import { commonPlate, pieceNames, pinLabels } from './nets.js';
 import { checkShapes } from './shape-rules.js';
 import { unitsOf } from './unit-recognition.js';
 import { checkUnits } from './units.js';
@@ -35,27 +37,46 @@ function checkLayers(drawing: Drawing): Finding[] {
   return findings;
 }
 
+/** What a drawing is worth by itself. */
+export interface Verdict {
+  /** In a fixed order; none for a sound drawing. */
+  readonly findings: readonly Finding[];
+  readonly neighbourhood: Neighbourhood;
+}
+
 /**
- * Checks a drawing from its polygons alone, against its own technology, capacitors and cells. Never looks at `net` or `part`: shapes
- * that touch are one piece, and pin labels name pieces.
+ * Checks a drawing from its polygons alone, against its own technology, capacitors and cells, and tells how alike the surroundings of its
+ * units are. Never looks at `net` or `part`: shapes that touch are one piece, and pin labels name pieces.
  *
- * @returns the findings in a fixed order; none for a sound drawing.
  * @throws InputError if the structures cannot be flattened (`flatten`).
  */
-export function checkPolygons(p: Polygons): Finding[] {
+export function judgePolygons(p: Polygons): Verdict {
   const drawing = new Drawing(p);
   const { technology } = p;
   const c = conductorsOf(drawing);
   const { labels, findings } = pinLabels(drawing, c);
   const names = pieceNames(labels, c);
   const found = unitsOf(drawing, c);
-  return inOrder([
-    ...findings,
-    ...checkVertices(drawing),
-    ...technology.layers.flatMap((layer) => checkShapes(drawing.sheet(layer.name).slabs, layer)),
-    ...technology.vias.flatMap((via) => checkVia(drawing, via)),
-    ...checkLayers(drawing),
-    ...checkConnectivity(drawing, { c, labels, names, units: found.units }),
-    ...checkUnits(drawing, found, p.capacitors, { c, labels, names }),
-  ]);
+  const bits = new Set(p.capacitors.filter(({ role }) => role === 'bit').map(({ name }) => name));
+  const isOn = (node: number, net: string) => names.get(c.piece[node])?.includes(net) ?? false;
+  const ofBits = found.units.flatMap((unit): BitUnit[] => {
+    const capacitor = names.get(c.piece[unit.bottom[0]])?.find((net) => bits.has(net));
+    return capacitor !== undefined && isOn(unit.top[0], commonPlate) ? [{ ...unit, capacitor }] : [];
+  });
+  return {
+    findings: inOrder([
+      ...findings,
+      ...checkVertices(drawing),
+      ...technology.layers.flatMap((layer) => checkShapes(drawing.sheet(layer.name).slabs, layer)),
+      ...technology.vias.flatMap((via) => checkVia(drawing, via)),
+      ...checkLayers(drawing),
+      ...checkConnectivity(drawing, { c, labels, names, units: found.units }),
+      ...checkUnits(drawing, found, p.capacitors, { c, labels, names }),
+      ...checkLattice(drawing, [{ all: found.units, ofBits }]),
+    ]),
+    neighbourhood: neighbourhoodOf(drawing, c, [ofBits], (node) => isOn(node, commonPlate)),
+  };
 }
+
+/** The findings alone. @throws as `judgePolygons` */
+export const checkPolygons = (p: Polygons): readonly Finding[] => judgePolygons(p).findings;

@@ -70,13 +70,13 @@ function plates(drawing: Drawing, c: Conductors, template: ParallelPlateUnit): R
       for (const j of bottoms.index.search(x0[i], y0[i], x1[i], y1[i]))
         if (boxesOverlap(tops.boxes, i, bottoms.boxes, j)) below.add(j);
     if (below.size === 0) continue;
-    const first = part[0];
+    const largest = part.reduce((a, b) => (areaOf(tops.boxes, [b]) > areaOf(tops.boxes, [a]) ? b : a));
     units.push({
       top: part.map((i) => baseOf(c, roles.topPlate) + i),
       bottom: [...below].sort((a, b) => a - b).map((j) => baseOf(c, roles.bottomPlate) + j),
-      cell: cell[first],
-      x: (x0[first] + x1[first]) / 2,
-      y: (y0[first] + y1[first]) / 2,
+      cell: cell[largest],
+      x: (x0[largest] + x1[largest]) / 2,
+      y: (y0[largest] + y1[largest]) / 2,
       body: part.map((i) => rectangle(x0[i] - enclosure, y0[i] - enclosure, x1[i] + enclosure, y1[i] + enclosure)),
     });
   }

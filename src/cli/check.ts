@@ -1,17 +1,18 @@
 import {
   InputError,
   checkFloorplan,
-  checkPolygons,
   comparePolygons,
   drawFloorplan,
   formatJson,
+  judgePolygons,
   parseFloorplan,
   parsePolygons,
 } from '../index.js';
-import type { Finding } from '../index.js';
+import type { Finding, Neighbourhood } from '../index.js';
 import { UsageError, exit, shown } from './fault.js';
 import { formatOf, inFile, readText } from './input.js';
 import type { Io } from './io.js';
+import { neighbourhoodTable } from './neighbourhood.js';
 import { findingLines, lines } from './summary.js';
 import { floorplanToDraw, valueOf } from './technology.js';
 
@@ -22,6 +23,7 @@ export interface CheckFlags {
 
 interface Verdict {
   readonly findings: readonly Finding[];
+  readonly neighbourhood?: Neighbourhood;
   readonly notes: readonly string[];
 }
 
@@ -29,7 +31,8 @@ interface Verdict {
 async function checkDrawn(io: Io, file: string, text: string): Promise<Verdict> {
   const { floorplan, technology, notes } = await floorplanToDraw(io, file, text);
   const drawn = inFile(file, () => drawFloorplan(floorplan, technology, { keepHookup: true }));
-  return { findings: drawn.findings, notes: [...notes, ...drawn.notes] };
+  const { findings, neighbourhood } = drawn;
+  return { findings, ...(neighbourhood && { neighbourhood }), notes: [...notes, ...drawn.notes] };
 }
 
 function checkBoth(file: string, text: string, polygonsFile: string, polygonsText: string): Verdict {
@@ -38,12 +41,13 @@ function checkBoth(file: string, text: string, polygonsFile: string, polygonsTex
   if (!floorplan.ok || !polygons.ok) {
     throw new InputError([floorplan, polygons].flatMap((result) => (result.ok ? [] : result.issues)));
   }
+  const judged = inFile(polygonsFile, () => judgePolygons(polygons.value));
   const findings = [
     ...checkFloorplan(floorplan.value),
-    ...inFile(polygonsFile, () => checkPolygons(polygons.value)),
+    ...judged.findings,
     ...comparePolygons(polygons.value, floorplan.value),
   ];
-  return { findings, notes: [] };
+  return { ...judged, findings, notes: [] };
 }
 
 async function verdict(io: Io, file: string, polygonsFile: string | undefined): Promise<Verdict> {
@@ -52,7 +56,7 @@ async function verdict(io: Io, file: string, polygonsFile: string | undefined): 
   if (polygonsFile === undefined) {
     if (!isPolygons) return checkDrawn(io, file, text);
     const polygons = valueOf(parsePolygons(text, file));
-    return { findings: inFile(file, () => checkPolygons(polygons)), notes: [] };
+    return { ...inFile(file, () => judgePolygons(polygons)), notes: [] };
   }
   if (isPolygons) throw new UsageError(['check: found a polygons file first; wanted the floorplan, then its polygons']);
   return checkBoth(file, text, polygonsFile, await readText(io, polygonsFile));
@@ -65,9 +69,11 @@ export async function check(
   polygonsFile: string | undefined,
   flags: CheckFlags,
 ): Promise<number> {
-  const { findings, notes } = await verdict(io, file, polygonsFile);
+  const { findings, neighbourhood, notes } = await verdict(io, file, polygonsFile);
   if (notes.length > 0) await io.stderr(lines(notes.map(shown)));
-  if (flags.json === true) await io.stdout(formatJson({ findings }));
-  else await io.stdout(lines(findings.length === 0 ? ['no findings'] : findingLines(findings).map(shown)));
+  const said = findings.length === 0 ? ['no findings'] : findingLines(findings);
+  const table = neighbourhood === undefined ? [] : neighbourhoodTable(neighbourhood);
+  if (flags.json === true) await io.stdout(formatJson({ findings, neighbourhood }));
+  else await io.stdout(lines([...said, ...table].map(shown)));
   return findings.length > 0 ? exit.failedCheck : exit.done;
 }

@@ -3,6 +3,7 @@ import { brief, shapeInWords } from '../index.js';
 import type { Capacitor, Drawn, Finding, Floorplan, Metrics } from '../index.js';
 import { shown } from './fault.js';
 import type { Io } from './io.js';
+import { neighbourhoodInWords } from './neighbourhood.js';
 
 type Line = readonly [label: string, text: string, colour?: (text: string) => string];
 
@@ -165,6 +166,7 @@ export function summaryOf(
     const { length } = findings;
     lines.push(length === 0 ? ['check', 'no findings'] : ['check', counted(length, 'finding'), colours.red]);
   }
+  if (drawn.neighbourhood !== undefined) lines.push(['neighbourhood', neighbourhoodInWords(drawn.neighbourhood)]);
   for (const note of drawn.notes) lines.push(['note', note]);
   for (const warning of drawn.warnings) lines.push(['warning', warning, colours.yellow]);
   files.forEach((file, index) => lines.push([index === 0 ? 'files' : '', file]));

@@ -204,20 +204,35 @@ export function slabsOf(edges: WindingEdges): Boxes {
   return slabs.finish();
 }
 
+/** The horizontal edges of boxes that each change the winding number by `by` within. */
+function edgesOf(boxes: Boxes, by: 1 | -1, edges: WindingEdges, at: number): void {
+  const count = boxes.x0.length;
+  for (let side = 0; side < 2; side++) {
+    edges.x0.set(boxes.x0, at + side * count);
+    edges.x1.set(boxes.x1, at + side * count);
+    edges.y.set(side === 0 ? boxes.y0 : boxes.y1, at + side * count);
+    edges.change.fill(side === 0 ? by : -by, at + side * count, at + (side + 1) * count);
+  }
+}
+
+const noEdges = (boxes: number): WindingEdges => ({
+  x0: new Int32Array(2 * boxes),
+  x1: new Int32Array(2 * boxes),
+  y: new Int32Array(2 * boxes),
+  change: new Int8Array(2 * boxes),
+});
+
 /** The union of boxes as slabs (see `slabsOf`), ordered by their tops. */
 export function unitedSlabs(boxes: Boxes): Boxes {
-  const count = boxes.x0.length;
-  const edges = {
-    x0: new Int32Array(2 * count),
-    x1: new Int32Array(2 * count),
-    y: new Int32Array(2 * count),
-    change: new Int8Array(2 * count),
-  };
-  for (let side = 0; side < 2; side++) {
-    edges.x0.set(boxes.x0, side * count);
-    edges.x1.set(boxes.x1, side * count);
-    edges.y.set(side === 0 ? boxes.y0 : boxes.y1, side * count);
-    edges.change.fill(side === 0 ? 1 : -1, side * count, (side + 1) * count);
-  }
+  const edges = noEdges(boxes.x0.length);
+  edgesOf(boxes, 1, edges, 0);
+  return slabsOf(edges);
+}
+
+/** What lies in one of two regions and not in the other, as slabs. Either is given as disjoint boxes: its winding number is 0 or 1. */
+export function differingSlabs(a: Boxes, b: Boxes): Boxes {
+  const edges = noEdges(a.x0.length + b.x0.length);
+  edgesOf(a, 1, edges, 0);
+  edgesOf(b, -1, edges, 2 * a.x0.length);
   return slabsOf(edges);
 }

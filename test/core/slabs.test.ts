@@ -3,7 +3,7 @@ import { describe, expect, it } from 'vitest';
 import { rectanglesOf } from '../../src/core/flatten.js';
 import type { Point } from '../../src/core/layout.js';
 import { Random } from '../../src/core/random.js';
-import { unitedSlabs } from '../../src/core/slabs.js';
+import { differingSlabs, unitedSlabs } from '../../src/core/slabs.js';
 import { boxesFrom, covers, randomBoxes } from './boxes.js';
 
 const side = 14;
@@ -41,6 +41,16 @@ describe('slabs', () => {
     for (let seed = 1; seed <= 300; seed++) {
       const boxes = randomBoxes(new Random(seed), 1 + (seed % 12), side);
       expectSlabs(unitedSlabs(boxes), (x, y) => Array.from(boxes.x0).some((_, i) => covers(boxes, i, x, y)));
+    }
+  });
+
+  it('cover what only one of two random regions covers', () => {
+    for (let seed = 1; seed <= 300; seed++) {
+      const random = new Random(seed);
+      const [a, b] = [0, 1].map(() => unitedSlabs(randomBoxes(random, 1 + random.below(9), side)));
+      const within = (boxes: typeof a, x: number, y: number) => Array.from(boxes.x0).some((_, i) => covers(boxes, i, x, y));
+      expectSlabs(differingSlabs(a, b), (x, y) => within(a, x, y) !== within(b, x, y));
+      expect(differingSlabs(a, a).x0).toHaveLength(0);
     }
   });
 
