@@ -71,9 +71,10 @@ export async function check(
 ): Promise<number> {
   const { findings, neighbourhood, notes } = await verdict(io, file, polygonsFile);
   if (notes.length > 0) await io.stderr(lines(notes.map(shown)));
-  const said = findings.length === 0 ? ['no findings'] : findingLines(findings);
-  const table = neighbourhood === undefined ? [] : neighbourhoodTable(neighbourhood);
+  // How alike surroundings are is worth a look where nothing is wrong.
+  const sound = ['no findings', ...(neighbourhood === undefined ? [] : neighbourhoodTable(neighbourhood))];
+  const said = findings.length === 0 ? sound : findingLines(findings);
   if (flags.json === true) await io.stdout(formatJson({ findings, neighbourhood }));
-  else await io.stdout(lines([...said, ...table].map(shown)));
+  else await io.stdout(lines(said.map(shown)));
   return findings.length > 0 ? exit.failedCheck : exit.done;
 }

@@ -53,7 +53,7 @@ describe('Ctrl-C', () => {
         expect(JSON.parse(text('o/cdac14.floorplan.json')).placement.status).toBe('interrupted');
         if (workers === 3) {
           const checked = await finished(folder, ['check', 'o/cdac14.floorplan.json']);
-          expect(checked).toMatchObject({ code: 0, out: 'no findings\n' });
+          expect(checked).toMatchObject({ code: 0, out: expect.stringMatching(/^no findings\n/) });
         }
         remove(join(folder, 'o'));
       }

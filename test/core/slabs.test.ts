@@ -48,7 +48,8 @@ describe('slabs', () => {
     for (let seed = 1; seed <= 300; seed++) {
       const random = new Random(seed);
       const [a, b] = [0, 1].map(() => unitedSlabs(randomBoxes(random, 1 + random.below(9), side)));
-      const within = (boxes: typeof a, x: number, y: number) => Array.from(boxes.x0).some((_, i) => covers(boxes, i, x, y));
+      const within = (boxes: typeof a, x: number, y: number) =>
+        Array.from(boxes.x0).some((_, i) => covers(boxes, i, x, y));
       expectSlabs(differingSlabs(a, b), (x, y) => within(a, x, y) !== within(b, x, y));
       expect(differingSlabs(a, a).x0).toHaveLength(0);
     }
