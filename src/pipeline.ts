@@ -31,6 +31,7 @@ import { isSearchable } from './placement/exact-search.js';
 import { firstOrderBound } from './placement/first-order-bound.js';
 import { ProvingSearch } from './placement/proving-search.js';
 import type { Resumable } from './placement/resumable.js';
+import { Rounds, type Sought } from './placement/rounds.js';
 import { Search, type SearchOptions, SearchStart, type StartResult } from './placement/search.js';
 import type { Effort } from './spec/array-spec.js';
 import type { Capacitor, Core, Floorplan, Placement, RingUnit } from './spec/floorplan.js';
@@ -109,9 +110,7 @@ interface StageRequest {
   readonly share: number;
 }
 
-interface Stage extends StageRequest {
-  readonly search: Search | ProvingSearch;
-}
+type Stage = StageRequest & Sought;
 
 interface Setting {
   readonly request: PlaceRequest;
@@ -194,106 +193,59 @@ function settingOf(request: PlaceRequest): Setting {
   return { request, spec, technology, capacitors, inCore, rules, pins, wired, ...(pitch && { pitch }) };
 }
 
-const isWaiting = ({ search }: Stage): boolean => search instanceof Search && search.waiting;
-
 class Run implements PlaceRun {
   readonly #setting: Setting;
-  readonly #rounds: Generator<readonly Stage[], Stage, void>;
-  /** Searches that do not need each other; those that are over in `#over`. */
-  #round: readonly Stage[] = [];
-  readonly #over = new Set<Stage>();
-  /** The searches of former rounds: how many, and the one to fall back on. */
-  #before = 0;
-  #former: Stage | undefined;
-  #result: Stage | undefined;
-  #workBefore = 0;
-  #shareBefore = 0;
+  readonly #rounds: Rounds<Stage>;
 
   constructor(setting: Setting) {
     this.#setting = setting;
-    this.#rounds = roundsOf(setting);
-    this.#begin();
+    this.#rounds = new Rounds(roundsOf(setting));
   }
 
   get started(): boolean {
-    return this.#result !== undefined || this.work > 0;
+    return this.#rounds.started;
   }
 
   get over(): boolean {
-    return this.#result !== undefined;
+    return this.#rounds.over;
   }
 
   get waiting(): boolean {
-    return !this.#result && this.#round.every((stage) => this.#over.has(stage) || isWaiting(stage));
+    return this.#rounds.waiting;
   }
 
   get progress(): number {
-    if (this.#result) return 1;
-    const share = this.#round.reduce((sum, stage) => sum + stage.share * stage.search.progress, this.#shareBefore);
-    return Math.min(0.99, share);
+    return this.#rounds.progress;
   }
 
   get work(): number {
-    return this.#round.reduce((sum, { search }) => sum + search.work, this.#workBefore);
+    return this.#rounds.work;
   }
 
   step(work: number): boolean {
-    const stage = this.#round.find((each) => !this.#over.has(each) && !isWaiting(each));
-    if (stage && !stage.search.step(work)) this.#end(stage);
-    return !this.over;
+    return this.#rounds.step(work);
   }
 
   take(): StartJob | undefined {
-    for (const [i, { search, ...stage }] of this.#round.entries()) {
-      if (!(search instanceof Search)) continue;
-      const start = search.take();
-      if (start === undefined) continue;
-      const share = stage.share / search.starts;
-      return { request: this.#setting.request, stage, start, search: this.#before + i, share };
-    }
-    return undefined;
-  }
-
-  offer({ search: number }: StartJob, result: StartResult, done: boolean): boolean {
-    const stage = this.#round[number - this.#before];
-    if (!(stage?.search instanceof Search) || this.#over.has(stage)) return false;
-    stage.search.offer(result, done);
-    if (stage.search.status !== 'running') this.#end(stage);
-    return true;
-  }
-
-  #end(stage: Stage): void {
-    this.#over.add(stage);
-    if (this.#over.size < this.#round.length) return;
-    this.#workBefore = this.work;
-    this.#before += this.#round.length;
-    this.#former = this.#bestStage();
-    for (const { share } of this.#round) this.#shareBefore += share;
-    this.#begin();
-  }
-
-  #begin(): void {
-    const next = this.#rounds.next();
-    this.#over.clear();
-    this.#round = next.done ? [] : next.value;
-    if (next.done) this.#result = next.value;
-  }
-
-  /** The one whose best the run would end with now: a search with the emphasis's own weights first, of several that of least cost. */
-  #bestStage(): Stage {
-    if (this.#result) return this.#result;
-    const costOf = ({ search }: Stage) => (search instanceof Search ? search.best().cost : -1);
-    const lesser = (a: Stage, b: Stage): Stage => {
-      if (a.weights !== b.weights) return a.weights === 'own' ? a : b;
-      return costOf(b) <= costOf(a) ? b : a;
+    const taken = this.#rounds.take();
+    if (taken === undefined) return undefined;
+    const { search: _, ...stage } = taken.stage;
+    return {
+      request: this.#setting.request,
+      stage,
+      start: taken.start,
+      search: taken.number,
+      share: stage.share / taken.starts,
     };
-    const worked = this.#round.filter(({ search }) => search.work > 0);
-    return [...(this.#former ? [this.#former] : []), ...worked].reduce(lesser, this.#former ?? this.#round[0]);
+  }
+
+  offer({ search }: StartJob, result: StartResult, done: boolean): boolean {
+    return this.#rounds.offer(search, result, done);
   }
 
   best(interrupted: boolean): Kept {
     const { request, spec, capacitors, wired } = this.#setting;
-    const stage = this.#bestStage();
+    const stage = this.#rounds.best();
     const { grid, pitch, tracks, search } = stage;
     const { dealing } = search.best();
     const placed = placedOf(this.#setting, stage);
