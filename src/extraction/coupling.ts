@@ -8,7 +8,7 @@ interface Pair {
 }
 
 /** A drawn rectangle of a wire (of a net other than `TOP` and `VSS`) and what hangs on it, spread evenly over its length. */
-interface WireLoad {
+export interface WireLoad {
   readonly net: string;
   /** Name of its layer. */
   readonly layer: string;

@@ -117,25 +117,31 @@ export class Joints {
     }
     links.ohm.forEach((ohm, i) => ohm === 0 && nodes.join(links.a[i], links.b[i]));
     const { count, of: nodeOf } = nodes.numbered();
-    const resists = links.ohm.flatMap((ohm, i) => (ohm > 0 ? [i] : []));
-    const ends = (list: readonly number[]) => Int32Array.from(list, (end) => nodeOf[end]);
+    const resists = links.ohm.flatMap((ohm, i) => (ohm > 0 ? i : []));
+    const pick = (list: readonly number[]) => resists.map((i) => list[i]);
     return {
       network: {
         nodes: count,
-        a: ends(resists.map((i) => links.a[i])),
-        b: ends(resists.map((i) => links.b[i])),
-        ohm: Float64Array.from(resists, (i) => links.ohm[i]),
+        a: looked(pick(links.a), nodeOf),
+        b: looked(pick(links.b), nodeOf),
+        ohm: Float64Array.from(pick(links.ohm)),
       },
       stretches: {
         ...boxes.finish(),
-        a: ends(sides.a),
-        b: ends(sides.b),
+        a: looked(sides.a, nodeOf),
+        b: looked(sides.b, nodeOf),
         upright: Uint8Array.from(sides.upright),
         layer: Int16Array.from(sides.layer),
       },
       nodeOf,
     };
   }
+}
+
+function looked(list: readonly number[], up: Int32Array): Int32Array {
+  const found = new Int32Array(list.length);
+  for (let i = 0; i < found.length; i++) found[i] = up[list[i]];
+  return found;
 }
 
 const isFlat = ({ x0, y0, x1, y1 }: Rectangle): boolean => x1 - x0 >= y1 - y0;

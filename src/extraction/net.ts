@@ -7,10 +7,12 @@ export interface Net extends Resistors {
   readonly name: string;
   /** Nodes under the net's pin labels. */
   readonly pins: readonly number[];
-  /** The units whose bottom terminal is on the net: number of the cell in the drawing, and the node. */
+  /** The units that have a terminal on the net, the bottom one where it is both: number of the cell in the drawing, and the node. */
   readonly units: readonly { readonly cell: number; readonly node: number }[];
   /** Numbers of the stretches of the drawing's network, and the nodes that they lie between. */
   readonly stretches: readonly { readonly stretch: number; readonly a: number; readonly b: number }[];
+  /** Its layers and vias whose resistance is not stated, and was taken for none. */
+  readonly unstated: readonly string[];
 }
 
 /** The nets of a drawing that have a pin, in the order of the names given; those without a pin are left out. */
@@ -28,7 +30,18 @@ export function netsOf(network: WireNetwork, names: readonly string[]): Net[] {
   };
   const resistors = inPart(network.ohm.keys(), (r) => network.a[r]);
   const stretches = inPart(network.stretches.a.keys(), (s) => network.stretches.a[s]);
-  const units = inPart(network.units, ({ bottom }) => bottom);
+  const terminals = network.units.flatMap(({ cell, bottom, top }) =>
+    (part[bottom] === part[top] ? [bottom] : [bottom, top]).map((node) => ({ cell, node })),
+  );
+  const units = inPart(terminals, ({ node }) => node);
+  const bareVias = inPart(network.bareVias, ({ node }) => node);
+  const unstated = (own: number): string[] => {
+    const bare = ({ stretches: { layer }, layers }: WireNetwork, s: number): string[] =>
+      layers[layer[s]].sheetResistance_ohm === undefined ? [layers[layer[s]].name] : [];
+    return [
+      ...new Set([...stretches[own].flatMap((s) => bare(network, s)), ...bareVias[own].map(({ via }) => via)]),
+    ].sort();
+  };
   return names.flatMap((name) => {
     const pins = network.pins.get(name);
     if (pins === undefined) return [];
@@ -41,12 +54,13 @@ export function netsOf(network: WireNetwork, names: readonly string[]): Net[] {
         b: Int32Array.from(resistors[own], (r) => number[network.b[r]]),
         ohm: Float64Array.from(resistors[own], (r) => network.ohm[r]),
         pins: pins.filter((node) => part[node] === own).map((node) => number[node]),
-        units: units[own].map(({ cell, bottom }) => ({ cell, node: number[bottom] })),
+        units: units[own].map(({ cell, node }) => ({ cell, node: number[node] })),
         stretches: stretches[own].map((s) => ({
           stretch: s,
           a: number[network.stretches.a[s]],
           b: number[network.stretches.b[s]],
         })),
+        unstated: unstated(own),
       },
     ];
   });

@@ -25,8 +25,8 @@ export interface WireNetwork extends Resistors {
   readonly units: readonly UnitNodes[];
   /** Nodes under the pin labels. */
   readonly pins: ReadonlyMap<string, readonly number[]>;
-  /** Layers and vias that are drawn and have no resistance stated: taken for none. */
-  readonly unstated: readonly string[];
+  /** Nodes that are joined by vias without a stated resistance. */
+  readonly bareVias: readonly { readonly via: string; readonly node: number }[];
 }
 
 /** What conducts on one layer: straight pieces of wire, and the shapes of units. A box's body is its number in the joints. */
@@ -44,7 +44,7 @@ interface Metal {
  * Resistances of a drawing, from its polygons and its technology alone. A straight wire resists from joint to joint by sheet resistance times
  * length over width, along its centre line: exact where it is straight, half a square too much at a bend. Wires of one layer are joined
  * where they touch, layers by the vias that overlap both. What a unit's own structure draws on one layer is one node where it hangs together:
- * a bottom plate with its tabs, a top plate, a pad. Nets may have loops.
+ * a bottom plate with its tabs, a top plate, a pad. Nets may have loops. What has no resistance stated has none.
  *
  * @throws InputError if the structures cannot be flattened.
  */
@@ -52,29 +52,25 @@ export function wireNetwork(p: Polygons): WireNetwork {
   const { technology } = p;
   const flat = flatten(p.structures, p.topStructure, unitStructure(p));
   const joints = new Joints();
-  const unstated = new Set<string>();
-  const stated = (name: string, ohm: number | undefined): number => {
-    if (ohm === undefined) unstated.add(name);
-    return ohm ?? 0;
-  };
   const metals: Metal[] = [];
   for (const layer of technology.layers) {
     const boxes = flat.layers.get(streamKey(layer.stream));
     if (boxes && (layer.kind === 'metal' || layer.kind === 'plate')) {
-      const sheet = stated(layer.name, layer.sheetResistance_ohm);
-      metals.push(metalOf(layer, boxes, metals.length, sheet, joints));
+      metals.push(metalOf(layer, boxes, metals.length, joints));
     }
   }
+  const bare: { readonly via: string; readonly end: number }[] = [];
   const named = (name: string | undefined) => metals.find(({ layer }) => layer.name === name);
   for (const metal of metals) joinOnLayer(metal, joints);
   for (const via of technology.vias) {
     const boxes = flat.layers.get(streamKey(via.stream));
     const [lower, upper] = [named(via.lower), named(via.upper)];
     if (!boxes || !lower || !upper) continue;
-    const ohm = stated(via.name, via.resistance_ohm);
     for (let i = 0; i < boxes.x0.length; i++) {
       const [below, above] = [landing(lower, boxes, i, joints), landing(upper, boxes, i, joints)];
-      if (below && above) joints.link(below, above, ohm);
+      if (!below || !above) continue;
+      joints.link(below, above, via.resistance_ohm ?? 0);
+      if (via.resistance_ohm === undefined) bare.push({ via: via.name, end: below.end });
     }
   }
   const pins = pinEnds(p, flat, named, joints);
@@ -97,7 +93,7 @@ export function wireNetwork(p: Polygons): WireNetwork {
     stretches,
     units: units.map(({ cell, bottom, top }) => ({ cell, bottom: nodeOf[bottom], top: nodeOf[top] })),
     pins: new Map([...pins].map(([name, ends]) => [name, ends.map((end) => nodeOf[end])])),
-    unstated: [...unstated],
+    bareVias: bare.map(({ via, end }) => ({ via, node: nodeOf[end] })),
   };
 }
 
@@ -113,7 +109,7 @@ const boxAt = (b: Boxes, i: number): Rectangle => rectangle(b.x0[i], b.y0[i], b.
 const overlap = (a: Rectangle, b: Rectangle): Rectangle =>
   rectangle(Math.max(a.x0, b.x0), Math.max(a.y0, b.y0), Math.min(a.x1, b.x1), Math.min(a.y1, b.y1));
 
-function metalOf(layer: Layer, boxes: FlatLayer, number: number, sheet: number, joints: Joints): Metal {
+function metalOf(layer: Layer, boxes: FlatLayer, number: number, joints: Joints): Metal {
   const [drawnWires, drawnShapes] = [new BoxList(), new BoxList()];
   boxes.cell.forEach((cell, i) =>
     (cell < 0 ? drawnWires : drawnShapes).push(boxes.x0[i], boxes.y0[i], boxes.x1[i], boxes.y1[i]),
@@ -122,6 +118,7 @@ function metalOf(layer: Layer, boxes: FlatLayer, number: number, sheet: number, 
   const shapes = drawnShapes.finish();
   const shapeIndex = new BoxIndex(shapes);
   const { count, of } = componentsOf(shapes, shapeIndex);
+  const sheet = layer.sheetResistance_ohm ?? 0;
   const bodies = Array.from({ length: count }, () => joints.addShape());
   return {
     layer,
