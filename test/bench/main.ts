@@ -56,7 +56,7 @@ if (chosen.includes('placement')) {
   );
   print('Search time grows as units to the power of', measured.growth);
   print('The search (emphasis gradient) and swap annealing with a full recount, the same seconds', measured.baseline);
-  print('The whole tool at 12 bits with one worker and with two', measured.workers);
+  print('The tool at 12 bits, cells alone, with one worker and with two', measured.workers);
   result['placement'] = measured;
 }
 if (chosen.includes('hostile')) {
