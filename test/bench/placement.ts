@@ -153,7 +153,18 @@ function besideBaseline(bits: number) {
 function wallWith(workers: number, emphasis: Emphasis): number {
   const folder = mkdtempSync(join(tmpdir(), 'steelyard-bench-'));
   try {
-    const args = ['place', '--bits', '12', '--floorplan-only', '--emphasis', emphasis, '--out', folder, '--workers', String(workers)];
+    const args = [
+      'place',
+      '--bits',
+      '12',
+      '--floorplan-only',
+      '--emphasis',
+      emphasis,
+      '--out',
+      folder,
+      '--workers',
+      String(workers),
+    ];
     const times = [1, 2, 3].map(() => {
       const start = performance.now();
       const { status } = spawnSync(process.execPath, ['dist/cli/main.js', ...args], { stdio: 'ignore' });
