@@ -9,6 +9,8 @@ import { figure } from './core/figure.js';
 import { InputError } from './core/problem.js';
 import { Random } from './core/random.js';
 import { um } from './core/units.js';
+import { type Extraction, extractCoupling } from './extraction/extract.js';
+import { type Parasitics, parasiticFigures } from './extraction/parasitic.js';
 import { drawPolygons } from './geometry/draw.js';
 import { columnNets, columnNetsTerm } from './hookup/column-nets.js';
 import { hookupFigures } from './hookup/figures.js';
@@ -55,6 +57,9 @@ export interface Drawn {
   readonly polygons?: Polygons;
   readonly metrics: Metrics;
   readonly gradient: GradientFigures;
+  /** Capacitances as drawn, and what they make of the array; absent where the technology does not say enough. */
+  readonly extraction?: Extraction;
+  readonly parasitics?: Parasitics;
   readonly findings: readonly Finding[];
   /** How alike the surroundings of the units are. */
   readonly neighbourhood?: Neighbourhood;
@@ -468,6 +473,8 @@ export interface DrawOptions {
   readonly tracksAtLeast?: number;
   /** Wires and figures, but no polygons. */
   readonly measureOnly?: boolean;
+  /** False: no capacitances of what is drawn. */
+  readonly extracted?: boolean;
   /** What an exact search has proved of a core. */
   readonly known?: LeastOfReflected;
 }
@@ -477,7 +484,7 @@ export interface DrawOptions {
  * @throws Infeasible where the rules or the tracks asked for leave no room.
  */
 export function drawFloorplan(floorplan: Floorplan, technology: Technology, options: DrawOptions = {}): Drawn {
-  const { wired = true, keepHookup = false, tracksAtLeast, measureOnly = false, known } = options;
+  const { wired = true, keepHookup = false, tracksAtLeast, measureOnly = false, extracted = true, known } = options;
   const { cells, capacitors } = floorplan;
   const { array } = floorplan;
   const gradient = array?.gradient ?? technology.gradient;
@@ -501,6 +508,11 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
         return sought ? provedClass(core, inCore, cells, known) : undefined;
       });
     const complete: Floorplan = { ...floorplan, name, core, ...(placement && { placement }), ...rest, technology };
+    const extraction = polygons && extracted ? extractCoupling(polygons) : undefined;
+    if (typeof extraction === 'string') notes.push(`The capacitances of the wires are not known: ${extraction}.`);
+    const wired = typeof extraction === 'object' ? extraction : undefined;
+    const parasitics =
+      wired && parasiticFigures(wired, capacitors, technology.unit.capacitance_fF, array?.topLoad_fF ?? 0);
     const metrics: Metrics = {
       format: 'steelyard/metrics',
       version: 1,
@@ -510,6 +522,7 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       gradient: metricsGradient,
       mismatch: analyseMismatch({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology)).figures,
       ...figures,
+      ...(parasitics && { parasitic: parasitics.figures }),
     };
     const judged = polygons && judgePolygons(polygons);
     const findings = [...checkFloorplan(complete), ...(judged?.findings ?? [])];
@@ -518,6 +531,8 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       ...(polygons && { polygons }),
       metrics,
       gradient: analysed,
+      ...(wired && { extraction: wired }),
+      ...(parasitics && { parasitics }),
       findings,
       ...(judged && { neighbourhood: judged.neighbourhood }),
       warnings: [],

@@ -30,7 +30,7 @@ interface Verdict {
 /** The floorplan's drawing, made for the purpose. */
 async function checkDrawn(io: Io, file: string, text: string): Promise<Verdict> {
   const { floorplan, technology, notes } = await floorplanToDraw(io, file, text);
-  const drawn = inFile(file, () => drawFloorplan(floorplan, technology, { keepHookup: true }));
+  const drawn = inFile(file, () => drawFloorplan(floorplan, technology, { keepHookup: true, extracted: false }));
   const { findings, neighbourhood } = drawn;
   return { findings, ...(neighbourhood && { neighbourhood }), notes: [...notes, ...drawn.notes] };
 }

@@ -51,6 +51,16 @@ export interface Window {
 
 const FREE = -1;
 
+interface System {
+  readonly matrix: Envelope;
+  /** Free crossings. */
+  readonly count: number;
+  /** Threes: a free crossing, the part beside it, and the conductance between. */
+  readonly ends: readonly number[];
+  /** Threes: two parts of different electrodes side by side, and the conductance between. */
+  readonly direct: readonly number[];
+}
+
 /**
  * Capacitances of cross-sections on one grid, so that what two sections have in common has the same error in both.
  *
@@ -88,49 +98,17 @@ export class SectionGrid {
         part.fill(bar.part, bottom + r0, bottom + r1 + 1);
       }
     }
-    const { right, up } = this.#conductances(section);
-    const rows = this.#rows;
-    const nodes = part.length;
-    const next = (node: number) => (node + rows < nodes ? node + rows : node + rows - nodes);
-
-    const unknown = new Int32Array(nodes).fill(-1);
-    let count = 0;
-    for (let node = 0; node < nodes; node++) if (part[node] === FREE) unknown[node] = count++;
-    const first = new Int32Array(count).map((_, i) => i);
-    const each = (visit: (a: number, b: number, conductance: number) => void): void => {
-      for (let node = 0; node < nodes; node++) {
-        if (up[node] > 0) visit(node, node + 1, up[node]);
-        if (right[node] > 0) visit(node, next(node), right[node]);
-      }
-    };
-    // Where field ends on conductors: the unknown, the part and the conductance; between two parts: both and the conductance.
-    const ends: number[] = [];
-    const direct: number[] = [];
-    each((a, b, conductance) => {
-      if (part[a] === FREE && part[b] === FREE) {
-        const high = Math.max(unknown[a], unknown[b]);
-        first[high] = Math.min(first[high], unknown[a], unknown[b]);
-      } else if (part[a] === FREE) ends.push(unknown[a], part[b], conductance);
-      else if (part[b] === FREE) ends.push(unknown[b], part[a], conductance);
-      else if (electrodeOf[part[a]] !== electrodeOf[part[b]]) direct.push(part[a], part[b], conductance);
-    });
-    const matrix = new Envelope(first);
-    each((a, b, conductance) => {
-      const [i, j] = [unknown[a], unknown[b]];
-      if (i >= 0) matrix.add(i, i, conductance);
-      if (j >= 0) matrix.add(j, j, conductance);
-      if (i >= 0 && j >= 0) matrix.add(Math.max(i, j), Math.min(i, j), -conductance);
-    });
+    const { matrix, count, ends, direct } = this.#system(section, part, electrodeOf);
     matrix.factor();
 
     // charge[part * electrodes + e]: with electrode e at 1 V and all others at 0.
     const charge = new Float64Array(parts * electrodes);
     const potential = new Float64Array(count);
     for (let e = 1; e < electrodes; e++) {
-      potential.fill(0);
-      for (let k = 0; k < ends.length; k += 3) if (electrodeOf[ends[k + 1]] === e) potential[ends[k]] += ends[k + 2];
-      matrix.solve(potential);
       const of = (p: number) => (electrodeOf[p] === e ? 1 : 0);
+      potential.fill(0);
+      for (let k = 0; k < ends.length; k += 3) potential[ends[k]] += ends[k + 2] * of(ends[k + 1]);
+      matrix.solve(potential);
       for (let k = 0; k < ends.length; k += 3) {
         const p = ends[k + 1];
         charge[p * electrodes + e] += ends[k + 2] * (of(p) - potential[ends[k]]);
@@ -151,6 +129,43 @@ export class SectionGrid {
         if (electrodeOf[p] !== e) result[p * electrodes + e] = -q;
       }
     return result;
+  }
+
+  /** The equations of the free crossings, and where field ends on conductors. */
+  #system(section: Section, part: Int16Array, electrodeOf: Int16Array): System {
+    const { right, up } = this.#conductances(section);
+    const [rows, nodes] = [this.#rows, part.length];
+    const unknown = new Int32Array(nodes);
+    let count = 0;
+    for (let node = 0; node < nodes; node++) unknown[node] = part[node] === FREE ? count++ : -1;
+    // From each crossing to those before it: left, below, and from the last column of a periodic window to the first.
+    const around = nodes - rows;
+    const first = new Int32Array(count);
+    for (let node = 0; node < nodes; node++) {
+      const i = unknown[node];
+      if (i < 0) continue;
+      first[i] = i;
+      if (node % rows > 0 && unknown[node - 1] >= 0) first[i] = unknown[node - 1];
+      if (node >= rows && unknown[node - rows] >= 0) first[i] = unknown[node - rows];
+      if (node >= around && right[node] > 0 && unknown[node - around] >= 0) first[i] = unknown[node - around];
+    }
+    const matrix = new Envelope(first);
+    const ends: number[] = [];
+    const direct: number[] = [];
+    const link = (a: number, b: number, conductance: number): void => {
+      const [i, j] = [unknown[a], unknown[b]];
+      if (i >= 0) matrix.add(i, i, conductance);
+      if (j >= 0) matrix.add(j, j, conductance);
+      if (i >= 0 && j >= 0) matrix.add(Math.max(i, j), Math.min(i, j), -conductance);
+      else if (i >= 0) ends.push(i, part[b], conductance);
+      else if (j >= 0) ends.push(j, part[a], conductance);
+      else if (electrodeOf[part[a]] !== electrodeOf[part[b]]) direct.push(part[a], part[b], conductance);
+    };
+    for (let node = 0; node < nodes; node++) {
+      if (up[node] > 0) link(node, node + 1, up[node]);
+      if (right[node] > 0) link(node, node < around ? node + rows : node - around, right[node]);
+    }
+    return { matrix, count, ends, direct };
   }
 
   /** Conductances (relative permittivities) from each crossing to the next one to its right and upwards. */

@@ -42,6 +42,15 @@ export interface MismatchFigures {
   readonly placement: { readonly inlSigma_perUnitSigma: number; readonly dnlSigma_perUnitSigma?: number };
 }
 
+/** What the drawn wires do: see README, "Figures". Coupling and load of a bit's wires; absent where the technology does not say enough. */
+export interface ParasiticFigures {
+  readonly inl_lsb: number;
+  readonly dnl_lsb?: number;
+  readonly topToGround_fF: number;
+  readonly attenuation_percent: number;
+  readonly bits: readonly { readonly name: string; readonly topCoupling_fF: number; readonly load_fF: number }[];
+}
+
 export interface Metrics {
   readonly format: 'steelyard/metrics';
   readonly version: 1;
@@ -56,4 +65,5 @@ export interface Metrics {
   readonly mismatch?: MismatchFigures;
   readonly hookup: HookupFigures;
   readonly area_um2?: number;
+  readonly parasitic?: ParasiticFigures;
 }

@@ -263,7 +263,7 @@ export const options: readonly Option[] = [
     values: 'number from 0',
     standard: '0',
     help: 'what hangs on TOP outside the array',
-    available: false,
+    available: true,
     schema: atLeastZero,
   },
   {
