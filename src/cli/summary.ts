@@ -123,6 +123,18 @@ function hookupLines({ hookup, area_um2 }: Metrics): readonly Line[] {
   return lines;
 }
 
+function couplingLines({ metrics: { parasitic }, parasitics }: Drawn): readonly Line[] {
+  if (parasitic === undefined || parasitics === undefined) return [];
+  const { attenuation_percent, topToGround_fF } = parasitic;
+  return [
+    ['coupling', `${lsb(parasitic)} as drawn; the INL to within ${brief(parasitics.inlError_lsb)} LSB`],
+    [
+      'TOP',
+      `${brief(topToGround_fF)} fF to ground: ${brief(attenuation_percent)} % less signal, with what hangs on it`,
+    ],
+  ];
+}
+
 /** "10 bits" for binary weights, else the weights. */
 export function arrayInWords(capacitors: readonly Capacitor[]): string {
   const weights = capacitors.filter(({ role }) => role === 'bit').map(({ weight }) => weight);
@@ -161,6 +173,7 @@ export function summaryOf(
     ...mismatchLines(metrics),
     ...placementLine(floorplan),
     ...hookupLines(metrics),
+    ...couplingLines(drawn),
   ];
   if (drawn.polygons !== undefined) {
     const { length } = findings;

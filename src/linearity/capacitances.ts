@@ -5,7 +5,7 @@ import { stepsOf } from './steps.js';
  * approximation; they add up to 0.
  * @param capacitance of each bit, in any unit
  */
-export function endPointErrors(weight: readonly number[], capacitance: readonly number[]): number[] {
+function endPointErrors(weight: readonly number[], capacitance: readonly number[]): number[] {
   const sum = (values: readonly number[]) => values.reduce((all, value) => all + value, 0);
   const gain = sum(weight) / sum(capacitance);
   return capacitance.map((c, k) => gain * c - weight[k]);
