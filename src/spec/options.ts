@@ -252,10 +252,11 @@ export const options: readonly Option[] = [
   },
   {
     key: 'drive',
-    values: '`{switch_ohm: number or list, reference_ohm}`',
-    standard: 'none: no settling',
-    help: 'resistance of the switches and of the reference',
-    available: false,
+    values:
+      "`{switch_ohm, reference_ohm}`: B0's switch, larger bits' in inverse proportion to the weight; or a list, one for each bit",
+    standard: 'none: no settling, Elmore delays of the wires alone',
+    help: 'resistance of the switches, and of the reference in series with each',
+    available: true,
     schema: driveSchema,
   },
   {

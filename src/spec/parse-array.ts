@@ -21,6 +21,17 @@ export function checkPitch(core: unknown, report: Report, at: string): void {
   });
 }
 
+/** A list of switches has one for each bit. @param at where the drive stands. */
+export function checkDrive(drive: unknown, bits: number, report: Report, at: string): void {
+  const { switch_ohm } = record(drive);
+  if (!Array.isArray(switch_ohm) || switch_ohm.length === bits) return;
+  report.add(
+    `${at}/switch_ohm`,
+    `a list of ${switch_ohm.length}`,
+    `one for each of the ${bits} bits, or one number for all`,
+  );
+}
+
 /** What the shape of an array file, or of the array in a floorplan, does not say. */
 export function checkArray(value: unknown, report: Report, at: string): void {
   const array = record(value);

@@ -2,7 +2,7 @@ import type { Result } from '../core/problem.js';
 import type { Floorplan } from './floorplan.js';
 import { integer, items, record, word } from './loose.js';
 import { mostCells, mostRings, mostWeights } from './options.js';
-import { checkArray, checkPitch } from './parse-array.js';
+import { checkArray, checkDrive, checkPitch } from './parse-array.js';
 import { checkTechnology, technologyRefusals } from './parse-technology.js';
 import { checkPinOrder } from './pins.js';
 import { read } from './read.js';
@@ -125,6 +125,8 @@ function check(value: unknown, report: Report): void {
       const { name, role } = record(capacitor);
       return { name: word(name) ?? '', role: word(role) ?? '' };
     });
+    const bits = capacitors.filter(({ role }) => role === 'bit').length;
+    checkDrive(record(floorplan.array).drive, bits, report, '/array/drive');
     checkPinOrder(record(floorplan.array).pins, capacitors, report, '/array/pins');
   }
   if (floorplan.technology !== undefined) checkTechnology(floorplan.technology, report, '/technology');

@@ -3,6 +3,7 @@ import type { Problem, Result } from '../core/problem.js';
 import type { ArraySpec } from './array-spec.js';
 import type { Capacitor } from './floorplan.js';
 import { mostRings, options } from './options.js';
+import { checkDrive } from './parse-array.js';
 import { checkPinOrder } from './pins.js';
 import { Report } from './report.js';
 import type { Source } from './report.js';
@@ -49,6 +50,7 @@ export function resolveArray(spec: ArraySpec, template: Technology, source?: Sou
       'one of the two',
     );
   }
+  checkDrive(spec.drive, spec.bits ?? spec.weights?.length ?? 0, report, '/drive');
   if (report.count > 0) return refused();
 
   const technology = spec.unit_fF === undefined ? template : withUnitOf(template, spec.unit_fF);

@@ -149,8 +149,17 @@ const cases: [name: string, text: string, problems: string[]][] = [
   ],
   [
     'keys of later versions',
-    withKeys('"bits": 4, "block": {"maxWidth_um": 90}, "drive": {"switch_ohm": 5}, "limits": {"inl_lsb": 1}'),
-    ['block', 'drive', 'limits'].map((key) => `/${key} | key "${key}" | it left out: "${key}" is not available yet`),
+    withKeys('"bits": 4, "block": {"maxWidth_um": 90}, "limits": {"inl_lsb": 1}'),
+    ['block', 'limits'].map((key) => `/${key} | key "${key}" | it left out: "${key}" is not available yet`),
+  ],
+  [
+    'a drive that is none',
+    withKeys('"bits": 4, "drive": {"reference_ohm": -1, "switch_ohms": 5}'),
+    [
+      '/drive | no key "switch_ohm" | "switch_ohm": a number of 0 or more or a list of 0 to 20 numbers',
+      '/drive/reference_ohm | -1 | a number of 0 or more',
+      '/drive/switch_ohms | unknown key "switch_ohms" | "switch_ohm", the nearest known key',
+    ],
   ],
   [
     'mismatch in part',

@@ -73,6 +73,21 @@ describe('an array file, resolved', () => {
     expect(refused(['TERM', 'B0', 'B1', 'B2'], { termination: 'none' })[0]).toMatch('/pins/bits/order/0 | "TERM" | ');
   });
 
+  it('has one switch for each bit where it lists them', () => {
+    const refused = (switch_ohm: number | number[], bits: Partial<ArraySpec>) => {
+      const result = resolveArray(array({ ...bits, drive: { switch_ohm } }), technology);
+      return result.ok ? [] : result.issues.map(({ pointer, found, wanted }) => `${pointer} | ${found} | ${wanted}`);
+    };
+    expect(refused(1000, { bits: 4 })).toEqual([]);
+    expect(refused([4, 3, 2, 1], { bits: 4 })).toEqual([]);
+    expect(refused([3, 2, 1], { weights: [1, 2, 3] })).toEqual([]);
+    expect(refused([3, 2, 1], { bits: 4 })).toEqual([
+      '/drive/switch_ohm | a list of 3 | one for each of the 4 bits, or one number for all',
+    ]);
+    expect(refused([], { weights: [1, 2, 3] })[0]).toMatch('a list of 0 | one for each of the 3 bits');
+    expect(resolve({ bits: 4 }).spec).not.toHaveProperty('drive');
+  });
+
   it('lists the bits from the least significant up, then the termination', () => {
     const { spec, capacitors } = resolve({ weights: [1, 2, 3, 5], termination: 'core' });
     expect(spec.name).toBe('cdac4w');
