@@ -16,7 +16,7 @@ import { sentencesOn } from './sentences.js';
 export interface Candidate {
   readonly floorplan: Floorplan;
   /** What its wires came to, where it has been drawn. */
-  readonly drawn?: Pick<Metrics, 'hookup' | 'area_um2'>;
+  readonly drawn?: Pick<Metrics, 'hookup' | 'area_um2' | 'total'>;
 }
 
 export interface CompareOptions {
@@ -66,6 +66,7 @@ export function compare(candidates: readonly Candidate[], options: CompareOption
       mismatch: { placement: placementSigma({ core, capacitors, cells }, length) },
       hookup: drawn?.hookup ?? { columnNets: columnNets(cells, bits) },
       ...(drawn?.area_um2 !== undefined && { area_um2: drawn.area_um2 }),
+      ...(drawn?.total && { total: drawn.total }),
     };
     return rounded(figures);
   });

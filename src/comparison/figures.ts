@@ -12,6 +12,8 @@ export interface ComparedFigures {
   readonly hookup: HookupFigures;
   /** As drawn, on its own pitch; absent where it is not. */
   readonly area_um2?: number;
+  /** As drawn, under the gradient and the mismatch that its own array expects. */
+  readonly total?: Metrics['total'];
 }
 
 /** The figures of a metrics file, each on its own pitch. */
@@ -130,5 +132,12 @@ export const comparedFigures: readonly ComparedFigure[] = [
     unit: 'um2',
     decides: true,
     of: ({ area_um2 }) => area_um2,
+  },
+  {
+    key: 'total.inl3Sigma_lsb',
+    label: 'all errors INL',
+    unit: 'LSB at 3 sigma',
+    decides: false,
+    of: ({ total }) => total?.inl3Sigma_lsb,
   },
 ];

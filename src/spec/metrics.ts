@@ -48,7 +48,18 @@ export interface ParasiticFigures {
   readonly dnl_lsb?: number;
   readonly topToGround_fF: number;
   readonly attenuation_percent: number;
-  readonly bits: readonly { readonly name: string; readonly topCoupling_fF: number; readonly load_fF: number }[];
+  readonly bits: readonly BitFigures[];
+}
+
+/** Of a bit's wires, with `TOP` held; delays absent where the technology does not state resistances. */
+export interface BitFigures {
+  readonly name: string;
+  readonly topCoupling_fF: number;
+  readonly load_fF: number;
+  /** From an ideal step, through the drive where there is one, to the unit that it reaches last. */
+  readonly elmore_ps?: number;
+  /** Until half an LSB is left; absent without a drive. */
+  readonly settling_ps?: number;
 }
 
 export interface Metrics {
@@ -66,4 +77,6 @@ export interface Metrics {
   readonly hookup: HookupFigures;
   readonly area_um2?: number;
   readonly parasitic?: ParasiticFigures;
+  /** All errors together at three sigma; absent where the wires' capacitances are not known. */
+  readonly total?: { readonly inl3Sigma_lsb: number; readonly dnl3Sigma_lsb?: number };
 }

@@ -69,6 +69,6 @@ export const metricsSchema: Schema = file('metrics', 'Figures of a placed array'
   hookup,
   'area_um2?': figure,
   'parasitic?': parasitic,
-  'total?': object({ inl3Sigma_lsb: figure }),
+  'total?': object({ inl3Sigma_lsb: figure, 'dnl3Sigma_lsb?': figure }),
   'yield?': object({ share, low: share, high: share, samples: count, seed }),
 });
