@@ -17,6 +17,7 @@ export { writeStream } from './export/gdsii.js';
 export { writeAbstract } from './export/lef.js';
 export { withPinNames } from './export/pin-names.js';
 export { writeDeviceNetlist } from './export/spice-devices.js';
+export { writeExtractedNetlist } from './export/spice-extracted.js';
 export { writeCapacitorNetlist } from './export/spice.js';
 export { writeStreamLibrary } from './export/stream-library.js';
 export { analyseGradient } from './linearity/analyse-gradient.js';

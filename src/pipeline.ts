@@ -9,8 +9,10 @@ import { figure } from './core/figure.js';
 import { InputError } from './core/problem.js';
 import { Random } from './core/random.js';
 import { um } from './core/units.js';
+import { type Circuit, circuitOf } from './extraction/circuit.js';
 import { type Extraction, extractCoupling } from './extraction/extract.js';
 import { type Parasitics, parasiticFigures } from './extraction/parasitic.js';
+import type { BitTiming } from './extraction/timing.js';
 import { drawPolygons } from './geometry/draw.js';
 import { columnNets, columnNetsTerm } from './hookup/column-nets.js';
 import { hookupFigures } from './hookup/figures.js';
@@ -25,6 +27,7 @@ import { secondOrderInl } from './linearity/exact-inl.js';
 import { lowerBound, type PlacementClass } from './linearity/lower-bound.js';
 import { analyseMismatch } from './linearity/mismatch.js';
 import { type LeastOfReflected, provedClass } from './linearity/proved.js';
+import { totalFigures } from './linearity/total.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
 import { ringsToReach, unitMismatch } from './spec/options.js';
 import { workFor } from './placement/effort.js';
@@ -37,7 +40,7 @@ import { Rounds, type Sought } from './placement/rounds.js';
 import { Search, type SearchOptions, SearchStart, type StartResult } from './placement/search.js';
 import type { Effort } from './spec/array-spec.js';
 import type { Capacitor, Core, Floorplan, Placement, RingUnit } from './spec/floorplan.js';
-import type { Metrics } from './spec/metrics.js';
+import type { Metrics, ParasiticFigures } from './spec/metrics.js';
 import { type PinsWanted, pinsWanted } from './spec/pins.js';
 import type { Polygons } from './spec/polygons.js';
 import type { ResolvedArray, ResolvedSpec } from './spec/resolve.js';
@@ -60,6 +63,8 @@ export interface Drawn {
   /** Capacitances as drawn, and what they make of the array; absent where the technology does not say enough. */
   readonly extraction?: Extraction;
   readonly parasitics?: Parasitics;
+  /** The wires as a circuit, of a size to be simulated. */
+  readonly circuit?: Circuit;
   readonly findings: readonly Finding[];
   /** How alike the surroundings of the units are. */
   readonly neighbourhood?: Neighbourhood;
@@ -513,6 +518,8 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
     const wired = typeof extraction === 'object' ? extraction : undefined;
     const parasitics =
       wired && parasiticFigures(wired, capacitors, technology.unit.capacitance_fF, array?.topLoad_fF ?? 0);
+    const timed = polygons && wired && circuitOf(polygons, wired.coupling, array?.drive);
+    const mismatch = analyseMismatch({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology));
     const metrics: Metrics = {
       format: 'steelyard/metrics',
       version: 1,
@@ -520,9 +527,12 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       core,
       ...(placement?.status && { status: placement.status }),
       gradient: metricsGradient,
-      mismatch: analyseMismatch({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology)).figures,
+      mismatch: mismatch.figures,
       ...figures,
-      ...(parasitics && { parasitic: parasitics.figures }),
+      ...(parasitics && {
+        parasitic: withDelays(parasitics.figures, timed?.timings ?? []),
+        total: totalFigures({ core, capacitors, cells, gradient, coupling: parasitics.excess, mismatch }),
+      }),
     };
     const judged = polygons && judgePolygons(polygons);
     const findings = [...checkFloorplan(complete), ...(judged?.findings ?? [])];
@@ -533,6 +543,7 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       gradient: analysed,
       ...(wired && { extraction: wired }),
       ...(parasitics && { parasitics }),
+      ...(timed && { circuit: timed.circuit }),
       findings,
       ...(judged && { neighbourhood: judged.neighbourhood }),
       warnings: [],
@@ -572,6 +583,14 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
   };
   const area_um2 = figure(um(frame.blockWidth) * um(frame.height));
   return finish(core, drawnAs, { hookup: hookupFigures(facing, hookup), area_um2 }, polygons);
+}
+
+/** The figures of bits with how fast these are. */
+function withDelays(figures: ParasiticFigures, timings: readonly BitTiming[]): ParasiticFigures {
+  return {
+    ...figures,
+    bits: figures.bits.map((bit) => ({ ...bit, ...timings.find(({ name }) => name === bit.name) })),
+  };
 }
 
 /** @param provedFor asked where the search came to its end by itself: the class in which the placement is proved to be the best. */

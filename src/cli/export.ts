@@ -109,10 +109,15 @@ export async function exportFiles(io: Io, file: string, flags: ExportFlags): Pro
     ]);
   const technology = flags.layers === undefined ? own.technology : await withLayers(io, own.technology, flags.layers);
   const pins = flags.pins === undefined ? undefined : await pinsFrom(io, own.floorplan, flags.pins);
-  const draw = (on: Technology) => inFile(file, () => drawFloorplan(own.floorplan, on, { keepHookup: true }));
+  // Only a netlist asks for the capacitances of the wires.
+  const draw = (on: Technology, extracted: boolean) =>
+    inFile(file, () => drawFloorplan(own.floorplan, on, { keepHookup: true, extracted }));
   // A map may put two layers on one number: checks, netlists and the abstract tell layers apart by the technology's own.
-  const asDrawn = draw(own.technology);
-  const drawn = technology === own.technology ? asDrawn : draw(technology);
+  const asDrawn = draw(own.technology, chosen.includes('spice'));
+  const drawn =
+    technology === own.technology
+      ? asDrawn
+      : { ...draw(technology, false), ...(asDrawn.circuit && { circuit: asDrawn.circuit }) };
   const files = await drawingFiles(drawn, chosen, flags.out ?? drawn.metrics.name, {
     ...options,
     ...(pins && { pins }),

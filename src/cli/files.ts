@@ -10,9 +10,10 @@ import {
   writeAbstract,
   writeCapacitorNetlist,
   writeDeviceNetlist,
+  writeExtractedNetlist,
   writeStream,
 } from '../index.js';
-import type { Drawn, Floorplan, PinMap, Polygons } from '../index.js';
+import type { Drawn, PinMap, Polygons } from '../index.js';
 import type { OutputFile } from './io.js';
 
 /** What the writers can be told. */
@@ -29,8 +30,7 @@ export interface WriterOptions {
 
 type Written = readonly (readonly [ending: string, content: string | Uint8Array])[];
 type Writer = (
-  floorplan: Floorplan,
-  polygons: Polygons | undefined,
+  drawn: Pick<Drawn, 'floorplan' | 'polygons' | 'circuit'>,
   options: WriterOptions,
 ) => Written | Promise<Written>;
 
@@ -39,23 +39,26 @@ const labelled = (polygons: Polygons, { pins }: WriterOptions): Polygons =>
 
 /** The kinds of files that a drawing is written as, as `export --to` names them. Without a drawing only the floorplan's picture is left. */
 const writers = {
-  gds: (_, polygons, options) =>
+  gds: ({ polygons }, options) =>
     polygons === undefined ? [] : [['.gds', writeStream(labelled(polygons, options), options)]],
-  polygons: (_, polygons) => (polygons === undefined ? [] : [['.polygons.json', formatPolygons(polygons)]]),
-  svg: async (floorplan, polygons, options) => [
+  polygons: ({ polygons }) => (polygons === undefined ? [] : [['.polygons.json', formatPolygons(polygons)]]),
+  svg: async ({ floorplan, polygons }, options) => [
     ['.floorplan.svg', await drawFloorplanSvg(floorplan)],
     ...(polygons === undefined
       ? []
       : [['.hookup.svg', await drawHookupSvg(labelled(polygons, options), floorplan)] as const]),
   ],
-  spice: (_, polygons, options) =>
+  spice: ({ polygons, circuit }, options) =>
     polygons === undefined
       ? []
       : [
           ['.cir', writeCapacitorNetlist(options.onOwnLayers ?? polygons, options)],
           ['.lvs.cir', writeDeviceNetlist(options.onOwnLayers ?? polygons, options)],
+          ...(circuit === undefined
+            ? []
+            : [['.extracted.cir', writeExtractedNetlist(options.onOwnLayers ?? polygons, circuit, options)] as const]),
         ],
-  lef: (_, polygons, options) =>
+  lef: ({ polygons }, options) =>
     polygons === undefined ? [] : [['.lef', writeAbstract(options.onOwnLayers ?? polygons, options)]],
 } satisfies Record<string, Writer>;
 
@@ -67,19 +70,19 @@ export const formats = Object.keys(writers) as readonly Format[];
  * @param refused receives what a format cannot hold; without it that ends the run
  */
 export async function drawingFiles(
-  { floorplan, polygons, metrics: { name } }: Drawn,
+  drawn: Drawn,
   chosen: readonly Format[],
   folder: string,
   options: WriterOptions = {},
   refused?: (format: Format, error: InputError) => void,
-  base = name,
+  base = drawn.metrics.name,
 ): Promise<OutputFile[]> {
   const files: OutputFile[] = [];
   for (const format of formats) {
     if (!chosen.includes(format)) continue;
     const write: Writer = writers[format];
     try {
-      for (const [ending, content] of await write(floorplan, polygons, options))
+      for (const [ending, content] of await write(drawn, options))
         files.push({ path: join(folder, base + ending), content });
     } catch (error) {
       if (refused === undefined || !(error instanceof InputError)) throw error;
@@ -91,7 +94,7 @@ export async function drawingFiles(
 
 const endings = [
   ...['.floorplan.json', '.metrics.json', '.gds', '.polygons.json', '.floorplan.svg', '.hookup.svg'],
-  ...['.cir', '.lvs.cir', '.lef'],
+  ...['.cir', '.lvs.cir', '.extracted.cir', '.lef'],
 ];
 
 /** What may be left of an earlier set of this name and is not among these files: it belongs to another floorplan. */

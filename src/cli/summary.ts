@@ -135,6 +135,29 @@ function couplingLines({ metrics: { parasitic }, parasitics }: Drawn): readonly 
   ];
 }
 
+/** The bit that is last to settle, or, without a drive, the one whose wires are slowest. */
+function delayLines({ parasitic }: Metrics): readonly Line[] {
+  const timed = (parasitic?.bits ?? []).flatMap(({ name, elmore_ps, settling_ps }) =>
+    elmore_ps === undefined ? [] : [{ name, elmore_ps, settling_ps, last: settling_ps ?? elmore_ps }],
+  );
+  if (timed.length === 0) return [];
+  const { name, elmore_ps, settling_ps } = timed.reduce((a, b) => (b.last > a.last ? b : a));
+  return settling_ps === undefined
+    ? [['delay', `Elmore ${brief(elmore_ps)} ps through the wires of ${name}, the slowest, with TOP held`]]
+    : [
+        [
+          'settling',
+          `${brief(settling_ps)} ps for ${name}, the slowest, Elmore delay ${brief(elmore_ps)} ps with TOP held`,
+        ],
+      ];
+}
+
+function totalLines({ total }: Metrics): readonly Line[] {
+  if (total === undefined) return [];
+  const figures = { inl_lsb: total.inl3Sigma_lsb, dnl_lsb: total.dnl3Sigma_lsb };
+  return [['together', `${lsb(figures)} at the worst code: gradient, wires and three sigma of mismatch`]];
+}
+
 /** "10 bits" for binary weights, else the weights. */
 export function arrayInWords(capacitors: readonly Capacitor[]): string {
   const weights = capacitors.filter(({ role }) => role === 'bit').map(({ weight }) => weight);
@@ -174,6 +197,8 @@ export function summaryOf(
     ...placementLine(floorplan),
     ...hookupLines(metrics),
     ...couplingLines(drawn),
+    ...delayLines(metrics),
+    ...totalLines(metrics),
   ];
   if (drawn.polygons !== undefined) {
     const { length } = findings;

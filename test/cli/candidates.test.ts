@@ -3,7 +3,7 @@ import { MachineInMemory } from './machine-in-memory.js';
 
 const endings = [
   ...['floorplan.json', 'metrics.json', 'gds', 'polygons.json', 'floorplan.svg', 'hookup.svg'],
-  ...['cir', 'lvs.cir', 'lef'],
+  ...['cir', 'lvs.cir', 'extracted.cir', 'lef'],
 ];
 const setsOf = (folder: string, name: string, count: number) =>
   Array.from({ length: count }, (_, i) => endings.map((ending) => `${folder}/${name}-${i + 1}.${ending}`)).flat();

@@ -106,7 +106,7 @@ describe('export', () => {
   it('gives the same files as place did, in the formats asked for', async () => {
     const own = machine();
     expect(await own.run(`export ${floorplanFile} --to lef,svg,spice,gds,polygons --out e`)).toBe(0);
-    const endings = ['gds', 'polygons.json', 'floorplan.svg', 'hookup.svg', 'cir', 'lvs.cir', 'lef'];
+    const endings = ['gds', 'polygons.json', 'floorplan.svg', 'hookup.svg', 'cir', 'lvs.cir', 'extracted.cir', 'lef'];
     expect(own.written[0]?.map(({ path }) => path)).toEqual(endings.map((ending) => `e/cdac4.${ending}`));
     for (const ending of endings) expect(own.text(`e/cdac4.${ending}`)).toBe(placed.text(`o/cdac4.${ending}`));
     expect(own.out).toBe(endings.map((ending) => `e/cdac4.${ending}\n`).join(''));
@@ -159,7 +159,7 @@ describe('export', () => {
   it('writes the netlists that are asked for', async () => {
     const own = machine();
     expect(await own.run(`export ${floorplanFile} --to spice --out e --devices merged --dummies omit`)).toBe(0);
-    expect(own.written[0]?.map(({ path }) => path)).toEqual(['e/cdac4.cir', 'e/cdac4.lvs.cir']);
+    expect(own.written[0]?.map(({ path }) => path)).toEqual(['e/cdac4.cir', 'e/cdac4.lvs.cir', 'e/cdac4.extracted.cir']);
     expect(own.text('e/cdac4.cir')).not.toMatch(/dummy/);
     expect(own.text('e/cdac4.lvs.cir')).toMatch(/^CB3 TOP B3 cpp w=4.4u l=4.4u m=8$/m);
     expect(own.text('e/cdac4.lvs.cir')).not.toMatch(/dummy/);
@@ -192,7 +192,7 @@ describe('export', () => {
     expect(await own.run(`export ${floorplanFile} --to ${to} --out e --pins names.json`)).toBe(0);
     for (const ending of ['polygons.json', 'floorplan.svg'])
       expect(own.text(`e/cdac4.${ending}`)).toBe(placed.text(`o/cdac4.${ending}`));
-    for (const ending of ['gds', 'hookup.svg', 'cir', 'lvs.cir', 'lef']) {
+    for (const ending of ['gds', 'hookup.svg', 'cir', 'lvs.cir', 'extracted.cir', 'lef']) {
       expect(own.text(`e/cdac4.${ending}`)).toContain('sar_d[0]');
       expect(own.text(`e/cdac4.${ending}`)).toContain('vdac');
     }
@@ -230,7 +230,7 @@ describe('export', () => {
     };
     const own = machine().put('map.json', map);
     expect(await own.run(`export ${floorplanFile} --to gds,spice,lef --out e --layers map.json`)).toBe(0);
-    for (const ending of ['cir', 'lvs.cir', 'lef'])
+    for (const ending of ['cir', 'lvs.cir', 'extracted.cir', 'lef'])
       expect(own.text(`e/cdac4.${ending}`)).toBe(placed.text(`o/cdac4.${ending}`));
     expect(own.text('e/cdac4.gds')).not.toBe(placed.text('o/cdac4.gds'));
   });

@@ -12,6 +12,7 @@ const endings = [
   'hookup.svg',
   'cir',
   'lvs.cir',
+  'extracted.cir',
   'lef',
 ];
 const array = { format: 'steelyard/array', version: 1, name: 'rain', bits: 4, effort: 'quick' };

@@ -23,6 +23,7 @@ const endings = [
   'hookup.svg',
   'lef',
   'lvs.cir',
+  'extracted.cir',
   'metrics.json',
   'polygons.json',
 ];

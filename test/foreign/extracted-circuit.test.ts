@@ -4,11 +4,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { writeExtractedNetlist } from '../../src/export/spice-extracted.js';
-import { circuitOf } from '../../src/extraction/circuit.js';
-import type { Coupling } from '../../src/extraction/coupling.js';
-import { netsOf } from '../../src/extraction/net.js';
-import { wireNetwork } from '../../src/extraction/wire-network.js';
-import type { Polygons } from '../../src/spec/polygons.js';
+import type { Circuit } from '../../src/extraction/circuit.js';
 import { drawn } from '../pipeline/drawn.js';
 
 // Debian's ngspice reads the extracted netlist and solves it: by nodal analysis code by code, and in time bit by bit.
@@ -19,36 +15,10 @@ afterAll(() => rmSync(directory, { recursive: true }));
 
 const BITS = 6;
 const CODES = 1 << BITS;
-const array = drawn({ bits: BITS, effort: 'quick' }).polygons!;
-const unit_fF = array.technology.unit.capacitance_fF;
-
-/** Made up: so much to each side per unit and per um of wire, and something between all neighbouring bits. */
-function coupled(p: Polygons): Coupling {
-  const network = wireNetwork(p);
-  const names = p.capacitors.map(({ name }) => name);
-  const { stretches, layers } = network;
-  const wires = netsOf(network, names).flatMap((net) =>
-    net.stretches.map(({ stretch: s }) => {
-      const [x0, y0, x1, y1] = [stretches.x0[s], stretches.y0[s], stretches.x1[s], stretches.y1[s]];
-      const length_um = Math.max(x1 - x0, y1 - y0) / 1000;
-      const layer = layers[stretches.layer[s]].name;
-      return { net: net.name, layer, x0, y0, x1, y1, top_fF: 0.004 * length_um, load_fF: 0.15 * length_um };
-    }),
-  );
-  const onWires = (name: string, key: 'top_fF' | 'load_fF') =>
-    wires.reduce((sum, wire) => (wire.net === name ? sum + wire[key] : sum), 0);
-  const pairs = p.capacitors.flatMap(({ name, units }, i) => {
-    const beside = names[i + 1];
-    return [
-      { a: name, b: 'TOP', fF: units * unit_fF + 0.03 * (i % 3) + onWires(name, 'top_fF'), error_fF: 0 },
-      { a: name, b: 'VSS', fF: 1.1 * units + 0.8 * onWires(name, 'load_fF'), error_fF: 0 },
-      ...(beside ? [{ a: name, b: beside, fF: 0.2 * onWires(name, 'load_fF'), error_fF: 0 }] : []),
-    ];
-  });
-  return { nets: [...names, 'TOP', 'VSS'], pairs: [...pairs, { a: 'TOP', b: 'VSS', fF: 31.7, error_fF: 0 }], wires };
-}
-
-const coupling = coupled(array);
+const drive = { switch_ohm: 8000, reference_ohm: 20 };
+const array = drawn({ bits: BITS, effort: 'quick' });
+const driven = drawn({ bits: BITS, effort: 'quick', drive });
+const coupling = array.circuit!.coupling;
 
 function run(deck: readonly string[]): string {
   writeFileSync(join(directory, 'deck.cir'), [...deck, ''].join('\n'));
@@ -63,8 +33,7 @@ function instance(netlist: string): { readonly pins: readonly string[]; readonly
 }
 
 describe('the extracted netlist', () => {
-  const { circuit } = circuitOf(array, coupling, undefined);
-  const netlist = writeExtractedNetlist(array, circuit);
+  const netlist = writeExtractedNetlist(array.polygons!, array.circuit!);
 
   it('gives the levels of its capacitances at every code', () => {
     const { pins, lines } = instance(netlist);
@@ -94,9 +63,14 @@ describe('the extracted netlist', () => {
       Array.from({ length: BITS }, (_, bit) => ((code >> bit) & 1) * toTop(`B${bit}`)).reduce((a, b) => a + b, 0);
     const lsb = on(CODES - 1) / all / (CODES - 1);
     levels.forEach((level, code) => expect(Math.abs(level - on(code) / all) / lsb).toBeLessThan(1e-6));
-    // They are no straight line: the coupling is there.
-    const bent = levels.map((level, code) => level / lsb - code);
-    expect(Math.max(...bent.map(Math.abs))).toBeGreaterThan(1e-3);
+    // From the line through both ends they are off by what the metrics say.
+    const step = (levels[CODES - 1] - levels[0]) / (CODES - 1);
+    const inl = levels.map((level, code) => (level - levels[0]) / step - code);
+    const dnl = inl.slice(1).map((value, code) => value - inl[code]);
+    const { inl_lsb, dnl_lsb = 0 } = array.metrics.parasitic!;
+    expect(inl_lsb).toBeGreaterThan(1e-3);
+    expect(Math.abs(Math.max(...inl.map(Math.abs)) - inl_lsb)).toBeLessThan(1e-6);
+    expect(Math.abs(Math.max(...dnl.map(Math.abs)) - dnl_lsb)).toBeLessThan(1e-6);
   });
 });
 
@@ -125,30 +99,29 @@ function stepTimes(
 }
 
 describe('settling of a bit with the common plate held', () => {
-  const last = (name: string, circuit: ReturnType<typeof circuitOf>['circuit']) => {
-    const { stayed } = circuit.nets.find((net) => net.name === name)!;
+  const last = (name: string, { nets }: Circuit) => {
+    const { stayed } = nets.find((net) => net.name === name)!;
     return stayed === 0 ? name : `xarray.${name}_${stayed}`.toLowerCase();
   };
 
   it('by wires alone is half done no later than the Elmore delay says', () => {
-    const { timings, circuit } = circuitOf(array, coupling, undefined);
-    const netlist = writeExtractedNetlist(array, circuit);
-    for (const { name, elmore_ps = 0, settling_ps } of timings) {
+    const { circuit, metrics, polygons } = array;
+    const netlist = writeExtractedNetlist(polygons!, circuit!);
+    for (const { name, elmore_ps = 0, settling_ps } of metrics.parasitic!.bits) {
       expect(settling_ps).toBeUndefined();
-      const [half] = stepTimes(netlist, name, last(name, circuit), 1e-6, elmore_ps, [0.5]);
+      const [half] = stepTimes(netlist, name, last(name, circuit!), 1e-6, elmore_ps, [0.5]);
       expect(half).toBeLessThanOrEqual(elmore_ps);
       expect(half).toBeGreaterThan(0.3 * elmore_ps);
     }
   });
 
   it('where the switch dominates takes ln 2 of it to the half, and the settling time to half an LSB', () => {
-    const drive = { switch_ohm: 8000, reference_ohm: 20 };
-    const { timings, circuit } = circuitOf(array, coupling, drive);
-    const netlist = writeExtractedNetlist(array, circuit);
-    timings.forEach(({ name, elmore_ps = 0, settling_ps = 0 }, bit) => {
+    const { circuit, metrics, polygons } = driven;
+    const netlist = writeExtractedNetlist(polygons!, circuit!);
+    metrics.parasitic!.bits.forEach(({ name, elmore_ps = 0, settling_ps = 0 }, bit) => {
       const weight = 2 ** bit;
-      const ohm = 8000 / weight + 20;
-      const [half, settled] = stepTimes(netlist, name, last(name, circuit), ohm, elmore_ps, [
+      const ohm = drive.switch_ohm / weight + drive.reference_ohm;
+      const [half, settled] = stepTimes(netlist, name, last(name, circuit!), ohm, elmore_ps, [
         0.5,
         1 - 1 / (2 * weight),
       ]);
