@@ -52,7 +52,7 @@ export interface ParasiticFigures {
 }
 
 /** Of a bit's wires, with `TOP` held; delays absent where the technology does not state resistances. */
-export interface BitFigures {
+interface BitFigures {
   readonly name: string;
   readonly topCoupling_fF: number;
   readonly load_fF: number;

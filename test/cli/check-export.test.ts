@@ -159,7 +159,11 @@ describe('export', () => {
   it('writes the netlists that are asked for', async () => {
     const own = machine();
     expect(await own.run(`export ${floorplanFile} --to spice --out e --devices merged --dummies omit`)).toBe(0);
-    expect(own.written[0]?.map(({ path }) => path)).toEqual(['e/cdac4.cir', 'e/cdac4.lvs.cir', 'e/cdac4.extracted.cir']);
+    expect(own.written[0]?.map(({ path }) => path)).toEqual([
+      'e/cdac4.cir',
+      'e/cdac4.lvs.cir',
+      'e/cdac4.extracted.cir',
+    ]);
     expect(own.text('e/cdac4.cir')).not.toMatch(/dummy/);
     expect(own.text('e/cdac4.lvs.cir')).toMatch(/^CB3 TOP B3 cpp w=4.4u l=4.4u m=8$/m);
     expect(own.text('e/cdac4.lvs.cir')).not.toMatch(/dummy/);
