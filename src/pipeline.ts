@@ -565,7 +565,7 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       ? { cells, capacitors, ringUnits, rings }
       : withRingUnits(rules, capacitors, cells, rings, pins);
   const facing = asWired(placed, pins);
-  const { hookup, unfit } = wire(rules, facing, pins, {
+  const { hookup, unfit, judged } = wire(rules, facing, pins, {
     ...(keepHookup && floorplan.hookup && { given: planAsWired(floorplan.hookup, pins) }),
     ...(array?.tracksPerChannel !== undefined && { tracks: array.tracksPerChannel }),
     ...(tracksAtLeast !== undefined && { atLeast: tracksAtLeast }),
@@ -582,7 +582,7 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
     hookup: planAsWired(planOf(hookup), pins),
   };
   const area_um2 = figure(um(frame.blockWidth) * um(frame.height));
-  return finish(core, drawnAs, { hookup: hookupFigures(facing, hookup), area_um2 }, polygons);
+  return finish(core, drawnAs, { hookup: hookupFigures(facing, hookup, judged), area_um2 }, polygons);
 }
 
 /** The figures of bits with how fast these are. */

@@ -118,7 +118,7 @@ function hookupLines({ hookup, area_um2 }: Metrics): readonly Line[] {
   );
   if (hookup.wireLength_um !== undefined) parts.push(`${brief(hookup.wireLength_um)} um of wire`);
   if (parts.length === 0) parts.push(`${counted(hookup.columnNets, 'pair')} of a column and a bit in it`);
-  const lines: Line[] = [['hookup', parts.join(', ')]];
+  const lines: Line[] = [['hookup', `${parts.join(', ')}${hookupJudged(hookup)}`]];
   if (area_um2 !== undefined) lines.push(['area', `${brief(area_um2)} um2, rings and buses included`]);
   return lines;
 }
@@ -156,6 +156,14 @@ function totalLines({ total }: Metrics): readonly Line[] {
   if (total === undefined) return [];
   const figures = { inl_lsb: total.inl3Sigma_lsb, dnl_lsb: total.dnl3Sigma_lsb };
   return [['together', `${lsb(figures)} at the worst code: gradient, wires and three sigma of mismatch`]];
+}
+
+function hookupJudged({ status, lowerBound, tracksPerChannel }: Metrics['hookup']): string {
+  if (status === 'proved') return '; the best on as many tracks, proved';
+  if (lowerBound === undefined) return '';
+  const tracks =
+    lowerBound.tracksPerChannel === tracksPerChannel ? '' : `${counted(lowerBound.tracksPerChannel, 'track')}, `;
+  return `; no hookup has fewer than ${tracks}${counted(lowerBound.trunks, 'trunk')}, ${counted(lowerBound.crossovers, 'crossover')}`;
 }
 
 /** "10 bits" for binary weights, else the weights. */

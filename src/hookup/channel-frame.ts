@@ -1,5 +1,6 @@
 import type { ChannelRules } from './channel-rules.js';
 import { type Frame, frameOf, type FrameSize } from './frame.js';
+import type { Lengths } from './track-order.js';
 
 /** The frame with the channels between its columns. */
 export interface ChannelFrame extends Frame {
@@ -17,6 +18,14 @@ export const channelPitch = (rules: ChannelRules, tracks: number): [x: number, y
   rules.plate[0] + 2 * rules.wideSpacing + tracks * rules.trackWidth + (tracks - 1) * rules.trackSpacing,
   rules.plate[1] + rules.rowGap,
 ];
+
+/** What the router measures wires in. */
+export const channelLengths = (rules: ChannelRules): Lengths => ({
+  row: rules.plate[1] + rules.rowGap,
+  level: rules.tabLevel,
+  track: rules.trackWidth + rules.trackSpacing,
+  reach: rules.plate[0] / 2 + rules.wideSpacing + rules.trackWidth / 2,
+});
 
 export function channelFrame(rules: ChannelRules, size: FrameSize & { readonly tracks: number }): ChannelFrame {
   const { rings, tracks } = size;

@@ -2,12 +2,12 @@ import { firstAtLeast } from '../core/order.js';
 import { um } from '../core/units.js';
 import type { HookupFigures } from '../spec/metrics.js';
 import { columnNets } from './column-nets.js';
-import type { Placed } from './plan.js';
+import type { Judged, Placed } from './plan.js';
 import type { Hookup } from './style.js';
 import type { Wire } from './wires.js';
 
 /** Counts what the wires of the bits come to; definitions: README, "Figures". Fill, termination and `VSS` do not count. */
-export function hookupFigures(placed: Placed, hookup: Hookup): HookupFigures {
+export function hookupFigures(placed: Placed, hookup: Hookup, judged?: Judged): HookupFigures {
   const { frame } = hookup;
   const bits = new Set(
     placed.capacitors.filter((capacitor) => capacitor.role === 'bit').map((capacitor) => capacitor.name),
@@ -26,8 +26,16 @@ export function hookupFigures(placed: Placed, hookup: Hookup): HookupFigures {
     bends: joints,
     vias: joints,
     wireLength_um: um(length),
+    ...(judged && { status: judged.proved ? 'proved' : 'effort-spent' }),
+    ...(judged && !judged.proved && { lowerBound: lowerBound(judged) }),
   };
 }
+
+const lowerBound = ({ bound }: Judged) => ({
+  tracksPerChannel: bound.tracks,
+  trunks: bound.trunks,
+  crossovers: bound.crossovers,
+});
 
 /** Stubs of bits over trunks of other bits, inside the core. */
 function crossovers(hookup: Hookup, bits: ReadonlySet<string>): number {

@@ -1,7 +1,8 @@
 import { Infeasible } from '../core/problem.js';
 import type { Capacitor, RingUnit } from '../spec/floorplan.js';
-import { assignSides, type Sides } from './side-assignment.js';
-import { type ChannelNet, crossoversBetween, orderTracks, placeOnTracks } from './track-order.js';
+import { route, type RouteBound } from './route.js';
+import type { Column, RoutingProblem, State } from './routing-problem.js';
+import type { Lengths } from './track-order.js';
 
 export type Side = 'L' | 'R';
 
@@ -19,6 +20,13 @@ export interface Plan {
   readonly sides: readonly (readonly Side[])[];
   /** Columns + 1 lists of nets from left to right, all of one length; "VSS" is a free track. */
   readonly channels: readonly (readonly string[])[];
+}
+
+/** The stubs of a net in one channel, by their heights: those from the left-hand and from the right-hand column, ascending. */
+export interface ChannelNet {
+  readonly net: string;
+  readonly fromLeft: readonly number[];
+  readonly fromRight: readonly number[];
 }
 
 /** A unit in the ring that has no way straight down: a termination with more rings below it takes a free track beside it. */
@@ -66,106 +74,80 @@ export function nearestVss(
   return side === 'R' ? list.findIndex(isVss) : list.findLastIndex(isVss);
 }
 
-/**
- * Plans the hookup of a placement in the channel style: sides, track order and places, with the fewest tracks, then trunks, then
- * crossovers. `tracks` is honoured where given. `proved` is true where no hookup is better in that order.
- * @throws Infeasible where the tracks asked for do not suffice.
- */
-export function planHookup(placed: Placed, tracks?: number): Plan & { readonly proved: boolean } {
-  const { cells, capacitors } = placed;
-  const columns = cells[0].length;
-  const inCore = capacitors.filter((capacitor) => cells.some((row) => row.includes(capacitor.name)));
-  const index = new Map(inCore.map((capacitor, i) => [capacitor.name, i]));
-  const rowsOf = Array.from({ length: columns }, () => inCore.map((): number[] => []));
-  cells.forEach((row, r) => row.forEach((name, c) => name !== '-' && rowsOf[c][index.get(name)!].push(r)));
-  const masks = rowsOf.map((nets) => nets.reduce((mask, rows, n) => (rows.length > 0 ? mask | (1 << n) : mask), 0));
-
-  const problem = { columns, nets: inCore.length, masks, crossovers: crossoverBound(rowsOf, inCore.length) };
-  const least = assignSides(problem)!;
-  const lay = (sides: Sides | null, width: number) => (sides === null ? null : layTracks(placed, sides, index, width));
-  if (tracks !== undefined) {
-    const asked =
-      tracks <= least.tracks
-        ? lay(tracks < least.tracks ? null : least, tracks)
-        : lay(assignSides(problem, tracks), tracks);
-    if (asked !== null) return asked;
-  }
-  // One track more than the nets need is always enough for fill dummies and a termination, if the nets do not take it.
-  const wider = least.tracks + 1;
-  const found = lay(least, least.tracks) ?? lay(assignSides(problem, wider), wider) ?? lay(least, wider)!;
-  if (tracks !== undefined)
-    throw new Infeasible(
-      `This placement needs more than the ${tracks} track${tracks === 1 ? '' : 's'} per channel asked for.`,
-      `Allow ${found.channels[0].length}, or leave tracksPerChannel out.`,
-    );
-  return found;
+/** What is known of the best plan for a placement on as many tracks. */
+export interface Judged {
+  /** None is better: has fewer trunks, then fewer crossovers, then less wire in the core and along the buses. */
+  readonly proved: boolean;
+  /** None has less, each figure as long as those before it are met; of the tracks, none at all. Bits alone count. */
+  readonly bound: RouteBound;
 }
 
-/** The sum over pairs of nets of the cheaper of their two orders, for one channel: no order of its tracks has fewer crossovers. */
-function crossoverBound(rowsOf: readonly (readonly number[][])[], nets: number) {
-  const columns = rowsOf.length;
-  const both = 1 << nets;
-  const known = new Map<number, number>();
-  return (channel: number, right: number, left: number): number => {
-    const key = (channel * both + right) * both + left;
-    const before = known.get(key);
-    if (before !== undefined) return before;
-    const entries: ChannelNet[] = [];
-    for (let n = 0; n < nets; n++) {
-      const bit = 1 << n;
-      if (((right | left) & bit) === 0) continue;
-      const fromLeft = right & bit && channel > 0 ? rowsOf[channel - 1][n].map((row) => 2 * row + 1) : [];
-      const fromRight = left & bit && channel < columns ? rowsOf[channel][n].map((row) => 2 * row) : [];
-      entries.push({ net: '', fromLeft, fromRight });
-    }
-    let sum = 0;
-    for (let m = 0; m < entries.length; m++)
-      for (let n = 0; n < m; n++)
-        sum += Math.min(crossoversBetween(entries[m], entries[n]), crossoversBetween(entries[n], entries[m]));
-    known.set(key, sum);
-    return sum;
+/**
+ * Plans the hookup of a placement in the channel style: the side of every unit, the order of the tracks and their places, with the fewest
+ * tracks, or as many as asked for; then the fewest trunks, crossovers, and the least wire in the core and along the buses.
+ * @throws Infeasible where the tracks asked for do not suffice.
+ */
+export function planHookup(placed: Placed, lengths: Lengths, tracks?: number): Plan & Judged {
+  const { names, problem } = routingProblem(placed, lengths);
+  const found = route(problem, tracks);
+  if (found.tracks === null) {
+    const needed = planHookup(placed, lengths).channels[0].length;
+    throw new Infeasible(
+      found.surely
+        ? `This placement needs more than the ${tracks} track${tracks === 1 ? '' : 's'} per channel asked for.`
+        : `No hookup of this placement was found on the ${tracks} tracks per channel asked for.`,
+      `Allow ${needed}, or leave tracksPerChannel out.`,
+    );
+  }
+  const { bound, proved } = found;
+  const channels = found.channels.map((list) => list.map((net) => (net === -1 ? 'VSS' : names[net])));
+  const sides = sidesOf(placed, problem, found.states, names);
+  const stubs = channelStubs(placed, { sides, channels });
+  placed.cells.forEach((row, r) => {
+    row.forEach((name, c) => {
+      if (name !== '-') return;
+      sides[r][c] = nearestVss({ sides, channels }, stubs, r, c, 'L') !== -1 ? 'L' : 'R';
+    });
+  });
+  const others = problem.counted.filter((counted) => !counted).length;
+  return { sides, channels, proved, bound: { ...bound, trunks: bound.trunks - others } };
+}
+
+/** Whatever needs a track: the capacitors of the core, and what the ring has no other way for. A unit there counts as one of the row below the core. */
+function routingProblem(placed: Placed, lengths: Lengths): { names: string[]; problem: RoutingProblem } {
+  const { cells, capacitors } = placed;
+  const rows = cells.length;
+  const inRing = placed.ringUnits.filter((unit) => needsTrack(unit, placed));
+  const wired = capacitors.filter(
+    ({ name }) => cells.some((row) => row.includes(name)) || inRing.some(({ capacitor }) => capacitor === name),
+  );
+  const columns = cells[0].map((_, c): Column => {
+    const names = [
+      ...cells.map((row) => row[c]),
+      ...inRing.filter(({ column }) => column === c).map(({ capacitor }) => capacitor),
+    ];
+    const rowsOf = wired.map(({ name }) => names.flatMap((other, row) => (other === name ? [row] : [])));
+    const nets = [...wired.keys()].filter((net) => rowsOf[net].length > 0);
+    return { nets, rows: nets.map((net) => rowsOf[net]), fill: names.lastIndexOf('-') };
+  });
+  return {
+    names: wired.map(({ name }) => name),
+    problem: { rows: rows, columns, counted: wired.map(({ role }) => role === 'bit'), lengths },
   };
 }
 
-/** Orders the tracks of every channel for given sides. Null where a fill dummy or a termination finds no `VSS` line or free track. */
-function layTracks(
-  placed: Placed,
-  assigned: Sides,
-  index: ReadonlyMap<string, number>,
-  tracks: number,
-): (Plan & { readonly proved: boolean }) | null {
-  const { cells, ringUnits } = placed;
-  const sides = cells.map((row) =>
-    row.map((name, c): Side => (name !== '-' && (assigned.right[c] >> index.get(name)!) & 1 ? 'R' : 'L')),
+function sidesOf(
+  { cells }: Placed,
+  { columns }: RoutingProblem,
+  states: readonly State[],
+  names: readonly string[],
+): Side[][] {
+  return cells.map((row, r) =>
+    row.map((name, c): Side => {
+      const at = columns[c].nets.findIndex((net) => names[net] === name);
+      const { right, splits } = states[c];
+      const split = splits.find((each) => each.at === at);
+      return split ? (split.right.includes(r) ? 'R' : 'L') : at !== -1 && (right >> at) & 1 ? 'R' : 'L';
+    }),
   );
-  const channels = Array.from({ length: cells[0].length + 1 }, () => new Array<string>(tracks).fill('VSS'));
-  let proved = assigned.proved;
-  const inCore = { ...placed, ringUnits: [] };
-  channelStubs(inCore, { sides, channels }).forEach((entries, channel) => {
-    const listed = [...entries.values()];
-    const { order, crossovers } = orderTracks(listed);
-    let bound = 0;
-    for (let m = 0; m < listed.length; m++)
-      for (let n = 0; n < m; n++)
-        bound += Math.min(crossoversBetween(listed[m], listed[n]), crossoversBetween(listed[n], listed[m]));
-    proved &&= crossovers === bound;
-    placeOnTracks(order, tracks).forEach((track, i) => (channels[channel][track] = order[i].net));
-  });
-  for (const unit of ringUnits) {
-    if (!needsTrack(unit, placed)) continue;
-    const channel = [unit.column, unit.column + 1].find((j) => channels[j].includes('VSS'));
-    if (channel === undefined) return null;
-    const list = channels[channel];
-    list[channel === unit.column ? list.lastIndexOf('VSS') : list.indexOf('VSS')] = unit.capacitor;
-  }
-  const plan = { sides, channels };
-  const stubs = channelStubs(placed, plan);
-  for (let row = 0; row < cells.length; row++)
-    for (let column = 0; column < cells[row].length; column++) {
-      if (cells[row][column] !== '-') continue;
-      const side = (['L', 'R'] as const).find((s) => nearestVss(plan, stubs, row, column, s) !== -1);
-      if (side === undefined) return null;
-      sides[row][column] = side;
-    }
-  return { sides, channels, proved };
 }

@@ -32,6 +32,10 @@ export interface HookupFigures {
   readonly bends?: number;
   readonly vias?: number;
   readonly wireLength_um?: number;
+  /** "proved": no hookup of these cells on as many tracks has fewer trunks, or as many and fewer crossovers, then less wire in the core. */
+  readonly status?: 'proved' | 'effort-spent';
+  /** Where it is not proved: what no hookup goes below, each figure as long as those before it are met. */
+  readonly lowerBound?: { readonly tracksPerChannel: number; readonly trunks: number; readonly crossovers: number };
 }
 
 /** Standard deviations at the worst code. `placement`: of units of variance 1, correlated by their distance alone. */

@@ -1,5 +1,5 @@
 import { coreSchema } from './schema-floorplan.js';
-import { atLeastZero, file, list, name, number, object, seed, share, status, whole } from './schema-parts.js';
+import { atLeastZero, choice, file, list, name, number, object, seed, share, status, whole } from './schema-parts.js';
 import type { Schema } from './schema-parts.js';
 
 /** A magnitude: the largest value over all codes, a length, an area. */
@@ -42,6 +42,8 @@ const hookup = object({
   'bends?': count,
   'vias?': count,
   'wireLength_um?': figure,
+  'status?': choice('proved', 'effort-spent'),
+  'lowerBound?': object({ tracksPerChannel: count, trunks: count, crossovers: count }),
 });
 
 const bit = object({

@@ -1,5 +1,5 @@
-// npm run bench -- [whole] [solve] [hostile] [interrupts] [--json FILE] [--runs N] [--seed N] [--from N]: what a run costs, as a table and
-// as JSON; and, only if asked for by name, how it takes damaged inputs and signals. Nothing here passes or fails.
+// npm run bench -- [whole] [solve] [router] [hostile] [interrupts] [--json FILE] [--runs N] [--seed N] [--from N]: what a run costs, as a table and
+// as JSON; and, only if asked for by name, how the router stands beside a general solver, how it takes damaged inputs and signals. Nothing here passes or fails.
 import { writeFileSync } from 'node:fs';
 import { cpus } from 'node:os';
 import { parseArgs } from 'node:util';
@@ -7,11 +7,12 @@ import { exponent } from './fit.js';
 import { measureHostile } from './hostile.js';
 import { measureInterrupts } from './interrupts.js';
 import { flat, measurePlacement } from './placement.js';
+import { measureRouter } from './router.js';
 import { measureSolve } from './solve.js';
 import { measureWhole } from './whole.js';
 
 const bitCounts = [6, 8, 10, 12];
-const known = ['whole', 'solve', 'placement', 'hostile', 'interrupts'];
+const known = ['whole', 'solve', 'placement', 'router', 'hostile', 'interrupts'];
 
 const { values, positionals } = parseArgs({
   allowPositionals: true,
@@ -58,6 +59,12 @@ if (chosen.includes('placement')) {
   print('The search (emphasis gradient) and swap annealing with a full recount, the same seconds', measured.baseline);
   print('The tool at 12 bits, cells alone, with one worker and with two', measured.workers);
   result['placement'] = measured;
+}
+if (chosen.includes('router')) {
+  const measured = await measureRouter({ runs: Number(values.runs ?? 200), seed: Number(values.seed) });
+  print('The router against an integer programme, random placements', [measured.against]);
+  print('The router on whole arrays', measured.rows);
+  result['router'] = measured;
 }
 if (chosen.includes('hostile')) {
   const runs = Number(values.runs ?? 20_000);
