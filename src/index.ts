@@ -13,6 +13,7 @@ export { Infeasible, InputError } from './core/problem.js';
 export type { Problem, Result } from './core/problem.js';
 export { drawFloorplanSvg } from './export/floorplan-svg.js';
 export { drawHookupSvg } from './export/hookup-svg.js';
+export { netsOf } from './export/drawn-pins.js';
 export { writeStream } from './export/gdsii.js';
 export { writeAbstract } from './export/lef.js';
 export { withPinNames } from './export/pin-names.js';

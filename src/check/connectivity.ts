@@ -59,6 +59,7 @@ const layerAt = (c: Conductors, node: number): string => (c.layerOf[node] < 0 ? 
 /** Names on several pieces, pieces without a name, and names without a unit. */
 function opens(drawing: Drawing, named: Named, sources: ReadonlyMap<string, ReadonlySet<number>>): Finding[] {
   const { c, labels, names, units } = named;
+  const underlay = drawing.technology.underlay?.net;
   const members = membersOf(c);
   const finder = new JointFinder(c, drawing);
   const withUnits = new Set(units.flatMap((unit) => [...unit.bottom, ...unit.top].map((node) => c.piece[node])));
@@ -115,7 +116,8 @@ function opens(drawing: Drawing, named: Named, sources: ReadonlyMap<string, Read
     if (net) findings.push({ rule: 'open', ...common, text: `plates meant to be on ${net} are not joined to it` });
   }
   for (const [piece, nets] of names) {
-    if (withUnits.has(piece) || cutOff.has(piece) || nets.includes(ground)) continue;
+    if (withUnits.has(piece) || cutOff.has(piece) || nets.includes(ground) || nets.includes(underlay ?? ground))
+      continue;
     const label = labels.find((l) => c.piece[l.node] === piece)!;
     const joint = finder.find(members[piece], isOn(label.name)) ?? label;
     const at_um = placeUm(joint.x, joint.y);

@@ -17,12 +17,16 @@ const noBoxes = (): FlatLayer => ({
   cell: new Int32Array(),
 });
 
-/** One layer or via of the technology as drawn: its rectangles, their union, and an index of either. */
-export interface Sheet {
-  readonly boxes: FlatLayer;
-  readonly index: BoxIndex;
+/** A region as disjoint slabs, with an index of them. */
+export interface Region {
   readonly slabs: Boxes;
   readonly slabIndex: BoxIndex;
+}
+
+/** One layer or via of the technology as drawn: its rectangles, their union, and an index of either. */
+export interface Sheet extends Region {
+  readonly boxes: FlatLayer;
+  readonly index: BoxIndex;
 }
 
 /** A drawing flattened, with what several rules ask of it. */
@@ -82,12 +86,13 @@ export function liesBelow(a: Layer, b: Layer, technology: Technology): boolean {
 export function crossedLayers(via: Via, drawing: Drawing): Layer[] {
   const { technology } = drawing;
   const [lower, upper] = [drawing.layer(via.lower), drawing.layer(via.upper)];
-  const between = (l: Layer) => liesBelow(lower, l, technology) && liesBelow(l, upper, technology);
+  // A well lies below whatever contacts come from.
+  const between = (l: Layer) => l.kind !== 'well' && liesBelow(lower, l, technology) && liesBelow(l, upper, technology);
   return technology.layers.filter((l) => conducts(l) && (l === lower || l === upper || between(l)));
 }
 
-/** The area (nm2) of a window that a layer covers. */
-export function coveredArea(sheet: Sheet, x0: number, y0: number, x1: number, y1: number): number {
+/** The area (nm2) of a window that a region covers. */
+export function coveredArea(sheet: Region, x0: number, y0: number, x1: number, y1: number): number {
   const { slabs } = sheet;
   let area = 0;
   for (const i of sheet.slabIndex.search(x0, y0, x1, y1))

@@ -1,14 +1,16 @@
+import { BoxIndex, BoxList } from '../core/boxes.js';
+import { unitedSlabs } from '../core/slabs.js';
 import type { Polygons } from '../spec/polygons.js';
-import { conductorsOf } from './conductors.js';
+import { type Conductors, conductorsOf } from './conductors.js';
 import { checkConnectivity } from './connectivity.js';
-import { coveredArea, Drawing } from './drawing.js';
+import { coveredArea, Drawing, type Region } from './drawing.js';
 import type { Finding } from './finding.js';
 import { inOrder, placeUm } from './finding.js';
 import { checkLattice } from './lattice.js';
 import { type BitUnit, type Neighbourhood, neighbourhoodOf } from './neighbourhood.js';
 import { commonPlate, pieceNames, pinLabels } from './nets.js';
 import { checkShapes } from './shape-rules.js';
-import { unitsOf } from './unit-recognition.js';
+import { type Unit, unitsOf } from './unit-recognition.js';
 import { checkUnits } from './units.js';
 import { checkVertices } from './vertices.js';
 import { checkVia } from './via-rules.js';
@@ -37,6 +39,16 @@ function checkLayers(drawing: Drawing): Finding[] {
   return findings;
 }
 
+/** The top plates: their layer, or the combs where these share a metal with their frames and with wires. */
+function topPlates(drawing: Drawing, { box }: Conductors, units: readonly Unit[]): Region {
+  const { roles } = drawing.technology;
+  if (roles.topPlate !== roles.bottomPlate) return drawing.sheet(roles.topPlate);
+  const list = new BoxList();
+  for (const node of units.flatMap(({ top }) => top)) list.push(box.x0[node], box.y0[node], box.x1[node], box.y1[node]);
+  const slabs = unitedSlabs(list.finish());
+  return { slabs, slabIndex: new BoxIndex(slabs) };
+}
+
 /** What a drawing is worth by itself. */
 export interface Verdict {
   /** In a fixed order; none for a sound drawing. */
@@ -63,12 +75,13 @@ export function judgePolygons(p: Polygons): Verdict {
     const capacitor = names.get(c.piece[unit.bottom[0]])?.find((net) => bits.has(net));
     return capacitor !== undefined && isOn(unit.top[0], commonPlate) ? [{ ...unit, capacitor }] : [];
   });
+  const tops = topPlates(drawing, c, found.units);
   return {
     findings: inOrder([
       ...findings,
       ...checkVertices(drawing),
       ...technology.layers.flatMap((layer) => checkShapes(drawing.sheet(layer.name).slabs, layer)),
-      ...technology.vias.flatMap((via) => checkVia(drawing, via)),
+      ...technology.vias.flatMap((via) => checkVia(drawing, via, tops)),
       ...checkLayers(drawing),
       ...checkConnectivity(drawing, { c, labels, names, units: found.units }),
       ...checkUnits(drawing, found, p.capacitors, { c, labels, names }),

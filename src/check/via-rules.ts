@@ -1,7 +1,7 @@
 import { componentsOf } from '../core/components.js';
 import { nm } from '../core/units.js';
 import type { Via } from '../spec/technology.js';
-import type { Drawing } from './drawing.js';
+import type { Drawing, Region } from './drawing.js';
 import { coveredArea, liesBelow } from './drawing.js';
 import type { Finding } from './finding.js';
 import { placeUm } from './finding.js';
@@ -82,12 +82,11 @@ function enclosure(drawing: Drawing, via: Via): Finding[] {
   return findings;
 }
 
-function underPlate(drawing: Drawing, via: Via): Finding[] {
+function underPlate(drawing: Drawing, via: Via, plates: Region): Finding[] {
   const { technology } = drawing;
   const plate = drawing.layer(technology.roles.topPlate);
   if (technology.viaUnderTopPlate || !liesBelow(drawing.layer(via.upper), plate, technology)) return [];
   const { boxes } = drawing.viaSheet(via.name);
-  const plates = drawing.sheet(plate.name);
   const findings: Finding[] = [];
   for (let i = 0; i < boxes.x0.length; i++) {
     if (coveredArea(plates, boxes.x0[i], boxes.y0[i], boxes.x1[i], boxes.y1[i]) === 0) continue;
@@ -101,10 +100,10 @@ function underPlate(drawing: Drawing, via: Via): Finding[] {
   return findings;
 }
 
-/** Rules of one via: its size, spacing and enclosure, and where it may be. */
-export const checkVia = (drawing: Drawing, via: Via): Finding[] => [
+/** Rules of one via: its size, spacing and enclosure, and where it may be. @param topPlates where no via below them may be. */
+export const checkVia = (drawing: Drawing, via: Via, topPlates: Region): Finding[] => [
   ...size(drawing, via),
   ...checkViaSpacing(drawing.viaSheet(via.name).slabs, via.name, nm(via.spacing_um)),
   ...enclosure(drawing, via),
-  ...underPlate(drawing, via),
+  ...underPlate(drawing, via, topPlates),
 ];

@@ -1,5 +1,5 @@
-import { InputError, applyLayerMap, drawFloorplan, parseLayerMap, parsePins } from '../index.js';
-import type { Floorplan, PinMap, Technology } from '../index.js';
+import { InputError, applyLayerMap, drawFloorplan, netsOf, parseLayerMap, parsePins } from '../index.js';
+import type { PinMap, Technology } from '../index.js';
 import { UsageError, exit, shown } from './fault.js';
 import { drawingFiles, formats } from './files.js';
 import type { Format } from './files.js';
@@ -7,6 +7,7 @@ import { inFile, readText } from './input.js';
 import type { Io } from './io.js';
 import { findingLines, lines } from './summary.js';
 import { floorplanToDraw, valueOf } from './technology.js';
+import type { ToDraw } from './technology.js';
 
 /** The options of `export` as typed. */
 export interface ExportFlags {
@@ -94,9 +95,8 @@ async function withLayers(io: Io, technology: Technology, path: string): Promise
   return mapped.value;
 }
 
-async function pinsFrom(io: Io, { capacitors }: Floorplan, path: string): Promise<PinMap> {
-  const known = [...capacitors.map(({ name }) => name), 'TOP', 'VSS'];
-  return valueOf(parsePins(await readText(io, path), path, known));
+async function pinsFrom(io: Io, { floorplan, technology }: ToDraw, path: string): Promise<PinMap> {
+  return valueOf(parsePins(await readText(io, path), path, netsOf({ ...floorplan, technology })));
 }
 
 /** `export`: the drawing of a floorplan in other formats. */
@@ -108,7 +108,7 @@ export async function exportFiles(io: Io, file: string, flags: ExportFlags): Pro
       `export --stub-cell: found units that are drawn; wanted a technology whose unit is a cell of one's own library`,
     ]);
   const technology = flags.layers === undefined ? own.technology : await withLayers(io, own.technology, flags.layers);
-  const pins = flags.pins === undefined ? undefined : await pinsFrom(io, own.floorplan, flags.pins);
+  const pins = flags.pins === undefined ? undefined : await pinsFrom(io, own, flags.pins);
   // Only a netlist asks for the capacitances of the wires.
   const draw = (on: Technology, extracted: boolean) =>
     inFile(file, () => drawFloorplan(own.floorplan, on, { keepHookup: true, extracted }));

@@ -69,7 +69,7 @@ function movedTo(floorplan: Floorplan, technology: Technology): Floorplan {
   return { ...floorplan, array: valueOf(resolveArray(spec, technology)).spec };
 }
 
-interface ToDraw {
+export interface ToDraw {
   readonly floorplan: Floorplan;
   readonly technology: Technology;
   /** What the user should know about the choice of the technology. */

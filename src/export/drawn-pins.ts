@@ -28,6 +28,15 @@ export interface DrawnBlock {
   readonly pins: readonly DrawnPin[];
 }
 
+/** Every net that has a pin. */
+export function netsOf({
+  capacitors,
+  technology: { underlay },
+}: Pick<Polygons, 'capacitors' | 'technology'>): string[] {
+  const own = underlay === undefined || underlay.net === VSS ? [] : [underlay.net];
+  return [...capacitors.map(({ name }) => name), TOP, VSS, ...own];
+}
+
 /**
  * The block and its pins: names on pin layers, with the shapes below them.
  * @throws InputError where the block has no outline, a name is none of the array's nets, or a net has no name
@@ -36,7 +45,7 @@ export function drawnBlock(p: Polygons): DrawnBlock {
   const flat = flatten(p.structures, p.topStructure);
   const block = outlineOf(p, flat);
   const problems: { pointer: string; found: string; wanted: string }[] = [];
-  const nets = [...p.capacitors.map((c) => c.name), TOP, VSS];
+  const nets = netsOf(p);
   nets.forEach((net, i) => {
     if (nets.indexOf(net) !== i)
       problems.push({

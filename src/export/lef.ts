@@ -56,7 +56,8 @@ export function writeAbstract(p: Polygons, options: AbstractOptions = {}): strin
     `  SIZE ${um(block.x1)} BY ${um(block.y1)} ;`,
     '  SYMMETRY X Y ;',
   ];
-  for (const pin of pins) out.push(...pinText(pin, nameOf(pin.net), layers, areas.get(pin.net)));
+  for (const pin of pins)
+    out.push(...pinText(pin, nameOf(pin.net), layers, areas.get(pin.net), p.technology.underlay?.net));
   out.push('  OBS', ...layers.flatMap((layer) => obstruction(drawn, layer)), '  END');
   out.push(`END ${p.topStructure}`, '', 'END LIBRARY', '');
   return out.join('\n');
@@ -69,8 +70,16 @@ function pinText(
   name: string,
   layers: readonly Named[],
   areas: ReadonlyMap<string, number> | undefined,
+  underlay: string | undefined,
 ): string[] {
-  const [direction, use] = net === VSS ? ['INOUT', 'GROUND'] : net === TOP ? ['INOUT', 'ANALOG'] : ['INPUT', 'ANALOG'];
+  const [direction, use] =
+    net === VSS
+      ? ['INOUT', 'GROUND']
+      : net === underlay
+        ? ['INOUT', 'POWER']
+        : net === TOP
+          ? ['INOUT', 'ANALOG']
+          : ['INPUT', 'ANALOG'];
   const ports = places.flatMap(({ layer: { of }, shape }) => [
     '    PORT',
     `      LAYER ${layers.find((layer) => layer.name === of)?.lefName ?? ''} ;`,

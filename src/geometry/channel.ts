@@ -6,11 +6,17 @@ import type { Placed } from '../hookup/plan.js';
 import { viaBetween } from '../hookup/rules.js';
 import type { Technology } from '../spec/technology.js';
 import type { Sheet } from './sheet.js';
+import { drawShieldLines } from './shield-lines.js';
 import { channelShield } from './shield.js';
 import { drawStrips } from './strips.js';
 
-/** What the channel style adds to its wires: the shield over the channels, ring units' lines, strips under the columns. */
-export function drawChannels(sheet: Sheet, technology: Technology, hookup: ChannelHookup): void {
+/** What the channel style adds to its wires: the shield over the channels, ring units' lines, strips under the columns, lines above. */
+export function drawChannels(
+  sheet: Sheet,
+  technology: Technology,
+  hookup: ChannelHookup,
+  groundedFills: boolean,
+): void {
   const { frame } = hookup;
   const { rules } = frame;
   const { roles } = technology;
@@ -28,6 +34,7 @@ export function drawChannels(sheet: Sheet, technology: Technology, hookup: Chann
   }
   drawRingUnits(sheet, technology, hookup);
   if (rules.strip) drawStrips(sheet, technology, hookup, rules.strip);
+  if (technology.shieldLines) drawShieldLines(sheet, technology, hookup, groundedFills);
 }
 
 /** Units of the ring that belong to the array: a tab downwards with a via to a line of their own, under the frame. */

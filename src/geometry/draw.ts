@@ -12,6 +12,7 @@ import { drawChannels, drawGroundedFills } from './channel.js';
 import { mirrorImage } from './mirror.js';
 import { drawRing } from './ring.js';
 import { Sheet } from './sheet.js';
+import { drawTies } from './ties.js';
 import { drawTopAside } from './top-aside.js';
 import { unitStructures } from './unit-cell.js';
 
@@ -45,15 +46,18 @@ export function drawPolygons(
     row >= 0 && row < rows && column >= 0 && column < columns ? placed.cells[row][column] : ringCell(row, column);
   drawRing(sheet, technology, frame, ringCell);
   drawWires(sheet, technology, hookup);
-  drawChannels(sheet, technology, hookup);
+  const grounded = fillTop === 'VSS' && placed.cells.some((names) => names.includes('-'));
+  drawChannels(sheet, technology, hookup, grounded);
+  const ties = drawTies(sheet, technology, frame, name);
   drawPins(sheet, technology, hookup);
   drawTop(sheet, technology, placed, hookup, fillTop);
-  if (fillTop === 'VSS') drawGroundedFills(sheet, technology, placed, hookup);
+  if (grounded) drawGroundedFills(sheet, technology, placed, hookup);
 
   const [unit, ...cellsOfUnit] = unitStructures(`${name}_unit`, technology, frame.rules);
-  if (cellsOfUnit.some((structure) => structure.name === name || structure.name === unit.name))
+  const own = [name, unit.name, ...ties.structures.map((structure) => structure.name)];
+  if (cellsOfUnit.some((structure) => own.includes(structure.name)))
     throw new Infeasible(
-      `The array's structures are called ${name} and ${unit.name}, and so is the technology's cell.`,
+      `The array's structures are called ${own.join(', ')}, and so is the technology's cell.`,
       'Give the array another name.',
     );
   const cells: string[] = [];
@@ -75,7 +79,12 @@ export function drawPolygons(
     angle_deg: 0,
     cells,
   };
-  const upright: Structure = { name, polygons: sheet.polygons, references: [units], labels: sheet.labels };
+  const upright: Structure = {
+    name,
+    polygons: sheet.polygons,
+    references: [units, ...ties.references],
+    labels: sheet.labels,
+  };
   const top = pins.bits === 'bottom' ? upright : mirrorImage(upright, 'y', frame.height);
   return {
     format: 'steelyard/polygons',
@@ -85,7 +94,7 @@ export function drawPolygons(
     topStructure: name,
     technology,
     capacitors: placed.capacitors,
-    structures: [...cellsOfUnit, unit, top],
+    structures: [...cellsOfUnit, unit, ...ties.structures, top],
   };
 }
 

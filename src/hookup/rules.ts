@@ -3,6 +3,7 @@ import { nm } from '../core/units.js';
 import type { Layer, Technology, Via } from '../spec/technology.js';
 import { trackWidthOf } from '../spec/tracks.js';
 import { isWideUnit } from '../spec/unit-geometry.js';
+import { tiesOf, tieWidth } from './ties.js';
 import { unitBody } from './unit-body.js';
 
 /**
@@ -32,6 +33,8 @@ export interface Rules {
   readonly upperSpacing: number;
   /** Spacing on the trunks' metal. */
   readonly lineSpacing: number;
+  /** From the block's left edge to the leftmost place for a pin. */
+  readonly pinsFrom: number;
   /** Between two drops, whose vias may stand side by side on one bus. */
   readonly dropSpacing: number;
   readonly rowGap: number;
@@ -94,7 +97,9 @@ export function commonRules(technology: Technology): Rules {
   const dropSpacing = Math.max(lineSpacing, viaApart);
   const upperSpacing = lengthOf(upper.minSpacing_um);
   const padSize = even(Math.max(toTop ? landing(toTop) : 0, viaFrame.landing, lengthOf(upper.minWidth_um)));
-  const frameWidth = even(Math.max(lengthOf(plateMetal.minWidth_um), viaFrame.landing, trackWidth));
+  const frameWidth = even(
+    Math.max(lengthOf(plateMetal.minWidth_um), viaFrame.landing, trackWidth, tieWidth(technology)),
+  );
 
   const wideSpacing = Math.max(spacing, lengthOf(plateMetal.wideSpacing_um));
   const metalSpacing = isWideUnit(technology) ? wideSpacing : spacing;
@@ -138,6 +143,7 @@ export function commonRules(technology: Technology): Rules {
     trackSpacing,
     upperSpacing,
     lineSpacing,
+    pinsFrom: tiesOf(technology).some(({ net }) => net !== 'VSS') ? frameWidth + spacing : spacing,
     dropSpacing,
     rowGap,
     strapWidth,

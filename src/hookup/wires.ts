@@ -51,7 +51,7 @@ export function pinsAlong(
   given?: readonly string[],
 ): Pins {
   const size = {
-    first: rules.spacing,
+    first: rules.pinsFrom,
     last: width - rules.frameWidth - rules.spacing - rules.trackWidth,
     pitch: rules.trackWidth + rules.dropSpacing,
     grid: rules.grid,

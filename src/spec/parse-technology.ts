@@ -4,6 +4,7 @@ import { read } from './read.js';
 import type { Refusal } from './read.js';
 import type { Report } from './report.js';
 import { Examination } from './technology-examination.js';
+import { checkGround } from './technology-ground.js';
 import {
   checkDevice,
   checkGrid,
@@ -27,6 +28,7 @@ export function checkTechnology(value: unknown, report: Report, at: string): voi
   checkPinLayers(examination);
   checkUnit(examination);
   checkDevice(examination);
+  checkGround(examination);
   const mismatch = record(examination.technology.mismatch);
   const correlated = real(mismatch.correlatedSigma_percent) ?? 0;
   if (correlated > 0 && mismatch.correlationLength_um === undefined) {

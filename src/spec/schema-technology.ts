@@ -10,6 +10,7 @@ import {
   length,
   lengthOrZero,
   list,
+  name,
   object,
   pair,
   position,
@@ -137,6 +138,17 @@ const roles = object({
   boundary: described(harmless, 'outline of the block'),
 });
 
+const tieRing = object({
+  diffusion: described(harmless, 'its layer; a via leads from it to the trunks, or to the underlay'),
+  'implant?': described(harmless, 'an implant around it'),
+  'implantEnclosure_um?': described(lengthOrZero, 'by which the implant surrounds the diffusion'),
+});
+const underlay = object({
+  layer: described(harmless, 'a well, diffusion or metal below the trunks'),
+  net: described(name, 'VSS, or a net of its own, which then has a pin beside those of the bits'),
+  'tie?': described(harmless, 'of a well on a net of its own: the diffusion that joins it to wires'),
+});
+
 export const technologySchema: Schema = file('technology', 'Technology template', {
   name: described(harmless, 'name of the template'),
   description: described(text(1000), 'what it is and what it is not'),
@@ -175,6 +187,12 @@ export const technologySchema: Schema = file('technology', 'Technology template'
   proximityReach_um: described(lengthOrZero, 'how far surroundings change a unit: rings are chosen to cover it'),
   device: described(device, 'the unit as a device of netlists'),
   roles: described(roles, 'which layer does what'),
+  'shieldLines?': described(
+    truth,
+    "true: a VSS line on the straps' metal over each channel, between trunks and straps",
+  ),
+  'tieRing?': described(tieRing, 'a ring of diffusion below the VSS frame that ties the substrate to VSS'),
+  'underlay?': described(underlay, 'a sheet below the whole array'),
 });
 
 /** Every key of a template as Markdown: its path, what it is, whether it may be absent. From the schema alone. */

@@ -120,6 +120,22 @@ export interface Roles {
   readonly boundary: string;
 }
 
+/** A ring of diffusion below the `VSS` frame that ties the substrate to it. */
+export interface TieRing {
+  readonly diffusion: string;
+  readonly implant?: string;
+  /** By which the implant surrounds the diffusion. */
+  readonly implantEnclosure_um?: number;
+}
+
+/** A sheet below the whole array, on `VSS` or on a net with a pin of its own. */
+export interface Underlay {
+  readonly layer: string;
+  readonly net: string;
+  /** Of a well: the diffusion that joins it to wires, where no tie ring does. */
+  readonly tie?: string;
+}
+
 export interface Technology {
   readonly format: 'steelyard/technology';
   readonly version: 1;
@@ -148,4 +164,8 @@ export interface Technology {
   readonly proximityReach_um: number;
   readonly device: Device;
   readonly roles: Roles;
+  /** True: a `VSS` line on the straps' metal over each channel. */
+  readonly shieldLines?: boolean;
+  readonly tieRing?: TieRing;
+  readonly underlay?: Underlay;
 }
