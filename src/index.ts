@@ -14,6 +14,7 @@ export type { Problem, Result } from './core/problem.js';
 export { drawFloorplanSvg } from './export/floorplan-svg.js';
 export { drawHookupSvg } from './export/hookup-svg.js';
 export { netsOf } from './export/drawn-pins.js';
+export { drawMismatchSvg, writeMismatchCsv } from './export/mismatch-curves.js';
 export { writeStream } from './export/gdsii.js';
 export { writeAbstract } from './export/lef.js';
 export { withPinNames } from './export/pin-names.js';

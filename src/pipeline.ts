@@ -25,7 +25,9 @@ import { columnCorrelation, comparisonLength, correlationOf } from './linearity/
 import { mismatchTerm } from './linearity/mismatch-term.js';
 import { secondOrderInl } from './linearity/exact-inl.js';
 import { lowerBound, type PlacementClass } from './linearity/lower-bound.js';
-import { analyseMismatch } from './linearity/mismatch.js';
+import { analyseYield } from './linearity/analyse-yield.js';
+import { missedLimits } from './linearity/limits.js';
+import { analyseMismatch, type Covariances } from './linearity/mismatch.js';
 import { type LeastOfReflected, provedClass } from './linearity/proved.js';
 import { totalFigures } from './linearity/total.js';
 import { dealBlocks, type DealtNet } from './placement/dealing.js';
@@ -48,6 +50,8 @@ import type { Technology } from './spec/technology.js';
 
 export interface PlaceRequest {
   readonly array: ResolvedArray;
+  /** Arrays to draw for the yield, where the array states limits. */
+  readonly samples?: number;
   /** Cells only, no wires; on a pitch of one's own where given. */
   readonly floorplanOnly?: { readonly pitch_um?: readonly [x: number, y: number] };
   /** Weights between those of the array's emphasis and another's. */
@@ -65,6 +69,10 @@ export interface Drawn {
   readonly parasitics?: Parasitics;
   /** The wires as a circuit, of a size to be simulated. */
   readonly circuit?: Circuit;
+  /** Of random mismatch. */
+  readonly covariances: Covariances;
+  /** The array's own limits that it does not keep; a sentence each. */
+  readonly missed: readonly string[];
   readonly findings: readonly Finding[];
   /** How alike the surroundings of the units are. */
   readonly neighbourhood?: Neighbourhood;
@@ -283,7 +291,12 @@ class Run implements PlaceRun {
     const known = search instanceof ProvingSearch ? search.proved : undefined;
     return {
       floorplan,
-      options: { wired, tracksAtLeast: least, ...(known && { known }) },
+      options: {
+        wired,
+        tracksAtLeast: least,
+        ...(known && { known }),
+        ...(request.samples !== undefined && { samples: request.samples }),
+      },
       ...(!dealing.exactZero && { because: dealing.because }),
     };
   }
@@ -482,6 +495,8 @@ export interface DrawOptions {
   readonly extracted?: boolean;
   /** What an exact search has proved of a core. */
   readonly known?: LeastOfReflected;
+  /** Arrays to draw for the yield, where the array states limits; absent: no yield, and no limit is looked at. */
+  readonly samples?: number;
 }
 
 /**
@@ -489,7 +504,8 @@ export interface DrawOptions {
  * @throws Infeasible where the rules or the tracks asked for leave no room.
  */
 export function drawFloorplan(floorplan: Floorplan, technology: Technology, options: DrawOptions = {}): Drawn {
-  const { wired = true, keepHookup = false, tracksAtLeast, measureOnly = false, extracted = true, known } = options;
+  const { wired = true, keepHookup = false, tracksAtLeast, measureOnly = false } = options;
+  const { extracted = true, known, samples } = options;
   const { cells, capacitors } = floorplan;
   const { array } = floorplan;
   const gradient = array?.gradient ?? technology.gradient;
@@ -519,7 +535,23 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
     const parasitics =
       wired && parasiticFigures(wired, capacitors, technology.unit.capacitance_fF, array?.topLoad_fF ?? 0);
     const timed = polygons && wired && circuitOf(polygons, wired.coupling, array?.drive);
-    const mismatch = analyseMismatch({ core, capacitors, cells }, array?.mismatch ?? unitMismatch(technology));
+    const placed = { core, capacitors, cells };
+    const coupling = parasitics?.excess ?? new Map<string, number>();
+    const analysis = analyseMismatch(placed, array?.mismatch ?? unitMismatch(technology));
+    const { figures: mismatch, ...covariances } = analysis;
+    const total = () => totalFigures({ ...placed, gradient, coupling, mismatch: analysis });
+    const { limits } = array ?? {};
+    const asked = limits && samples !== undefined && !measureOnly ? { limits, samples } : undefined;
+    const share =
+      asked &&
+      analyseYield({
+        ...placed,
+        gradient,
+        ...(parasitics && { coupling }),
+        covariances,
+        ...asked,
+        seed: array?.seed ?? 1,
+      });
     const metrics: Metrics = {
       format: 'steelyard/metrics',
       version: 1,
@@ -527,12 +559,10 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       core,
       ...(placement?.status && { status: placement.status }),
       gradient: metricsGradient,
-      mismatch: mismatch.figures,
+      mismatch,
       ...figures,
-      ...(parasitics && {
-        parasitic: withDelays(parasitics.figures, timed?.timings ?? []),
-        total: totalFigures({ core, capacitors, cells, gradient, coupling: parasitics.excess, mismatch }),
-      }),
+      ...(parasitics && { parasitic: withDelays(parasitics.figures, timed?.timings ?? []), total: total() }),
+      ...(share && { yield: share }),
     };
     const judged = polygons && judgePolygons(polygons);
     const findings = [...checkFloorplan(complete), ...(judged?.findings ?? [])];
@@ -544,8 +574,10 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
       ...(wired && { extraction: wired }),
       ...(parasitics && { parasitics }),
       ...(timed && { circuit: timed.circuit }),
+      covariances,
       findings,
       ...(judged && { neighbourhood: judged.neighbourhood }),
+      missed: asked && share ? missedLimits(asked.limits, share.share, total()) : [],
       warnings: [],
       notes,
     };

@@ -36,7 +36,7 @@ type Told = Omit<Drawn, 'polygons'> & {
 /**
  * Draws candidates and writes a whole set of files for each, all of them or none. Candidates of an earlier run that these do not replace go.
  * @param name of the array. @param asked how many were wanted
- * @returns whether the check found anything
+ * @returns whether the check found anything, or a limit is missed
  */
 export async function deliverCandidates(
   io: Io,
@@ -67,13 +67,13 @@ export async function deliverCandidates(
     ...removed.map((path) => `steelyard: ${path} removed: it belonged to the candidates that were there before`),
   ];
   if (remarks.length > 0) await io.stderr(lines(remarks.map(shown)));
-  return told.some(({ findings }) => findings.length > 0);
+  return told.some(({ findings, missed }) => findings.length + missed.length > 0);
 }
 
 /** What is to be said of single candidates. */
 const remarksOn = (told: readonly Told[]): readonly string[] =>
-  told.flatMap(({ file, warnings, left, findings }) => [
-    ...[...warnings, ...left].map((text) => `${file}: ${text}`),
+  told.flatMap(({ file, warnings, left, missed, findings }) => [
+    ...[...warnings, ...left, ...missed].map((text) => `${file}: ${text}`),
     ...findingLines(findings).map((text) => `${file}: ${text}`),
   ]);
 

@@ -21,7 +21,6 @@ import type { SizeFlags } from './size.js';
 /** Commands and options that a later version brings: refused by name rather than taken for a slip of the pen. */
 const laterCommands = ['simulate'];
 const laterOptions: Readonly<Record<string, readonly string[]>> = {
-  place: ['--samples'],
   compare: ['--out'],
 };
 
@@ -87,6 +86,7 @@ function build(io: Io, version: string, finish: (code: number) => void): Command
     .option('--floorplan-only', 'place and analyse, draw no wires')
     .option('--pitch <X,Y>', 'pitch in micrometres, with --floorplan-only')
     .option('--candidates <count>', 'several floorplans, 2 to 16, none dominated by another: NAME-1, NAME-2, ...')
+    .option('--samples <count>', 'arrays drawn at random for the yield, where there are limits (default: 100000)')
     .option('--workers <count>', 'threads of the search; no file depends on it (default: one per core)')
     .option('--json', 'print the metrics, and nothing else, as JSON')
     .action(async (file: string | undefined, flags: PlaceFlags) => finish(await place(io, file, flags)));

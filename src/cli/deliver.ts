@@ -28,7 +28,7 @@ export async function deliver(io: Io, drawn: Drawn, { folder, json, bare = false
   const removed = io.writeFiles(files, staleBeside(files, name, into));
   await io.stdout(output);
   const remarks = [
-    ...(json ? [...warnings, ...findingLines(drawn.findings)] : []),
+    ...(json ? [...warnings, ...drawn.missed, ...findingLines(drawn.findings)] : []),
     ...removed.map((path) => `steelyard: ${path} removed: it belonged to the floorplan that was there before`),
   ];
   if (remarks.length > 0) await io.stderr(lines(remarks.map(shown)));

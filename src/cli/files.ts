@@ -3,6 +3,7 @@ import {
   InputError,
   drawFloorplanSvg,
   drawHookupSvg,
+  drawMismatchSvg,
   formatFloorplan,
   formatMetrics,
   formatPolygons,
@@ -11,6 +12,7 @@ import {
   writeCapacitorNetlist,
   writeDeviceNetlist,
   writeExtractedNetlist,
+  writeMismatchCsv,
   writeStream,
 } from '../index.js';
 import type { Drawn, PinMap, Polygons } from '../index.js';
@@ -30,7 +32,7 @@ export interface WriterOptions {
 
 type Written = readonly (readonly [ending: string, content: string | Uint8Array])[];
 type Writer = (
-  drawn: Pick<Drawn, 'floorplan' | 'polygons' | 'circuit'>,
+  drawn: Pick<Drawn, 'floorplan' | 'polygons' | 'circuit' | 'covariances'>,
   options: WriterOptions,
 ) => Written | Promise<Written>;
 
@@ -42,11 +44,13 @@ const writers = {
   gds: ({ polygons }, options) =>
     polygons === undefined ? [] : [['.gds', writeStream(labelled(polygons, options), options)]],
   polygons: ({ polygons }) => (polygons === undefined ? [] : [['.polygons.json', formatPolygons(polygons)]]),
-  svg: async ({ floorplan, polygons }, options) => [
+  svg: async ({ floorplan, polygons, covariances }, options) => [
     ['.floorplan.svg', await drawFloorplanSvg(floorplan)],
     ...(polygons === undefined
       ? []
       : [['.hookup.svg', await drawHookupSvg(labelled(polygons, options), floorplan)] as const]),
+    ['.mismatch.svg', await drawMismatchSvg(floorplan, covariances)],
+    ['.mismatch.csv', writeMismatchCsv(floorplan, covariances)],
   ],
   spice: ({ polygons, circuit }, options) =>
     polygons === undefined
@@ -94,7 +98,7 @@ export async function drawingFiles(
 
 const endings = [
   ...['.floorplan.json', '.metrics.json', '.gds', '.polygons.json', '.floorplan.svg', '.hookup.svg'],
-  ...['.cir', '.lvs.cir', '.extracted.cir', '.lef'],
+  ...['.mismatch.svg', '.mismatch.csv', '.cir', '.lvs.cir', '.extracted.cir', '.lef'],
 ];
 
 /** What may be left of an earlier set of this name and is not among these files: it belongs to another floorplan. */

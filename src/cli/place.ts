@@ -36,6 +36,7 @@ export interface PlaceFlags {
   readonly json?: boolean;
   readonly workers?: string;
   readonly candidates?: string;
+  readonly samples?: string;
 }
 
 // What an array file could say too, the technology aside: each flag is the key of the same name.
@@ -90,6 +91,20 @@ function workersOf({ cores }: Io, text: string | undefined): number {
   if (workers >= 1 && workers <= mostWorkers) return workers;
   const wanted = `a whole number from 1 to ${mostWorkers}`;
   throw new InputError([{ pointer: '--workers', found: JSON.stringify(text), wanted }]);
+}
+
+const standardSamples = 100_000;
+const mostSamples = 1e9;
+
+/** Arrays to draw for the yield. @param limits those that they are held against */
+function samplesOf(text: string | undefined, limits: object | undefined): number {
+  if (text === undefined) return standardSamples;
+  if (limits === undefined)
+    throw new UsageError(['place --samples: found without limits; wanted an array file with "limits"']);
+  const samples = /^\d{1,10}$/.test(text) ? Number(text) : NaN;
+  if (samples >= 1 && samples <= mostSamples) return samples;
+  const wanted = `a whole number from 1 to ${mostSamples}`;
+  throw new InputError([{ pointer: '--samples', found: JSON.stringify(text), wanted }]);
 }
 
 /** Runs the search to its end, putting by the best so far. What comes out is the same for any number of workers. */
@@ -148,8 +163,9 @@ async function arrayRequest(io: Io, file: string, text: string | undefined, flag
       : await technologyNamed(io, flags.technology, '.', { pointer: '--technology' });
   const array = valueOf(resolveArray(spec, technology, text === undefined ? undefined : { text, file }));
   const pitch_um = flags.pitch === undefined ? spec.core?.pitch_um : pitchOf(flags.pitch);
-  if (flags.floorplanOnly !== true) return { array };
-  return { array, floorplanOnly: pitch_um === undefined ? {} : { pitch_um } };
+  const samples = samplesOf(flags.samples, array.spec.limits);
+  if (flags.floorplanOnly !== true) return { array, samples };
+  return { array, samples, floorplanOnly: pitch_um === undefined ? {} : { pitch_um } };
 }
 
 const delivery = ({ out, json }: PlaceFlags) => ({ json: json === true, ...(out !== undefined && { folder: out }) });
@@ -167,7 +183,8 @@ async function rewired(io: Io, file: string, text: string, flags: PlaceFlags): P
   const pitch_um = flags.pitch === undefined ? floorplan.core.pitch_um : pitchOf(flags.pitch);
   const wired = flags.floorplanOnly !== true;
   const onPitch = { ...floorplan, core: { ...floorplan.core, pitch_um } };
-  const drawn = inFile(file, () => drawFloorplan(onPitch, technology, { wired }));
+  const samples = samplesOf(flags.samples, floorplan.array?.limits);
+  const drawn = inFile(file, () => drawFloorplan(onPitch, technology, { wired, samples }));
   return { ...drawn, notes: [...notes, ...drawn.notes] };
 }
 
@@ -190,6 +207,9 @@ async function placeCandidates(
   return found ? exit.failedCheck : exit.done;
 }
 
+const codeOf = ({ findings, missed }: Drawn): number =>
+  findings.length + missed.length > 0 ? exit.failedCheck : exit.done;
+
 /** `place`: an array file, a floorplan file or --bits becomes a set of files and a summary. */
 export async function place(io: Io, file: string | undefined, flags: PlaceFlags): Promise<number> {
   if (flags.pitch !== undefined && flags.floorplanOnly !== true) {
@@ -200,7 +220,7 @@ export async function place(io: Io, file: string | undefined, flags: PlaceFlags)
   if (file !== undefined && text !== undefined && formatOf(text) === 'floorplan') {
     const drawn = await rewired(io, file, text, flags);
     await deliver(io, drawn, delivery(flags));
-    return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
+    return codeOf(drawn);
   }
   const workers = workersOf(io, flags.workers);
   const count = flags.candidates === undefined ? undefined : countOf(flags.candidates);
@@ -216,5 +236,5 @@ export async function place(io: Io, file: string | undefined, flags: PlaceFlags)
   await search(io, run, workers, () => ({ ...rest, kept: run.best(true) }));
   const drawn = run.finish(false);
   await deliver(io, drawn, rest);
-  return drawn.findings.length > 0 ? exit.failedCheck : exit.done;
+  return codeOf(drawn);
 }

@@ -88,6 +88,29 @@ function mismatchLines({ mismatch }: Metrics): readonly Line[] {
   return [['mismatch', `sigma ${lsb({ inl_lsb, dnl_lsb })} at the worst code; ${alone}`]];
 }
 
+/** A share of nearly all in as many digits as tell it from all. */
+function percent(share: number): string {
+  const lost = 1 - share;
+  const digits = lost > 0 && lost < 0.01 ? Math.min(12, 1 - Math.floor(Math.log10(lost))) : 2;
+  return `${(100 * share).toFixed(Math.max(2, digits - 1))} %`;
+}
+
+function yieldLines(floorplan: Floorplan, { yield: found }: Metrics): readonly Line[] {
+  if (found === undefined) return [];
+  const { share, low, high, samples, method, randomOnly, withoutGradient, withoutWiring } = found;
+  const { inl_lsb, dnl_lsb } = floorplan.array?.limits ?? {};
+  const limits = [
+    ...(inl_lsb === undefined ? [] : [`INL ${brief(inl_lsb)}`]),
+    ...(dnl_lsb === undefined ? [] : [`DNL ${brief(dnl_lsb)}`]),
+  ].join(' and ');
+  const how = method === 'tail' ? 'from the tail' : `${samples} arrays drawn`;
+  const without = withoutWiring === undefined ? '' : `, ${percent(withoutWiring)} without the wires`;
+  return [
+    ['yield', `${percent(share)} within ${limits} LSB; 95 % interval ${percent(low)} to ${percent(high)}, ${how}`],
+    ['', `${percent(withoutGradient)} without the gradient${without}, ${percent(randomOnly)} with mismatch alone`],
+  ];
+}
+
 const classes = {
   'zero-first-order': 'all placements without first order',
   'point-reflected': 'all point-reflected placements',
@@ -202,6 +225,7 @@ export function summaryOf(
   const lines: Line[] = [
     ...gradientLines(floorplan, metrics),
     ...mismatchLines(metrics),
+    ...yieldLines(floorplan, metrics),
     ...placementLine(floorplan),
     ...hookupLines(metrics),
     ...couplingLines(drawn),
@@ -213,6 +237,7 @@ export function summaryOf(
     lines.push(length === 0 ? ['check', 'no findings'] : ['check', counted(length, 'finding'), colours.red]);
   }
   if (drawn.neighbourhood !== undefined) lines.push(['neighbourhood', neighbourhoodInWords(drawn.neighbourhood)]);
+  for (const limit of drawn.missed) lines.push(['limit missed', limit, colours.red]);
   for (const note of drawn.notes) lines.push(['note', note]);
   for (const warning of drawn.warnings) lines.push(['warning', warning, colours.yellow]);
   files.forEach((file, index) => lines.push([index === 0 ? 'files' : '', file]));

@@ -4,7 +4,7 @@ import { decimal, textWidth } from './picture-text.js';
 import { openSheet } from './sheet.js';
 import type { Sheet } from './sheet.js';
 
-/** What surrounds a drawing: title above, legend on the right, scale bar below. Sizes here are nominal pixels. */
+/** What surrounds a drawing: title above, legend on the right, scale bar below where it is to scale. Sizes here are nominal pixels. */
 export interface Surroundings {
   /** User units per nominal pixel. */
   readonly px: number;
@@ -14,8 +14,8 @@ export interface Surroundings {
   readonly title: string;
   readonly subtitle: string;
   readonly legend: readonly LegendRow[];
-  /** User units per micrometre. */
-  readonly perMicrometre: number;
+  /** User units per micrometre; absent: no scale bar. */
+  readonly perMicrometre?: number;
 }
 
 /** A row of the legend; without a swatch a heading. `swatch` draws into the given box. */
@@ -54,7 +54,8 @@ export async function frame(around: Surroundings): Promise<{ sheet: Sheet; x: nu
   const below = Math.max(drawn.height, legend.length * ROW);
   const titleWidth = Math.max(textWidth(around.title, TITLE, true), textWidth(around.subtitle, SUBTITLE));
   const widthPx = 2 * MARGIN + Math.max(drawn.width + LEGEND_GAP + legendWidth, titleWidth);
-  const heightPx = top + below + 46 + MARGIN;
+  const { perMicrometre } = around;
+  const heightPx = top + below + (perMicrometre === undefined ? 0 : 46) + MARGIN;
 
   const sheet = await openSheet(at(widthPx), at(heightPx), widthPx);
   sheet.path(box(0, 0, at(widthPx), at(heightPx)), { fill: paper });
@@ -87,12 +88,17 @@ export async function frame(around: Surroundings): Promise<{ sheet: Sheet; x: nu
       align: 'right',
     });
   });
-  scaleBar(sheet, around, { x: at(MARGIN), y: at(top + below + 34) });
+  if (perMicrometre !== undefined)
+    scaleBar(sheet, { ...around, perMicrometre }, { x: at(MARGIN), y: at(top + below + 34) });
   return { sheet, x: at(MARGIN), y: at(top) };
 }
 
 /** The longest of 1, 2, 5, 10, ... that takes at most a quarter of the drawing, or 160 pixels. */
-function scaleBar(sheet: Sheet, { px, width, perMicrometre }: Surroundings, { x, y }: { x: number; y: number }): void {
+function scaleBar(
+  sheet: Sheet,
+  { px, width, perMicrometre }: Surroundings & { readonly perMicrometre: number },
+  { x, y }: { x: number; y: number },
+): void {
   const room = Math.min(160 * px, Math.max(width / 4, 60 * px));
   let length_nm = 1;
   for (let decade = 1; decade < 1e9; decade *= 10)

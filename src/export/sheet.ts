@@ -6,6 +6,8 @@ export interface Look {
   readonly strokeWidth?: number;
   readonly round?: boolean;
   readonly opacity?: number;
+  /** Lengths of a dash and of the gap after it. */
+  readonly dashes?: readonly [dash: number, gap: number];
 }
 
 interface Writing {
@@ -43,7 +45,7 @@ export async function openSheet(width: number, height: number, widthPx: number):
   let texts: paper.Group | undefined;
   let textStyle = '';
 
-  const put = (item: paper.Item, { fill, stroke, strokeWidth, round, opacity }: Look) => {
+  const put = (item: paper.Item, { fill, stroke, strokeWidth, round, opacity, dashes }: Look) => {
     item.fillColor = fill === undefined ? null : new paper.Color(fill);
     item.strokeColor = stroke === undefined ? null : new paper.Color(stroke);
     if (strokeWidth !== undefined) item.strokeWidth = strokeWidth;
@@ -52,6 +54,7 @@ export async function openSheet(width: number, height: number, widthPx: number):
       item.strokeJoin = 'round';
     }
     if (opacity !== undefined) item.opacity = opacity;
+    if (dashes !== undefined) item.dashArray = [...dashes];
   };
 
   return {

@@ -2,6 +2,7 @@ import type { Capacitor, Core } from '../spec/floorplan.js';
 import type { MismatchFigures } from '../spec/metrics.js';
 import { comparisonLength, correlationOf } from './correlation.js';
 import { GRAIN, pairSums } from './covariance.js';
+import { bitsOf } from './expected-units.js';
 import { worstOverSigns, worstOverSteps } from './worst-variance.js';
 
 export interface Placed {
@@ -19,21 +20,25 @@ export interface Mismatch {
   readonly correlationLength_um: number;
 }
 
-/**
- * Standard deviations over all codes, at most; `dnl` absent beyond 14 capacitors that are not straight binary. `endPoint`: the covariance
- * (LSB^2) of what each bit has besides gain, bits by ascending weight.
- */
-interface Sigma {
+/** Covariances of the bits by ascending weight, row by row. */
+export interface Covariances {
+  /** Of what they are, units^2. */
+  readonly capacitance: readonly Float64Array[];
+  /** Of what each has besides gain, LSB^2: from the line through both ends, and from the least-squares line. */
+  readonly endPoint: readonly Float64Array[];
+  readonly leastSquares: readonly Float64Array[];
+}
+
+/** Standard deviations over all codes, at most; `dnl` absent beyond 14 capacitors that are not straight binary. */
+interface Sigma extends Covariances {
   readonly inl: number;
   readonly dnl?: number;
   readonly inlLeastSquares: number;
-  readonly endPoint: readonly Float64Array[];
 }
 
-/** Figures of random mismatch, and the covariance that they come from (see `Sigma`). */
-export interface MismatchAnalysis {
+/** Figures of random mismatch, and the covariances that they come from. */
+export interface MismatchAnalysis extends Covariances {
   readonly figures: MismatchFigures;
-  readonly endPoint: readonly Float64Array[];
 }
 
 /**
@@ -43,7 +48,7 @@ export interface MismatchAnalysis {
  */
 export function analyseMismatch(placed: Placed, mismatch: Mismatch): MismatchAnalysis {
   const { localSigma_percent, correlatedSigma_percent, correlationLength_um } = mismatch;
-  const { inl, dnl, inlLeastSquares, endPoint } = worstSigma(
+  const { inl, dnl, inlLeastSquares, ...covariances } = worstSigma(
     placed,
     localSigma_percent / 100,
     correlatedSigma_percent / 100,
@@ -55,7 +60,7 @@ export function analyseMismatch(placed: Placed, mismatch: Mismatch): MismatchAna
     inlSigmaLeastSquares_lsb: inlLeastSquares,
     placement: placementSigma(placed, comparisonLength(placed.core.pitch_um)),
   };
-  return { figures, endPoint };
+  return { figures, ...covariances };
 }
 
 /** Sigma INL and DNL of the worst code per sigma of one unit, for units of variance 1 that are wholly correlated over `length_um`. */
@@ -65,7 +70,7 @@ export function placementSigma(placed: Placed, length_um: number): MismatchFigur
 }
 
 function worstSigma({ core, capacitors, cells }: Placed, local: number, correlated: number, length_um: number): Sigma {
-  const bits = capacitors.filter(({ role }) => role === 'bit').sort((a, b) => a.weight - b.weight);
+  const bits = bitsOf(capacitors);
   const names = bits.map(({ name }) => name);
   const weight = bits.map((bit) => bit.weight);
   const itself = names.map((name) => BigInt(cells.reduce((n, line) => n + line.filter((c) => c === name).length, 0)));
@@ -80,13 +85,23 @@ function worstSigma({ core, capacitors, cells }: Placed, local: number, correlat
     const common = withoutGain(weight, vote, together);
     return own.map((row, k) => row.map((v, l) => local * local * v + correlated * correlated * common[k][l]));
   };
+  const grain = Number(GRAIN);
+  const capacitance = alone.map((row, k) =>
+    Float64Array.from(
+      row,
+      (own, l) => (local * local * Number(own) + correlated * correlated * Number(together[k][l])) / grain,
+    ),
+  );
   const endPoint = left(weight.map(() => 1));
+  const leastSquares = left(weight);
   const dnl = worstOverSteps(weight, endPoint);
   return {
     inl: Math.sqrt(Math.max(0, worstOverSigns(endPoint))),
     ...(dnl !== undefined && { dnl: Math.sqrt(dnl) }),
-    inlLeastSquares: Math.sqrt(Math.max(0, worstOverSigns(left(weight)))),
+    inlLeastSquares: Math.sqrt(Math.max(0, worstOverSigns(leastSquares))),
+    capacitance,
     endPoint,
+    leastSquares,
   };
 }
 

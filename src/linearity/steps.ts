@@ -23,7 +23,8 @@ export function stepsOf(weight: readonly number[], vectors: readonly (readonly n
   return weight.length <= MOST_CAPACITORS ? levelSteps(weight, vectors) : undefined;
 }
 
-function isStraightBinary(weight: readonly number[]): boolean {
+/** Whether the weights are 1, 2, 4, ... */
+export function isStraightBinary(weight: readonly number[]): boolean {
   let next = 1;
   for (const w of weight) {
     if (w !== next) return false;

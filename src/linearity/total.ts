@@ -1,7 +1,6 @@
 import type { Gradient } from '../spec/technology.js';
-import { HALF_NM, PPM, pitchNm } from './figures.js';
+import { bitsOf, unitsUnder } from './expected-units.js';
 import type { MismatchAnalysis, Placed } from './mismatch.js';
-import { momentsOfCells } from './moments.js';
 import { ownGradient } from './own-gradient.js';
 import { eachStep } from './worst-variance.js';
 
@@ -33,25 +32,12 @@ export interface TotalFigures {
  * Largest errors at one code need not meet in one array: an estimate, no guarantee.
  */
 export function totalFigures({ core, capacitors, cells, gradient, coupling, mismatch }: TotalInput): TotalFigures {
-  const bits = capacitors.filter(({ role }) => role === 'bit').sort((a, b) => a.weight - b.weight);
+  const bits = bitsOf(capacitors);
   const weight = bits.map((bit) => bit.weight);
-  const moments = momentsOfCells(
-    bits.map(({ name }) => name),
-    weight,
-    cells,
-  );
   const own = ownGradient(gradient);
-  const [px, py] = pitchNm(core.pitch_um);
-  const [hx, hy] = [HALF_NM * px, HALF_NM * py];
-  const flat = bits.map(({ name, units }, k) => {
-    const { xx, xy, yy } = moments;
-    const bowl = own.xx * hx * hx * xx[k] + 2 * own.xy * hx * hy * xy[k] + own.yy * hy * hy * yy[k];
-    return units + PPM * bowl + (coupling.get(name) ?? 0);
-  });
-  const slope = [
-    Array.from(moments.x, (x) => PPM * own.linear * hx * x),
-    Array.from(moments.y, (y) => PPM * own.linear * hy * y),
-  ];
+  const expected = unitsUnder(own, { core, cells }, bits);
+  const flat = bits.map(({ name }, k) => expected.flat[k] + (coupling.get(name) ?? 0));
+  const slope = [expected.x, expected.y];
   const sum = (values: readonly number[]) => values.reduce((all, value) => all + value, 0);
   const [W, S] = [sum(weight), sum(flat)];
   const [tx, ty] = slope.map(sum);

@@ -66,6 +66,22 @@ interface BitFigures {
   readonly settling_ps?: number;
 }
 
+/** The share of arrays that keep the limits, with the interval that holds it at 95 %. */
+export interface YieldFigures {
+  readonly share: number;
+  readonly low: number;
+  readonly high: number;
+  /** Arrays drawn. */
+  readonly samples: number;
+  readonly seed: number;
+  /** Counted, or, where hardly any array is lost, from the tail of the distribution. */
+  readonly method: 'counted' | 'tail';
+  /** What the share would be with random mismatch alone, without the gradient, and without the wires. */
+  readonly randomOnly: number;
+  readonly withoutGradient: number;
+  readonly withoutWiring?: number;
+}
+
 export interface Metrics {
   readonly format: 'steelyard/metrics';
   readonly version: 1;
@@ -83,4 +99,5 @@ export interface Metrics {
   readonly parasitic?: ParasiticFigures;
   /** All errors together at three sigma; absent where the wires' capacitances are not known. */
   readonly total?: { readonly inl3Sigma_lsb: number; readonly dnl3Sigma_lsb?: number };
+  readonly yield?: YieldFigures;
 }

@@ -292,10 +292,11 @@ export const options: readonly Option[] = [
   },
   {
     key: 'limits',
-    values: '`{inl_lsb, dnl_lsb, yield}`',
+    values:
+      '`{inl_lsb, dnl_lsb, yield}`: with a yield the share of arrays within the others, else all errors at three sigma',
     standard: 'none',
-    help: 'what the drawn array must keep',
-    available: false,
+    help: 'what the placed array must keep; exit code 1 where it does not',
+    available: true,
     schema: limitsSchema,
   },
 ];

@@ -32,6 +32,14 @@ export function checkDrive(drive: unknown, bits: number, report: Report, at: str
   );
 }
 
+/** What the shape of limits, of an array as of a converter, does not say. @param at where they stand. */
+export function checkLimits(limits: unknown, report: Report, at: string): void {
+  const { inl_lsb, dnl_lsb, yield: share } = record(limits);
+  if (share === 1) report.add(`${at}/yield`, '1', 'less than 1: no share of what is made is all of it');
+  if (share !== undefined && inl_lsb === undefined && dnl_lsb === undefined)
+    report.add(`${at}`, '"yield" alone', '"inl_lsb", "dnl_lsb" or both beside it: what is counted');
+}
+
 /** What the shape of an array file, or of the array in a floorplan, does not say. */
 export function checkArray(value: unknown, report: Report, at: string): void {
   const array = record(value);
@@ -42,6 +50,7 @@ export function checkArray(value: unknown, report: Report, at: string): void {
   if (total > mostWeight) report.add(`${at}/weights`, `weights of ${total} in all`, `${mostWeight} in all at most`);
   const core = record(array.core);
   checkPitch(core, report, `${at}/core`);
+  checkLimits(array.limits, report, `${at}/limits`);
   const cells = (integer(core.rows) ?? 0) * (integer(core.columns) ?? 0);
   if (cells > mostCells) report.add(`${at}/core`, `a core of ${cells} cells`, `${mostCells} cells at most`);
 }

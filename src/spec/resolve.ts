@@ -11,7 +11,7 @@ import { withUnitOf } from './scale-unit.js';
 import type { Technology } from './technology.js';
 import { shown } from './words.js';
 
-type Chosen = 'core' | 'tracksPerChannel' | 'bits' | 'weights';
+type Chosen = 'core' | 'tracksPerChannel' | 'bits' | 'weights' | 'drive' | 'topLoad_fF' | 'limits';
 
 /** An array file with every default filled in; what the tool chooses later (core, tracks) is there only where it was given. */
 export type ResolvedSpec = ArraySpec & Required<Omit<ArraySpec, Chosen>>;

@@ -72,5 +72,15 @@ export const metricsSchema: Schema = file('metrics', 'Figures of a placed array'
   'area_um2?': figure,
   'parasitic?': parasitic,
   'total?': object({ inl3Sigma_lsb: figure, 'dnl3Sigma_lsb?': figure }),
-  'yield?': object({ share, low: share, high: share, samples: count, seed }),
+  'yield?': object({
+    share,
+    low: share,
+    high: share,
+    samples: count,
+    seed,
+    'method?': choice('counted', 'tail'),
+    'randomOnly?': share,
+    'withoutGradient?': share,
+    'withoutWiring?': share,
+  }),
 });

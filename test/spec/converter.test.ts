@@ -48,6 +48,7 @@ describe('a converter file', () => {
         '/fullscale_Vpp | unknown key "fullscale_Vpp" | "fullScale_Vpp", the nearest known key',
         '/sampling | "bottom" | "bottom-plate" or "top-plate"',
         '/samples | 1000 | a power of two: the spectrum of a record needs it',
+        '/limits | "yield" alone | "inl_lsb", "dnl_lsb" or both beside it: what is counted',
         '/limits/yield | 1 | less than 1: no share of what is made is all of it',
         '/switching | "monotone" | "conventional", "splitMsb", "monotonic" or "vcmBased"',
         '/temperature_K | 0 | a number above 0',
