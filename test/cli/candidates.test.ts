@@ -3,6 +3,7 @@ import { MachineInMemory } from './machine-in-memory.js';
 
 const endings = [
   ...['floorplan.json', 'metrics.json', 'gds', 'polygons.json', 'floorplan.svg', 'hookup.svg'],
+  ...['mismatch.svg', 'mismatch.csv'],
   ...['cir', 'lvs.cir', 'extracted.cir', 'lef'],
 ];
 const setsOf = (folder: string, name: string, count: number) =>
@@ -84,7 +85,9 @@ describe('place --candidates', () => {
     const bare = new MachineInMemory();
     expect(await bare.run(`${ask} --floorplan-only --pitch 2,3 --out o`)).toBe(0);
     const wanted = [1, 2, 3].flatMap((n) =>
-      ['floorplan.json', 'metrics.json', 'floorplan.svg'].map((ending) => `o/cdac5-${n}.${ending}`),
+      ['floorplan.json', 'metrics.json', 'floorplan.svg', 'mismatch.svg', 'mismatch.csv'].map(
+        (ending) => `o/cdac5-${n}.${ending}`,
+      ),
     );
     expect([...bare.files.keys()]).toEqual(wanted);
     expect(bare.json('o/cdac5-2.floorplan.json').core.pitch_um).toEqual([2, 3]);

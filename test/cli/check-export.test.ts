@@ -106,7 +106,18 @@ describe('export', () => {
   it('gives the same files as place did, in the formats asked for', async () => {
     const own = machine();
     expect(await own.run(`export ${floorplanFile} --to lef,svg,spice,gds,polygons --out e`)).toBe(0);
-    const endings = ['gds', 'polygons.json', 'floorplan.svg', 'hookup.svg', 'cir', 'lvs.cir', 'extracted.cir', 'lef'];
+    const endings = [
+      'gds',
+      'polygons.json',
+      'floorplan.svg',
+      'hookup.svg',
+      'mismatch.svg',
+      'mismatch.csv',
+      'cir',
+      'lvs.cir',
+      'extracted.cir',
+      'lef',
+    ];
     expect(own.written[0]?.map(({ path }) => path)).toEqual(endings.map((ending) => `e/cdac4.${ending}`));
     for (const ending of endings) expect(own.text(`e/cdac4.${ending}`)).toBe(placed.text(`o/cdac4.${ending}`));
     expect(own.out).toBe(endings.map((ending) => `e/cdac4.${ending}\n`).join(''));

@@ -10,6 +10,8 @@ const endings = [
   'polygons.json',
   'floorplan.svg',
   'hookup.svg',
+  'mismatch.svg',
+  'mismatch.csv',
   'cir',
   'lvs.cir',
   'extracted.cir',
@@ -111,10 +113,12 @@ describe('place', () => {
     expect(typed.json('o/cdac4.floorplan.json').technology.name).toBe('tin-roof');
   });
 
-  it('--floorplan-only writes floorplan, metrics and picture, on a pitch of its own where given', async () => {
+  it('--floorplan-only writes floorplan, metrics and pictures, on a pitch of its own where given', async () => {
     const machine = await placed('place --bits 4 --floorplan-only --pitch 3.5,2 --out o');
     expect(machine.written[0]?.map(({ path }) => path)).toEqual(
-      ['floorplan.json', 'metrics.json', 'floorplan.svg'].map((ending) => `o/cdac4.${ending}`),
+      ['floorplan.json', 'metrics.json', 'floorplan.svg', 'mismatch.svg', 'mismatch.csv'].map(
+        (ending) => `o/cdac4.${ending}`,
+      ),
     );
     const metrics = machine.json('o/cdac4.metrics.json');
     expect(metrics.core.pitch_um).toEqual([3.5, 2]);

@@ -21,6 +21,8 @@ const endings = [
   'floorplan.svg',
   'gds',
   'hookup.svg',
+  'mismatch.svg',
+  'mismatch.csv',
   'lef',
   'lvs.cir',
   'extracted.cir',

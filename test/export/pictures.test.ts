@@ -5,6 +5,9 @@ import { drawFloorplanSvg } from '../../src/export/floorplan-svg.js';
 import { drawHookupSvg } from '../../src/export/hookup-svg.js';
 import type { Floorplan } from '../../src/spec/floorplan.js';
 import type { Polygons } from '../../src/spec/polygons.js';
+import { drawMismatchSvg, writeMismatchCsv } from '../../src/export/mismatch-curves.js';
+import { analyseMismatch } from '../../src/linearity/mismatch.js';
+import { unitMismatch } from '../../src/spec/options.js';
 import { expectGolden } from '../golden.js';
 import {
   kilnFloorplan,
@@ -29,7 +32,18 @@ function renamed<T>(value: T, names: ReadonlyMap<string, string>): T {
   return JSON.parse(JSON.stringify(value), (_, v: unknown) => (typeof v === 'string' ? (names.get(v) ?? v) : v)) as T;
 }
 
+const kilnMismatch = () => {
+  const { technology } = kilnFloorplan();
+  if (technology === undefined) throw new Error('the floorplan has a technology');
+  return analyseMismatch(kilnFloorplan(), unitMismatch(technology));
+};
+
 describe('golden pictures', () => {
+  it('mismatch', async () => {
+    expectGolden(await drawMismatchSvg(kilnFloorplan(), kilnMismatch()), 'kiln4.mismatch.svg');
+    expectGolden(writeMismatchCsv(kilnFloorplan(), kilnMismatch()), 'kiln4.mismatch.csv');
+  });
+
   it('placement', async () => expectGolden(await drawFloorplanSvg(kilnFloorplan()), 'kiln4.floorplan.svg'));
   it('hookup', async () => expectGolden(await drawHookupSvg(kilnPolygons(), kilnFloorplan()), 'kiln4.hookup.svg'));
 });
@@ -38,6 +52,7 @@ describe.each<[string, () => Promise<string>]>([
   ['placement', () => drawFloorplanSvg(kilnFloorplan())],
   ['placement of ten bits', () => drawFloorplanSvg(randomFloorplan(10, 31, 33))],
   ['hookup', () => drawHookupSvg(kilnPolygons(), kilnFloorplan())],
+  ['mismatch', () => drawMismatchSvg(kilnFloorplan(), kilnMismatch())],
 ])('%s', (_, draw) => {
   it('is a well-formed SVG file with a size, a title first and a white ground', async () => {
     const root = parsed(await draw());
