@@ -5,7 +5,7 @@ import { box, line } from './path-data.js';
 import type { Sheet } from './sheet.js';
 
 /** A quantity along one side of a chart. */
-export interface Axis {
+interface Axis {
   /** With its unit. */
   readonly label: string;
   readonly from: number;
@@ -13,7 +13,7 @@ export interface Axis {
 }
 
 /** A curve over values of x that ascend; y that is not finite leaves a gap. */
-export interface Curve {
+interface Curve {
   readonly name: string;
   /** What the legend says beside the name. */
   readonly note?: string;
@@ -24,7 +24,7 @@ export interface Curve {
   readonly kind: 'line' | 'dashes' | 'bars';
 }
 
-export interface Chart {
+interface Chart {
   readonly title: string;
   readonly subtitle: string;
   readonly description: string;
