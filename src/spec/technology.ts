@@ -121,7 +121,7 @@ export interface Roles {
 }
 
 /** A ring of diffusion below the `VSS` frame that ties the substrate to it. */
-export interface TieRing {
+interface TieRing {
   readonly diffusion: string;
   readonly implant?: string;
   /** By which the implant surrounds the diffusion. */
@@ -129,7 +129,7 @@ export interface TieRing {
 }
 
 /** A sheet below the whole array, on `VSS` or on a net with a pin of its own. */
-export interface Underlay {
+interface Underlay {
   readonly layer: string;
   readonly net: string;
   /** Of a well: the diffusion that joins it to wires, where no tie ring does. */
