@@ -4,7 +4,7 @@ import type { Coupling } from './coupling.js';
 import { nodeLoads } from './loads.js';
 import { netsOf } from './net.js';
 import { type ReducedNet, reducedNet } from './reduce.js';
-import { type BitTiming, bitTimings, lastUnit } from './timing.js';
+import { type BitTiming, bitTimings, withLast } from './timing.js';
 import { wireNetwork } from './wire-network.js';
 
 /** Nodes of a net besides its pin in the extracted circuit, at most. */
@@ -30,10 +30,10 @@ export function circuitOf(
   const names = [...p.capacitors.map(({ name }) => name), 'TOP'];
   const nets = netsOf(network, names);
   const spread = nodeLoads(coupling, network, nets);
-  const loaded = nets.map((net, i) => ({ net, loads: spread[i] }));
+  const loaded = nets.map((net, i) => withLast(net, spread[i]));
   const bits = p.capacitors.filter(({ role }) => role === 'bit');
   return {
     timings: bitTimings(bits, loaded, drive),
-    circuit: { coupling, nets: loaded.map((each) => reducedNet(each, NODES, lastUnit(each, 0).node)) },
+    circuit: { coupling, nets: loaded.map((each) => reducedNet(each, NODES)) },
   };
 }

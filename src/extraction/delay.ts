@@ -12,6 +12,11 @@ const ps = 1e-3;
  * @param load_fF of each node. @param source_ohm between an ideal step and the net's pins.
  */
 export function elmore_ps(net: Net, load_fF: Float64Array, source_ohm: number): Float64Array {
-  const all = load_fF.reduce((sum, fF) => sum + fF, 0);
-  return new Nodal(net, net.pins).solve(load_fF).map((wires) => ps * (wires + source_ohm * all));
+  const through = sourceDelay_ps(load_fF, source_ohm);
+  return new Nodal(net, net.pins).solve(load_fF).map((wires) => ps * wires + through);
+}
+
+/** What a resistance before the pins adds to the delay of every node. */
+export function sourceDelay_ps(load_fF: Float64Array, source_ohm: number): number {
+  return ps * source_ohm * load_fF.reduce((sum, fF) => sum + fF, 0);
 }

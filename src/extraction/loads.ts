@@ -74,7 +74,7 @@ function partsOf(
       stretches.upright[s] === 1
         ? ((y0 + y1) / 2 - stretches.y0[s]) / (stretches.y1[s] - stretches.y0[s])
         : ((x0 + x1) / 2 - stretches.x0[s]) / (stretches.x1[s] - stretches.x0[s]);
-    parts.push({ ...own, share, area: (x1 - x0) * (y1 - y0) });
+    parts.push({ a: own.a, b: own.b, share, area: (x1 - x0) * (y1 - y0) });
   }
   return parts;
 }

@@ -8,8 +8,8 @@ export interface ReducedNet {
   /** Capacitance (fF) of each node to `TOP`, and to all else. */
   readonly top: readonly number[];
   readonly rest: readonly number[];
-  /** The node that was to stay. */
-  readonly stayed: number;
+  /** The node of the unit that is reached last. */
+  readonly last: number;
 }
 
 /**
@@ -19,9 +19,9 @@ export interface ReducedNet {
  * change, nor do sums of capacitance.
  * B. N. Sheehan, "TICER: Realizable Reduction of Extracted RC Circuits", ICCAD 1999, from memory.
  *
- * @param most nodes besides the pin that may stay. @param stays a node that does.
+ * @param most nodes besides the pin that may stay; that of the unit reached last does.
  */
-export function reducedNet({ net, loads }: LoadedNet, most: number, stays: number): ReducedNet {
+export function reducedNet({ net, loads, last }: LoadedNet, most: number): ReducedNet {
   const pin = net.pins[0];
   const isPin = new Set(net.pins);
   const rows = Array.from({ length: net.nodes }, () => new Map<number, number>());
@@ -43,19 +43,20 @@ export function reducedNet({ net, loads }: LoadedNet, most: number, stays: numbe
   const gone = new Uint8Array(net.nodes);
   for (const other of net.pins) gone[other] = other === pin ? 0 : 1;
   let left = net.nodes - net.pins.length;
-  const constant = (node: number): number => {
-    let siemens = 0;
-    for (const g of rows[node].values()) siemens += g;
-    return (top[node] + rest[node]) / siemens;
-  };
+  const time = new Float64Array(net.nodes);
+  let may = Array.from(rows.keys()).filter((node) => node !== pin && node !== last);
   while (left > most) {
-    const round = Array.from(rows.keys())
-      .filter((node) => gone[node] === 0 && node !== pin && node !== stays && rows[node].size <= 2)
-      .map((node) => ({ node, time: constant(node) }))
-      .sort((a, b) => a.time - b.time || a.node - b.node);
+    may = may.filter((node) => gone[node] === 0);
+    const round = may.filter((node) => rows[node].size <= 2);
+    for (const node of round) {
+      let siemens = 0;
+      for (const g of rows[node].values()) siemens += g;
+      time[node] = (top[node] + rest[node]) / siemens;
+    }
+    round.sort((a, b) => time[a] - time[b] || a - b);
     if (round.length === 0) break;
     const touched = new Set<number>();
-    for (const { node } of round.slice(0, Math.ceil(round.length / 2))) {
+    for (const node of round.slice(0, Math.ceil(round.length / 2))) {
       if (left === most) break;
       if (touched.has(node)) continue;
       const ends = [...rows[node]];
@@ -88,6 +89,6 @@ export function reducedNet({ net, loads }: LoadedNet, most: number, stays: numbe
     resistors,
     top: nodes.map((node) => top[node]),
     rest: nodes.map((node) => rest[node]),
-    stayed: number.get(stays) ?? 0,
+    last: number.get(last) ?? 0,
   };
 }

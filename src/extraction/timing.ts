@@ -1,7 +1,7 @@
 import { ln } from '../core/exponential.js';
 import type { Drive } from '../spec/converter.js';
 import type { Capacitor } from '../spec/floorplan.js';
-import { elmore_ps } from './delay.js';
+import { elmore_ps, sourceDelay_ps } from './delay.js';
 import type { NodeLoads } from './loads.js';
 import type { Net } from './net.js';
 
@@ -17,6 +17,11 @@ export interface BitTiming {
 export interface LoadedNet {
   readonly net: Net;
   readonly loads: NodeLoads;
+  /** fF of each node, to whatever. */
+  readonly all: Float64Array;
+  /** The node of the unit that is reached last, the pin of a net without units; and the Elmore delay to it from the pin. */
+  readonly last: number;
+  readonly wires_ps: number;
 }
 
 /** Ohms between an ideal step and the pin of a bit: its switch and the reference. @param bit its number in the list. */
@@ -25,18 +30,12 @@ function sourceOf({ switch_ohm, reference_ohm = 0 }: Drive, bits: readonly Capac
   return own + reference_ohm;
 }
 
-/** The node of the unit that a net reaches last, and the Elmore delay to it. */
-export function lastUnit(
-  { net, loads }: LoadedNet,
-  source_ohm: number,
-): { readonly node: number; readonly elmore_ps: number } {
-  const delays = elmore_ps(
-    net,
-    loads.top.map((fF, node) => fF + loads.rest[node]),
-    source_ohm,
-  );
-  const node = net.units.reduce((last, unit) => (delays[unit.node] > delays[last] ? unit.node : last), net.pins[0]);
-  return { node, elmore_ps: delays[node] };
+/** Finds the unit that a net reaches last. */
+export function withLast(net: Net, loads: NodeLoads): LoadedNet {
+  const all = loads.top.map((fF, node) => fF + loads.rest[node]);
+  const delays = elmore_ps(net, all, 0);
+  const last = net.units.reduce((node, unit) => (delays[unit.node] > delays[node] ? unit.node : node), net.pins[0]);
+  return { net, loads, all, last, wires_ps: delays[last] };
 }
 
 /**
@@ -52,7 +51,8 @@ export function bitTimings(
   return bits.map(({ name, weight, units }, bit) => {
     const loaded = nets.find(({ net }) => net.name === name);
     if (!loaded || loaded.net.units.length !== units || loaded.net.unstated.length > 0) return { name };
-    const { elmore_ps } = lastUnit(loaded, drive ? sourceOf(drive, bits, bit) : 0);
-    return { name, elmore_ps, ...(drive && { settling_ps: ln(2 * weight) * elmore_ps }) };
+    // What comes before the pin is the same for all units, so the last one stays the last.
+    const elmore = loaded.wires_ps + (drive ? sourceDelay_ps(loaded.all, sourceOf(drive, bits, bit)) : 0);
+    return { name, elmore_ps: elmore, ...(drive && { settling_ps: ln(2 * weight) * elmore }) };
   });
 }

@@ -99,9 +99,9 @@ function stepTimes(
 }
 
 describe('settling of a bit with the common plate held', () => {
-  const last = (name: string, { nets }: Circuit) => {
-    const { stayed } = nets.find((net) => net.name === name)!;
-    return stayed === 0 ? name : `xarray.${name}_${stayed}`.toLowerCase();
+  const slowest = (name: string, { nets }: Circuit) => {
+    const { last } = nets.find((net) => net.name === name)!;
+    return last === 0 ? name : `xarray.${name}_${last}`.toLowerCase();
   };
 
   it('by wires alone is half done no later than the Elmore delay says', () => {
@@ -109,7 +109,7 @@ describe('settling of a bit with the common plate held', () => {
     const netlist = writeExtractedNetlist(polygons!, circuit!);
     for (const { name, elmore_ps = 0, settling_ps } of metrics.parasitic!.bits) {
       expect(settling_ps).toBeUndefined();
-      const [half] = stepTimes(netlist, name, last(name, circuit!), 1e-6, elmore_ps, [0.5]);
+      const [half] = stepTimes(netlist, name, slowest(name, circuit!), 1e-6, elmore_ps, [0.5]);
       expect(half).toBeLessThanOrEqual(elmore_ps);
       expect(half).toBeGreaterThan(0.3 * elmore_ps);
     }
@@ -121,7 +121,7 @@ describe('settling of a bit with the common plate held', () => {
     metrics.parasitic!.bits.forEach(({ name, elmore_ps = 0, settling_ps = 0 }, bit) => {
       const weight = 2 ** bit;
       const ohm = drive.switch_ohm / weight + drive.reference_ohm;
-      const [half, settled] = stepTimes(netlist, name, last(name, circuit!), ohm, elmore_ps, [
+      const [half, settled] = stepTimes(netlist, name, slowest(name, circuit!), ohm, elmore_ps, [
         0.5,
         1 - 1 / (2 * weight),
       ]);
