@@ -1,4 +1,4 @@
-import { ProvingSearch } from './proving-search.js';
+import type { ProvingSearch } from './proving-search.js';
 import { Search, type StartResult } from './search.js';
 
 /** A search in a round. */
