@@ -45,7 +45,7 @@ export type { LayerMap } from './spec/layer-map.js';
 export type { Metrics } from './spec/metrics.js';
 export { tableMarkdown } from './spec/option-table.js';
 export type { TableRow } from './spec/option-table.js';
-export { options } from './spec/options.js';
+export { options, standardTechnologies } from './spec/options.js';
 export { parseArray } from './spec/parse-array.js';
 export { parseConverter } from './spec/parse-converter.js';
 export { parseFloorplan } from './spec/parse-floorplan.js';

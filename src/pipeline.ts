@@ -1,4 +1,5 @@
 import { bentTerm } from './array/bent-term.js';
+import type { ColumnLimit } from './array/column-limit.js';
 import { candidateCores, type CoreGrid } from './array/core-grid.js';
 import { checkFloorplan } from './check/floorplan.js';
 import type { Neighbourhood } from './check/neighbourhood.js';
@@ -14,11 +15,22 @@ import { type Extraction, extractCoupling } from './extraction/extract.js';
 import { type Parasitics, parasiticFigures } from './extraction/parasitic.js';
 import type { BitTiming } from './extraction/timing.js';
 import { drawPolygons } from './geometry/draw.js';
+import { columnLimitTerm } from './hookup/column-limit.js';
 import { columnNets, columnNetsTerm } from './hookup/column-nets.js';
 import { hookupFigures } from './hookup/figures.js';
 import { asWired, planAsWired } from './hookup/orientation.js';
 import type { Placed } from './hookup/plan.js';
-import { drawingRules, pitchOf, planOf, ringColumn, type StyledRules, tracksNeeded, wire } from './hookup/style.js';
+import {
+  drawingRules,
+  mostColumnNets,
+  pitchOf,
+  planOf,
+  refuseTooFewTrunks,
+  ringColumn,
+  type StyledRules,
+  tracksNeeded,
+  wire,
+} from './hookup/style.js';
 import { analyseGradient, type GradientFigures } from './linearity/analyse-gradient.js';
 import { firstOrderTerm, secondOrderTerm } from './linearity/cost-terms.js';
 import { columnCorrelation, comparisonLength, correlationOf } from './linearity/correlation.js';
@@ -139,6 +151,8 @@ interface Setting {
   readonly inCore: readonly Capacitor[];
   readonly rules: StyledRules;
   readonly pins: PinsWanted;
+  /** On the nets of a column, where the drawing limits them. */
+  readonly limit?: ColumnLimit;
   /** The pitch asked for, where the drawing does not decide it. */
   readonly pitch?: Pitch;
   readonly wired: boolean;
@@ -155,6 +169,8 @@ const chessboardSigma = (units: number): number =>
 const chessboardNets = (units: number): number => 3 * (Math.sqrt(units + 1) - 1);
 /** One um of first order against one um^2 of second. */
 const FIRST_BEFORE_ALL = 1e3;
+/** A net too many in a column: more than all that the other terms could gain by it. */
+const FITTING_BEFORE_ALL = 10;
 
 /** Full searches at a pitch before the tracks that the wires turn out to need are taken as they are; only one where it is long. */
 const roundsFor = (units: number): number => (units < 2000 ? 2 : 1);
@@ -208,7 +224,24 @@ function settingOf(request: PlaceRequest): Setting {
   const inCore = capacitors.filter((capacitor) => capacitor.role === 'bit' || spec.termination === 'core');
   const rules = drawingRules(technology);
   const pins = pinsWanted(capacitors, spec.pins);
-  return { request, spec, technology, capacitors, inCore, rules, pins, wired, ...(pitch && { pitch }) };
+  const most = wired ? mostColumnNets(rules, spec.tracksPerChannel) : Infinity;
+  const limit = most < Infinity && {
+    most,
+    forFill: spec.termination === 'core' ? 2 : 1,
+    spare: spec.termination === 'ring',
+  };
+  return {
+    request,
+    spec,
+    technology,
+    capacitors,
+    inCore,
+    rules,
+    pins,
+    wired,
+    ...(limit && { limit }),
+    ...(pitch && { pitch }),
+  };
 }
 
 class Run implements PlaceRun {
@@ -322,7 +355,7 @@ export function drawKept({ floorplan, options, because }: Kept, technology: Tech
 
 /** The search of a stage, without its starts: what it deals and what that costs. */
 function searchOptions(
-  { request, spec, capacitors, inCore }: Setting,
+  { request, spec, capacitors, inCore, limit }: Setting,
   { grid, pitch, weights, relative, effort }: StageRequest,
 ): SearchOptions {
   const cost = weights === 'own' ? weighingOf(spec.emphasis, request.blend) : weighings.gradient;
@@ -340,7 +373,13 @@ function searchOptions(
         ...grid,
         nets,
         random: new Random(spec.seed, start),
-        arrangement: arrangementOf(cost, start, chessboardNets(total), () => columnCorrelation(correlation)),
+        arrangement: arrangementOf(
+          cost,
+          start,
+          chessboardNets(total),
+          () => columnCorrelation(correlation),
+          limit && { limit, tight: columnNetsOfChance(nets, grid) > limit.most - 1 },
+        ),
       }),
     terms: (deal) => [
       // Where the first order is 0 by the deal this term stays 0; elsewhere it comes before all others.
@@ -349,6 +388,7 @@ function searchOptions(
         term: bentTerm(secondOrderTerm(deal, pitch), cost.limit * reference, BEYOND_LIMIT),
         weight: cost.second / reference,
       },
+      ...(limit ? [{ term: columnLimitTerm(deal, limit), weight: FITTING_BEFORE_ALL }] : []),
       ...(cost.nets > 0
         ? [
             {
@@ -403,6 +443,7 @@ function* roundsOf(setting: Setting): Generator<readonly Stage[], Stage, void> {
         total - unitsOf(bits),
         pitchFor(tracks),
       );
+  if (wired) refuseTooFewTrunks(rules, grids, inCore, spec.tracksPerChannel);
   const mostRounds = roundsFor(total);
   // What each orientation can have, and with what the choice between them begins.
   const short = { tracks, effort: 'quick' } as const;
@@ -432,7 +473,10 @@ function* roundsOf(setting: Setting): Generator<readonly Stage[], Stage, void> {
   for (let round = 1; ; round++) {
     const core: Core = { ...grid, pitch_um: pitchFor(tracks) };
     const provable =
-      spec.emphasis === 'gradient' && inCore.every(({ role }) => role === 'bit') && isSearchable(core, bits);
+      spec.emphasis === 'gradient' &&
+      inCore.every(({ role }) => role === 'bit') &&
+      isSearchable(core, bits) &&
+      (setting.limit === undefined || inCore.length < setting.limit.most);
     const effort = provable ? 'quick' : spec.effort;
     let full = stage({ grid, tracks, weights: 'own', relative, effort, share: 0.75 / mostRounds });
     yield [full];
@@ -454,6 +498,10 @@ const unitsOf = (capacitors: readonly Capacitor[]): number => capacitors.reduce(
 
 const dealtNets = (capacitors: readonly Capacitor[]): DealtNet[] =>
   capacitors.map(({ name, role, weight, units }) => ({ name, weight: role === 'bit' ? weight : 0, units }));
+
+/** Nets of a column when units stand anywhere: a net is in every column once it has as many units. */
+const columnNetsOfChance = (nets: readonly DealtNet[], { columns }: CoreGrid): number =>
+  nets.reduce((sum, { units }) => sum + Math.min(units, columns) / columns, 0);
 
 /** The best of a stage's search as cells and ring units. */
 function placedOf(setting: Setting, { grid, search }: Stage): Placed {
@@ -609,7 +657,7 @@ export function drawFloorplan(floorplan: Floorplan, technology: Technology, opti
     : drawPolygons(name, technology, facing, hookup, { fillTop: array?.fillTop ?? 'TOP', pins });
   const core: Core = { rows: frame.rows, columns: frame.columns, pitch_um: [um(frame.pitch[0]), um(frame.pitch[1])] };
   const drawnAs = {
-    ...(array && { array: { ...array, tracksPerChannel: frame.tracks } }),
+    ...(array && { array: { ...array, ...(hookup.style === 'channel' && { tracksPerChannel: hookup.frame.tracks }) } }),
     ...(placed.ringUnits.length > 0 && { ringUnits: placed.ringUnits }),
     hookup: planAsWired(planOf(hookup), pins),
   };

@@ -129,10 +129,16 @@ function combs(drawing: Drawing, c: Conductors, template: FramedFingersUnit): Re
   // The comb's outline faces the frame all around but for a gap on either side of each of the frame's fingers' ends, along and across.
   const outline = 2 * (inside[0] + inside[1] - 4 * gap) + 2 * (fingers - 1) * nm(template.fingerLength_um);
   const meant = outline - 4 * (fingers - 1) * gap;
-  const misfit = ({ top, bottom }: Unit) => {
+  // Trunks below a unit see a plate of its bottom terminal where they would see the comb.
+  const { hookup, roles } = drawing.technology;
+  const floor = hookup === 'under-plate' && roles.stub !== metal ? drawing.sheet(roles.stub) : undefined;
+  const misfit = ({ top, bottom, body: [{ x0, y0, x1, y1 }] }: Unit) => {
     const facing = facingLength(slabsOfNodes(c, top), slabsOfNodes(c, bottom), gap);
-    if (facing === meant) return undefined;
-    return `comb and frame face each other over ${facing / 1000} um, exactly ${meant / 1000} um wanted`;
+    if (facing !== meant)
+      return `comb and frame face each other over ${facing / 1000} um, exactly ${meant / 1000} um wanted`;
+    const [covered, whole] = [floor && coveredArea(floor, x0, y0, x1, y1), (x1 - x0) * (y1 - y0)];
+    if (covered === undefined || covered === whole) return undefined;
+    return `the plate on ${roles.stub} covers ${covered / 1e6} um2 under comb and frame, all of ${whole / 1e6} um2 wanted`;
   };
   return { units, misfit };
 }

@@ -1,9 +1,9 @@
 import { dirname } from 'node:path';
-import { InputError, converterOptions, parseConverter, resolveConverter } from '../index.js';
+import { InputError, converterOptions, parseConverter, resolveConverter, standardTechnologies } from '../index.js';
 import type { Converter, Problem, ResolvedConverter, Technology } from '../index.js';
 import { readText } from './input.js';
 import type { Io } from './io.js';
-import { standardTechnology, technologyNamed, valueOf } from './technology.js';
+import { technologyNamed, valueOf } from './technology.js';
 
 /** The keys of a converter file that the command line gives, as typed: each flag is named after itself. */
 export type ConverterFlags = Readonly<Record<string, unknown>>;
@@ -83,5 +83,5 @@ export function technologyOf(
   if (typeof flags.technology === 'string')
     return technologyNamed(io, flags.technology, '.', { pointer: '--technology' });
   const where = { pointer: '/technology', ...(file !== undefined && { file }) };
-  return technologyNamed(io, technology ?? standardTechnology, dirname(file ?? ''), where);
+  return technologyNamed(io, technology ?? standardTechnologies.channel, dirname(file ?? ''), where);
 }

@@ -6,6 +6,7 @@ import {
   options as settings,
   parseArray,
   resolveArray,
+  standardTechnologies,
   startCandidates,
   startPlacement,
 } from '../index.js';
@@ -17,7 +18,7 @@ import { UsageError, exit } from './fault.js';
 import { formatOf, inFile, readText } from './input.js';
 import type { Io, Rescue } from './io.js';
 import { pitchOf } from './pitch.js';
-import { floorplanToDraw, standardTechnology, technologyNamed, valueOf } from './technology.js';
+import { floorplanToDraw, technologyNamed, valueOf } from './technology.js';
 
 /** The options of `place` as typed. */
 export interface PlaceFlags {
@@ -156,7 +157,7 @@ async function arrayRequest(io: Io, file: string, text: string | undefined, flag
   const spec = overlaid(base, given, flags.technology);
   const technology =
     flags.technology === undefined
-      ? await technologyNamed(io, spec.technology ?? standardTechnology, dirname(file), {
+      ? await technologyNamed(io, spec.technology ?? standardTechnologies[spec.hookup ?? 'channel'], dirname(file), {
           file,
           pointer: '/technology',
         })

@@ -128,10 +128,11 @@ function placementLine({ placement }: Floorplan): readonly Line[] {
   return [['placement', `${words[status]} (${trials})`]];
 }
 
-function hookupLines({ hookup, area_um2 }: Metrics): readonly Line[] {
+function hookupLines({ technology }: Floorplan, { hookup, area_um2 }: Metrics): readonly Line[] {
+  const places = technology?.hookup === 'under-plate' ? ' below a column at most' : ' a channel';
   const counts: readonly (readonly [number | undefined, string, string?])[] = [
     [hookup.trunks, 'trunk'],
-    [hookup.tracksPerChannel, 'track', ' a channel'],
+    [hookup.tracksPerChannel, 'track', places],
     [hookup.crossovers, 'crossover'],
     [hookup.bends, 'bend'],
     [hookup.vias, 'via'],
@@ -227,7 +228,7 @@ export function summaryOf(
     ...mismatchLines(metrics),
     ...yieldLines(floorplan, metrics),
     ...placementLine(floorplan),
-    ...hookupLines(metrics),
+    ...hookupLines(floorplan, metrics),
     ...couplingLines(drawn),
     ...delayLines(metrics),
     ...totalLines(metrics),

@@ -1,5 +1,5 @@
 import { isAbsolute, join } from 'node:path';
-import { InputError, options, parseFloorplan, parseTechnology, resolveArray } from '../index.js';
+import { InputError, parseFloorplan, parseTechnology, resolveArray, standardTechnologies } from '../index.js';
 import type { Floorplan, Problem, Result, Technology } from '../index.js';
 import { FileError } from './fault.js';
 import { readText } from './input.js';
@@ -7,9 +7,6 @@ import type { Io } from './io.js';
 
 const ending = '.technology.json';
 const folder = (io: Io) => join(io.root, 'templates');
-
-/** The template that is taken where none is named. */
-export const standardTechnology = (options.find(({ key }) => key === 'technology')?.standard ?? '').replaceAll('`', '');
 
 /** The value of a result, or its problems as the error that ends the run. */
 export function valueOf<T>(result: Result<T>): T {
@@ -63,9 +60,23 @@ export async function technologyNamed(
 /** The floorplan as if its array had been resolved for another technology: what came from the former one comes from the new one. */
 function movedTo(floorplan: Floorplan, technology: Technology): Floorplan {
   if (floorplan.array === undefined) return floorplan;
-  const { unit_fF: _unit, hookup: _hookup, mismatch: _mismatch, technology: _name, gradient, ...own } = floorplan.array;
+  const {
+    unit_fF: _unit,
+    hookup,
+    mismatch: _mismatch,
+    technology: _name,
+    gradient,
+    tracksPerChannel,
+    ...own
+  } = floorplan.array;
   const expected = JSON.stringify(gradient) === JSON.stringify(floorplan.technology?.gradient);
-  const spec = expected || gradient === undefined ? own : { ...own, gradient };
+  // Tracks of a channel say nothing of trunks below a column.
+  const keepsTracks = tracksPerChannel !== undefined && hookup === technology.hookup;
+  const spec = {
+    ...own,
+    ...(gradient !== undefined && !expected && { gradient }),
+    ...(keepsTracks && { tracksPerChannel }),
+  };
   return { ...floorplan, array: valueOf(resolveArray(spec, technology)).spec };
 }
 
@@ -85,8 +96,9 @@ export async function floorplanToDraw(io: Io, file: string, text: string, named?
   if (named === undefined && floorplan.technology !== undefined) {
     return { floorplan, technology: floorplan.technology, notes: [] };
   }
-  const technology = await technologyNamed(io, named ?? standardTechnology, '.', { pointer: '--technology' });
-  const notes =
-    named === undefined ? [`The floorplan brings no technology; it is drawn in ${standardTechnology}.`] : [];
+  const { array, hookup } = floorplan;
+  const standard = standardTechnologies[array?.hookup ?? (hookup?.columns === undefined ? 'channel' : 'under-plate')];
+  const technology = await technologyNamed(io, named ?? standard, '.', { pointer: '--technology' });
+  const notes = named === undefined ? [`The floorplan brings no technology; it is drawn in ${standard}.`] : [];
   return { floorplan: movedTo(floorplan, technology), technology, notes };
 }

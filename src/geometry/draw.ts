@@ -14,6 +14,7 @@ import { drawRing } from './ring.js';
 import { Sheet } from './sheet.js';
 import { drawTies } from './ties.js';
 import { drawTopAside } from './top-aside.js';
+import { drawUnderPlates, groundFillTops } from './under-plate.js';
 import { unitStructures } from './unit-cell.js';
 
 /** Where the fill dummies' top plates go. */
@@ -47,13 +48,15 @@ export function drawPolygons(
   drawRing(sheet, technology, frame, ringCell);
   drawWires(sheet, technology, hookup);
   const grounded = fillTop === 'VSS' && placed.cells.some((names) => names.includes('-'));
-  drawChannels(sheet, technology, hookup, grounded);
+  if (hookup.style === 'channel') drawChannels(sheet, technology, hookup, grounded);
+  else drawUnderPlates(sheet, technology, hookup);
   const ties = drawTies(sheet, technology, frame, name);
   drawPins(sheet, technology, hookup);
   drawTop(sheet, technology, placed, hookup, fillTop);
-  if (grounded) drawGroundedFills(sheet, technology, placed, hookup);
+  if (grounded && hookup.style === 'channel') drawGroundedFills(sheet, technology, placed, hookup);
+  if (grounded && hookup.style === 'under-plate') groundFillTops(sheet, technology, placed, hookup.frame);
 
-  const [unit, ...cellsOfUnit] = unitStructures(`${name}_unit`, technology, frame.rules);
+  const [unit, ...cellsOfUnit] = unitStructures(`${name}_unit`, technology, hookup.frame.rules);
   const own = [name, unit.name, ...ties.structures.map((structure) => structure.name)];
   if (cellsOfUnit.some((structure) => own.includes(structure.name)))
     throw new Infeasible(
@@ -123,7 +126,7 @@ function drawPins(sheet: Sheet, { roles }: Technology, { frame: { rules }, pins 
 }
 
 /** Straps along the columns, a tab to each unit's pad, the spine above the topmost row, and the pin. */
-function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: Wires, fillTop: FillTop): void {
+function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: Hookup, fillTop: FillTop): void {
   const { frame } = hookup;
   const { rules, rows, columns } = frame;
   const { roles } = technology;
@@ -138,12 +141,13 @@ function drawTop(sheet: Sheet, technology: Technology, placed: Placed, hookup: W
     const below = placed.ringUnits.filter((unit) => unit.column === column);
     const low = below.length > 0 ? frame.rowY(rows) + rules.pad[1] - pad : plateLow - rules.rowGap;
     sheet.add(roles.strap, rectangle(strapX - half, low, strapX + half, spineTop), { net: 'TOP', part: 'strap' });
-    // A cross-bar over the gap below the lowest row makes it look like the rows within.
-    sheet.add(
-      roles.strap,
-      rectangle(x - rules.plate[0] / 2, plateLow - rules.rowGap, x + rules.plate[0] / 2, plateLow),
-      { net: 'TOP', part: 'strap' },
-    );
+    // A cross-bar over the gap below the lowest row makes it look like the rows within; trunks that pass there it would couple to.
+    if (hookup.style === 'channel')
+      sheet.add(
+        roles.strap,
+        rectangle(x - rules.plate[0] / 2, plateLow - rules.rowGap, x + rules.plate[0] / 2, plateLow),
+        { net: 'TOP', part: 'strap' },
+      );
     const tabs = [
       ...placed.cells.map((names, row) => ({ row, tied: names[column] !== '-' || fillTop === 'TOP' })),
       ...below.map(({ row }) => ({ row, tied: true })),

@@ -23,7 +23,7 @@ export interface ChannelRules extends Rules {
  */
 export function channelRules(technology: Technology): ChannelRules {
   const { unit, roles } = technology;
-  const common = commonRules(technology);
+  const common = commonRules(technology, 'straps as row gaps');
   const { grid, plate, rowGap, spacing, trackWidth, trackSpacing, lineSpacing } = common;
   const lower = layerOf(technology, roles.trunk);
   const plateMetal = layerOf(technology, roles.bottomPlate);

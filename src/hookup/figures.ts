@@ -3,7 +3,7 @@ import { um } from '../core/units.js';
 import type { HookupFigures } from '../spec/metrics.js';
 import { columnNets } from './column-nets.js';
 import type { Judged, Placed } from './plan.js';
-import type { Hookup } from './style.js';
+import { type Hookup, tracksOf } from './style.js';
 import type { Wire } from './wires.js';
 
 /** Counts what the wires of the bits come to; definitions: README, "Figures". Fill, termination and `VSS` do not count. */
@@ -14,17 +14,18 @@ export function hookupFigures(placed: Placed, hookup: Hookup, judged?: Judged): 
   );
   const ofBits = (wires: readonly { readonly net: string }[]) => wires.filter((wire) => bits.has(wire.net));
   const joints = ofBits(hookup.joints).length;
+  const landings = hookup.style === 'under-plate' ? ofBits(hookup.landings).length : 0;
   const length = [...hookup.horizontal, ...hookup.vertical]
     .filter((wire) => bits.has(wire.net))
     .reduce((sum, wire) => sum + (wire.x1 - wire.x0) + (wire.y1 - wire.y0), 0);
   return {
     columnNets: columnNets(placed.cells, bits),
     trunks: hookup.vertical.filter((wire) => wire.part === 'trunk' && bits.has(wire.net)).length,
-    tracksPerChannel: frame.tracks,
+    tracksPerChannel: tracksOf(hookup),
     crossovers: crossovers(hookup, bits),
     sameMetalCrossings: touching(hookup.horizontal, frame.busWidth) + touching(hookup.vertical, frame.rules.trackWidth),
     bends: joints,
-    vias: joints,
+    vias: joints + landings,
     wireLength_um: um(length),
     ...(judged && { status: judged.proved ? 'proved' : 'effort-spent' }),
     ...(judged && !judged.proved && { lowerBound: lowerBound(judged) }),

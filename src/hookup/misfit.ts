@@ -1,11 +1,11 @@
-import type { HookupPlan } from '../spec/floorplan.js';
+import type { ChannelPlan } from '../spec/floorplan.js';
 import { channelStubs, nearestVss, needsTrack, type Placed, type Plan } from './plan.js';
 
 /**
  * Why a hookup from a file does not wire these cells, in a few words; undefined where it does. Cells edited by hand, or another number of
  * rows, leave the wires behind.
  */
-export function misfit(placed: Placed, given: HookupPlan): string | undefined {
+export function misfit(placed: Placed, given: ChannelPlan): string | undefined {
   const { cells, capacitors, ringUnits } = placed;
   const columns = cells[0].length;
   const { sides, channels, buses } = given;

@@ -18,4 +18,4 @@ export function asWired(placed: Placed, { bits }: Side): Placed {
 
 /** The same for what a floorplan says of its wires. */
 export const planAsWired = (plan: HookupPlan, { bits }: Side): HookupPlan =>
-  bits === 'bottom' ? plan : { ...plan, sides: [...plan.sides].reverse() };
+  bits === 'bottom' || plan.columns !== undefined ? plan : { ...plan, sides: [...plan.sides].reverse() };

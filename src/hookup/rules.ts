@@ -71,9 +71,10 @@ export function viaBetween(technology: Technology, lower: string, upper: string)
 
 /**
  * Derives the dimensions that both styles share. What a style changes of them: room beside and below the plates, where a unit is met.
+ * @param straps how wide the straps are: as the gap between rows, which the spine fills, or as narrow as their metal allows.
  * @throws Infeasible where the rules leave no room: which rule, and what would make it possible.
  */
-export function commonRules(technology: Technology): Rules {
+export function commonRules(technology: Technology, straps: 'straps as row gaps' | 'narrow straps'): Rules {
   const { roles } = technology;
   const grid = technology.grid_nm;
   const even = (length: number) => Math.ceil(length / (2 * grid)) * 2 * grid;
@@ -93,7 +94,8 @@ export function commonRules(technology: Technology): Rules {
   const lineSpacing = lengthOf(lower.minSpacing_um);
   const trackWidth = trackWidthOf(technology);
   const viaApart = nm(toPlate.spacing_um) - (trackWidth - viaTrack.size);
-  const trackSpacing = Math.max(spacing, lineSpacing, viaApart);
+  const busSpacing = lengthOf(layerOf(technology, roles.bus).minSpacing_um);
+  const trackSpacing = Math.max(spacing, busSpacing, lineSpacing, viaApart);
   const dropSpacing = Math.max(lineSpacing, viaApart);
   const upperSpacing = lengthOf(upper.minSpacing_um);
   const padSize = even(Math.max(toTop ? landing(toTop) : 0, viaFrame.landing, lengthOf(upper.minWidth_um)));
@@ -107,7 +109,7 @@ export function commonRules(technology: Technology): Rules {
   const rowGap = even(
     Math.max(metalSpacing, lengthOf(upper.minWidth_um), lengthOf(topPlateLayer.minSpacing_um) - 2 * topInset),
   );
-  const strapWidth = rowGap;
+  const strapWidth = straps === 'narrow straps' ? even(lengthOf(upper.minWidth_um)) : rowGap;
   const strapX = Math.min(0, grid * Math.floor((pad[0] - padSize / 2 - strapWidth / 2 - upperSpacing) / grid));
 
   const stop = (because: string, remedy: string): never => {

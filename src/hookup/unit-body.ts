@@ -49,5 +49,9 @@ export function unitBody(
 /** How far a unit's tabs stand out, and at which level; without one where the hookup may choose it. */
 export function unitTabs(unit: Unit): { readonly length: number; readonly level?: number } {
   if (unit.kind === 'named-cell') return { length: 0 };
-  return { length: nm(unit.tab_um[0]), level: nm(unit.tabLevel_um) };
+  const { tab_um = [0, 0], tabLevel_um = 0 } = unit;
+  return { length: nm(tab_um[0]), level: nm(tabLevel_um) };
 }
+
+/** Height of a unit's landing strip below its plate; a named cell has its landing within. */
+export const unitStrip = (unit: Unit): number => (unit.kind === 'named-cell' ? 0 : nm(unit.strip_um ?? 0));

@@ -1,3 +1,4 @@
+import type { ColumnLimit } from '../array/column-limit.js';
 import { exp, ln } from '../core/exponential.js';
 import type { Random } from '../core/random.js';
 
@@ -30,12 +31,16 @@ export interface ColumnQuotaRequest {
   readonly price: number;
   /** What random mismatch costs, where it counts. */
   readonly dispersion?: Dispersion;
+  /** On the nets of a column, where they are limited. */
+  readonly limit?: ColumnLimit;
   readonly random: Random;
 }
 
 const LEVELS = 100;
 const HOTTEST = 4;
 const COLDEST = 0.02;
+/** In (column, net) pairs, a net of a column beyond its limit. */
+const BEYOND_LIMIT = 200;
 const MOVES_PER_ENTRY = 20_000;
 /** One move in so many exchanges two whole classes of columns. */
 const WHOLE_CLASSES = 16;
@@ -48,6 +53,9 @@ const FOLLOWED = { from: 30, to: 70, step: 1.05 };
  * How many pairs of each net to put into each class of columns, so that few columns hold a net while the second moment across the
  * columns stays near what the weights ask for. Every (column, net) pair costs 1; the moment costs `price` times half the sum of the nets'
  * residuals, over the mean moment of one unit (what the LSB at the centre lacks anyhow).
+ *
+ * Where a column may hold only so many nets, each one beyond costs `BEYOND_LIMIT`: more than any gain, so that there is none in the end if
+ * there need not be.
  *
  * Random mismatch, where it counts, costs the root of 1/4 sum_k q_k' K q_k, q_k = the net's pairs by class minus its share of all pairs, K
  * the correlation between classes: that of a placement whose columns have each net's cells evenly spread.
@@ -100,6 +108,7 @@ class QuotaTable {
   readonly #times: readonly number[];
   /** [net]: what goes from one class to another in the exchange under way. */
   readonly #going: Int32Array;
+  readonly #nearLimit: NearLimit | undefined;
   #price: number;
   #sigmaPrice: number;
   #columnNets = 0;
@@ -123,8 +132,10 @@ class QuotaTable {
     this.#going = new Int32Array(nets);
     this.#price = request.price;
     this.#sigmaPrice = request.dispersion?.price ?? 0;
+    this.#nearLimit = request.limit && new NearLimit(request.limit, width, this.#fill);
     for (let net = 0; net < nets; net++) {
       for (let c = 0; c < classes; c++) {
+        if (this.#isHeld(net * classes + c)) this.#nearLimit?.change(net, c, 1);
         this.#moment[net] += 2 * this.#quota[net * classes + c] * square[c];
         this.#columnNets += this.#holds(net, c, width);
       }
@@ -187,6 +198,7 @@ class QuotaTable {
     const { width } = this.#request;
     let change = 0;
     let moved = 0;
+    const over = this.#over;
     for (const net of nets) {
       moved += this.#varianceOf(net, c, d, this.#going[net]);
       change -= this.#holds(net, c, width) + this.#holds(net, d, width);
@@ -195,7 +207,7 @@ class QuotaTable {
     }
     const spread = this.#residue();
     const sigmas = this.#sigma(this.#variance + moved) - this.#sigma(this.#variance);
-    if (!accepts(change + spread - this.#spread + sigmas)) {
+    if (!accepts(change + spread - this.#spread + this.#over - over + sigmas)) {
       for (const net of nets) this.#shift(net, c, d, -this.#going[net]);
       return;
     }
@@ -217,14 +229,29 @@ class QuotaTable {
   }
 
   #cost(): number {
-    return this.#columnNets + this.#spread + this.#sigma(this.#variance);
+    return this.#columnNets + this.#spread + this.#over + this.#sigma(this.#variance);
   }
 
   #shift(net: number, c: number, d: number, count: number): void {
     const { square } = this.#request;
-    this.#quota[net * this.classes + c] -= count;
-    this.#quota[net * this.classes + d] += count;
+    this.#give(net, c, -count);
+    this.#give(net, d, count);
     this.#moment[net] += 2 * count * (square[d] - square[c]);
+  }
+
+  #give(net: number, c: number, count: number): void {
+    const i = net * this.classes + c;
+    const before = this.#isHeld(i);
+    this.#quota[i] += count;
+    if (this.#isHeld(i) !== before) this.#nearLimit?.change(net, c, before ? -1 : 1);
+  }
+
+  #isHeld(i: number): boolean {
+    return this.#quota[i] > 0 || this.#request.present[i] > 0;
+  }
+
+  get #over(): number {
+    return this.#nearLimit?.cost ?? 0;
   }
 
   /** Columns of a class that hold a net. */
@@ -265,6 +292,38 @@ class QuotaTable {
     if (kernel === undefined || count === 0) return;
     const { classes } = this;
     for (let d = 0; d < classes; d++) this.#field[net * classes + d] += count * kernel[c * classes + d];
+  }
+}
+
+/** Counts the nets of each class's columns as they come and go, and what is beyond the limit. */
+class NearLimit {
+  readonly #limit: ColumnLimit;
+  readonly #width: readonly number[];
+  readonly #fill: number;
+  readonly #count: number[];
+  #over = 0;
+  #roomy: number;
+
+  constructor(limit: ColumnLimit, width: readonly number[], fill: number) {
+    this.#limit = limit;
+    this.#width = width;
+    this.#fill = fill;
+    this.#count = width.map(() => 0);
+    this.#roomy = width.length;
+  }
+
+  change(net: number, c: number, by: 1 | -1): void {
+    const { most, forFill } = this.#limit;
+    const before = this.#count[c];
+    const now = before + (net === this.#fill ? by * forFill : by);
+    this.#count[c] = now;
+    this.#over += this.#width[c] * (Math.max(0, now - most) - Math.max(0, before - most));
+    this.#roomy += (now < most ? 1 : 0) - (before < most ? 1 : 0);
+  }
+
+  /** In (column, net) pairs. */
+  get cost(): number {
+    return BEYOND_LIMIT * (this.#over + (this.#limit.spare && this.#roomy === 0 ? 1 : 0));
   }
 }
 

@@ -1,3 +1,4 @@
+import type { ColumnLimit } from '../array/column-limit.js';
 import type { Deal } from '../array/cost-term.js';
 import { oddDeal } from '../array/core-grid.js';
 import { mirroredTriples } from '../array/mirrored-triples.js';
@@ -30,10 +31,17 @@ export type Dealing = {
  * "scattered": pairs anywhere, exchanged with any other. `columns`: each column gets few nets (planned first, see `columnQuotas`) and pairs
  * are exchanged within their columns only, so that what the search does leaves the (column, net) pairs as few as they are. Its
  * `momentPrice` says how many such pairs a second moment across the columns is worth that is off by as much as the LSB's is anyhow: 1
- * wants few, 4 costs next to nothing of the second order.
+ * wants few, 4 costs next to nothing of the second order. `limit`: on the nets of a column.
  */
 export type Arrangement =
-  'scattered' | { readonly columns: { readonly momentPrice: number; readonly dispersion?: Dispersion } };
+  | 'scattered'
+  | {
+      readonly columns: {
+        readonly momentPrice: number;
+        readonly dispersion?: Dispersion;
+        readonly limit?: ColumnLimit;
+      };
+    };
 
 export interface DealRequest {
   readonly rows: number;
@@ -223,6 +231,7 @@ function dealPairs(
     moment,
     price: arrangement.columns.momentPrice,
     ...(arrangement.columns.dispersion && { dispersion: arrangement.columns.dispersion }),
+    ...(arrangement.columns.limit && { limit: arrangement.columns.limit }),
     random,
   });
   inClass.forEach((cells, c) => {

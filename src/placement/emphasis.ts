@@ -1,3 +1,4 @@
+import type { ColumnLimit } from '../array/column-limit.js';
 import type { Emphasis } from '../spec/array-spec.js';
 import type { Dispersion } from './column-quotas.js';
 import type { Arrangement } from './dealing.js';
@@ -121,18 +122,27 @@ export const recipes: readonly { readonly emphasis: Emphasis; readonly blend?: B
   { emphasis: 'balanced', blend: { towards: 'dispersed', share: 0.75 } },
 ];
 
-/** How a start deals; `kernel` is the correlation between columns, made only where a plan asks for it. */
+/** Where columns may hold so few nets that a free deal hardly ever fits, one that plans its columns comes first. */
+const tightly: readonly ColumnPlan[] = [{ moment: 3, dispersion: 0 }, null];
+
+/**
+ * How a start deals; `kernel` is the correlation between columns, made only where a plan asks for it.
+ * @param limited where the nets of a column are limited; `tight`: hardly a free deal keeps within.
+ */
 export function arrangementOf(
-  { plans, netsLimit }: Weighing,
+  { plans: own, netsLimit }: Weighing,
   start: number,
   chessboardNets: number,
   kernel: () => Dispersion['kernel'],
+  limited?: { readonly limit: ColumnLimit; readonly tight: boolean },
 ): Arrangement {
+  const plans = own === freely && limited?.tight === true ? tightly : own;
   const plan = plans[start % plans.length];
   if (plan === null) return 'scattered';
   return {
     columns: {
       momentPrice: plan.moment,
+      ...(limited && { limit: limited.limit }),
       ...(plan.dispersion > 0 && {
         dispersion: {
           kernel: kernel(),

@@ -31,12 +31,22 @@ export interface Placement {
   readonly work?: number;
 }
 
-/** Which side each unit hooks to, what each channel holds from left to right, and the buses from the ring down. */
-export interface HookupPlan {
+/** With channels: which side each unit hooks to, what each channel holds from left to right, and the buses from the ring down. */
+export interface ChannelPlan {
   readonly sides: readonly (readonly string[])[];
   readonly channels: readonly (readonly string[])[];
+  readonly columns?: undefined;
   readonly buses: readonly string[];
 }
+
+/** Under plates: the nets with a trunk below each column, from left to right, and the buses from the ring down. */
+interface ColumnsPlan {
+  readonly columns: readonly (readonly string[])[];
+  readonly channels?: undefined;
+  readonly buses: readonly string[];
+}
+
+export type HookupPlan = ChannelPlan | ColumnsPlan;
 
 /**
  * A placed array. `cells` run from the top row down, "-" is a fill dummy. Only core, capacitors and cells are there in floorplans of

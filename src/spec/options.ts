@@ -34,6 +34,9 @@ export interface Option extends TableRow {
   readonly partly?: true;
 }
 
+/** The template that is taken where none is named. */
+export const standardTechnologies = { channel: 'parallel-plate', 'under-plate': 'under-plate' } as const;
+
 export const mostBits = 14;
 export const mostWeights = 20;
 export const mostWeight = 16383;
@@ -106,7 +109,7 @@ export const options: readonly Option[] = [
   {
     key: 'technology',
     values: "a shipped template's name, or a file ending in `.json`, relative to this one",
-    standard: '`parallel-plate`',
+    standard: `\`${standardTechnologies.channel}\`; for the hookup \`under-plate\` \`${standardTechnologies['under-plate']}\``,
     help: 'technology template',
     flag: '--technology <name or file>',
     available: true,
@@ -121,7 +124,6 @@ export const options: readonly Option[] = [
     flag: '--hookup <style>',
     available: true,
     schema: choice('channel', 'under-plate'),
-    works: allBut('under-plate', 'channel'),
     resolve: (_, technology) => technology.hookup,
   },
   {
@@ -154,7 +156,7 @@ export const options: readonly Option[] = [
     key: 'tracksPerChannel',
     values: 'whole number from 1',
     standard: 'chosen',
-    help: 'tracks in a channel',
+    help: 'tracks in a channel; under plates the most trunks below one column',
     available: true,
     schema: whole(1, 64),
   },

@@ -1,7 +1,6 @@
 import type { Result } from '../core/problem.js';
 import { real, record } from './loose.js';
 import { read } from './read.js';
-import type { Refusal } from './read.js';
 import type { Report } from './report.js';
 import { Examination } from './technology-examination.js';
 import { checkGround } from './technology-ground.js';
@@ -14,6 +13,7 @@ import {
   checkRoles,
   checkVia,
 } from './technology-rules.js';
+import { checkHookup } from './technology-hookup.js';
 import { checkUnit } from './technology-unit.js';
 import type { Technology } from './technology.js';
 
@@ -27,6 +27,7 @@ export function checkTechnology(value: unknown, report: Report, at: string): voi
   checkRoles(examination);
   checkPinLayers(examination);
   checkUnit(examination);
+  checkHookup(examination);
   checkDevice(examination);
   checkGround(examination);
   const mismatch = record(examination.technology.mismatch);
@@ -36,20 +37,13 @@ export function checkTechnology(value: unknown, report: Report, at: string): voi
   }
 }
 
-/** Kinds of hookup that a later version may bring. */
-export function technologyRefusals(value: unknown, at: string): Refusal[] {
-  if (record(value).hookup !== 'under-plate') return [];
-  const wanted = '"channel" ("under-plate" is not available yet)';
-  return [{ pointer: `${at}/hookup`, found: '"under-plate"', wanted, place: 'value' }];
-}
-
 /** Reads a technology template (`steelyard/technology`). */
 export function parseTechnology(text: string, file: string): Result<Technology> {
   return read(
     'technology',
     { text, file },
     {
-      refusals: (value) => technologyRefusals(value, ''),
+      refusals: () => [],
       check: (value, report) => checkTechnology(value, report, ''),
     },
   );

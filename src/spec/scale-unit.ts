@@ -128,6 +128,9 @@ function fingersOf(technology: Technology, unit: FramedFingersUnit, wanted_fF: n
   return { ...unit, fingers: 2, fingerLength_um: unit.gap_um };
 }
 
+const snapped = (grid: number, length_um: number): number => (grid * Math.round((length_um * 1000) / grid)) / 1000;
+const inwards = (grid: number, length_um: number): number =>
+  (grid * Math.trunc(figure((length_um * 1000) / grid))) / 1000;
 const onGrid = (length_um: number): number => Math.round(length_um * 1000) / 1000;
 
 /** The unit in its technology: tabs, terminals, capacitance and the device's size parameters follow its new sides. */
@@ -135,15 +138,9 @@ function rebuilt(technology: Technology, resized: Scalable): Technology {
   const before = technology.unit as Scalable;
   const [sizes, former] = [unitSize_um(resized), unitSize_um(before)];
   const grid = technology.grid_nm;
-  const snapped = (length_um: number) => (grid * Math.round((length_um * 1000) / grid)) / 1000;
-  const inwards = (length_um: number) => (grid * Math.trunc(figure((length_um * 1000) / grid))) / 1000;
   const within = (value: number, most: number) => Math.max(-most, Math.min(most, value));
 
-  const apart = tabLevelsApart({ ...technology, unit: resized }) / 1000;
-  const spacing = technology.layers.find((layer) => layer.name === technology.roles.bottomPlate)?.minSpacing_um ?? 0;
-  const highest = inwards(Math.min((sizes[1] + spacing - apart) / 2, (sizes[1] - resized.tab_um[1]) / 2));
-  const lowest = (grid * Math.ceil(figure((apart * 500) / grid))) / 1000;
-  const tabLevel_um = Math.max(lowest, Math.min(highest, snapped((before.tabLevel_um * sizes[1]) / former[1])));
+  const tabLevel_um = tabLevelOf(technology, before, resized);
 
   const { bottom, top } = before.terminals;
   const room = topRoom_um(technology, resized);
@@ -152,19 +149,19 @@ function rebuilt(technology: Technology, resized: Scalable): Technology {
     resized.kind === 'framed-fingers'
       ? top.at_um[1] + (fingerSizes(resized).barY - fingerSizes(before as FramedFingersUnit).barY) / 1000
       : level
-        ? Math.sign(top.at_um[1]) * tabLevel_um
+        ? Math.sign(top.at_um[1]) * (tabLevel_um ?? 0)
         : (top.at_um[1] * sizes[1]) / former[1];
   const terminals = {
     bottom: {
       ...bottom,
-      at_um: [0, 1].map((i) => inwards((bottom.at_um[i] * sizes[i]) / former[i])) as [number, number],
+      at_um: [0, 1].map((i) => inwards(grid, (bottom.at_um[i] * sizes[i]) / former[i])) as [number, number],
     },
     top: {
       ...top,
-      at_um: [inwards(within(top.at_um[0], room[0])), snapped(within(topY, room[1]))] as [number, number],
+      at_um: [inwards(grid, within(top.at_um[0], room[0])), snapped(grid, within(topY, room[1]))] as [number, number],
     },
   };
-  const unit: Unit = { ...resized, tabLevel_um, terminals };
+  const unit: Unit = { ...resized, ...(tabLevel_um !== undefined && { tabLevel_um }), terminals };
   const drawn = drawnCapacitance_fF({ ...technology, unit }) ?? 0;
   const calibration = before.capacitance_fF / (drawnCapacitance_fF(technology) ?? 1);
   return {
@@ -172,6 +169,18 @@ function rebuilt(technology: Technology, resized: Scalable): Technology {
     unit: { ...unit, capacitance_fF: figure(drawn * calibration) },
     device: { ...technology.device, ...parametersFor(technology, before, resized) },
   };
+}
+
+/** The level of the tabs in proportion to the unit's height, as far as stubs and their spacing leave the choice. */
+function tabLevelOf(technology: Technology, before: Scalable, resized: Scalable): number | undefined {
+  if (before.tabLevel_um === undefined || resized.tab_um === undefined) return undefined;
+  const grid = technology.grid_nm;
+  const [height, former] = [unitSize_um(resized)[1], unitSize_um(before)[1]];
+  const apart = tabLevelsApart({ ...technology, unit: resized }) / 1000;
+  const spacing = technology.layers.find((layer) => layer.name === technology.roles.bottomPlate)?.minSpacing_um ?? 0;
+  const highest = inwards(grid, Math.min((height + spacing - apart) / 2, (height - resized.tab_um[1]) / 2));
+  const lowest = (grid * Math.ceil(figure((apart * 500) / grid))) / 1000;
+  return Math.max(lowest, Math.min(highest, snapped(grid, (before.tabLevel_um * height) / former)));
 }
 
 /** How far from the middle the via to the straps may stand. */

@@ -40,8 +40,9 @@ const placement = object({
 });
 
 const hookup = object({
-  sides: list(list(choice('L', 'R', '-'))),
-  channels: list(list(name)),
+  'sides?': list(list(choice('L', 'R', '-'))),
+  'channels?': list(list(name)),
+  'columns?': list(list(name)),
   buses: list(name),
 });
 

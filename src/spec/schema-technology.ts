@@ -65,9 +65,19 @@ const terminals = described(
   'where the hookup meets the unit: about its middle, of a named cell in its own coordinates',
 );
 const capacitance_fF = described(positive, 'capacitance of one unit');
-const tabs = {
-  tab_um: described(pair(length), 'how far the tabs left and right stand out, and how tall they are'),
-  tabLevel_um: described(length, 'the left tab stands this far above the middle, the right one below'),
+const met = {
+  'tab_um?': described(
+    pair(length),
+    'how far the tabs left and right stand out, and how tall they are; required with channels',
+  ),
+  'tabLevel_um?': described(
+    length,
+    'the left tab stands this far above the middle, the right one below; required with channels',
+  ),
+  'strip_um?': described(
+    lengthOrZero,
+    'height of the landing strip along the lower edge of the bottom terminal; required under plates',
+  ),
 };
 
 const unit = byKind({
@@ -75,7 +85,7 @@ const unit = byKind({
     kind: constant('parallel-plate'),
     topPlate_um: described(pair(length), 'width and height of the top plate'),
     plateEnclosure_um: described(length, 'by which the bottom plate surrounds it'),
-    ...tabs,
+    ...met,
     capacitance_fF,
     terminals,
   }),
@@ -90,8 +100,8 @@ const unit = byKind({
       length,
       "height of the bar that the comb's fingers stand on; the via to the straps is there",
     ),
-    ...tabs,
-    'shield?': described(truth, "a VSS strip on the trunks' metal under each column of units"),
+    ...met,
+    'shield?': described(truth, "with channels: a VSS strip on the trunks' metal under each column of units"),
     capacitance_fF: described(
       positive,
       'capacitance of one unit: what facingCapacitance_fF_per_um gives, within 5 percent',
@@ -125,7 +135,10 @@ const roles = object({
   bottomPlate: described(harmless, "metal of the bottom terminal: bottom plate, frame, or a named cell's landing"),
   topPlate: described(harmless, 'layer of the top terminal: top plate, comb (the same metal as the frame), or landing'),
   trunk: described(harmless, 'vertical wires of the bits'),
-  stub: described(harmless, 'horizontal wires from the units to their trunks'),
+  stub: described(
+    harmless,
+    'horizontal wires from the units to their trunks; under framed fingers the metal of the plate that shields them from trunks',
+  ),
   bus: described(harmless, "horizontal wires that join a bit's trunks"),
   strap: described(harmless, 'top-plate wires along the columns'),
   spine: described(harmless, 'wire that joins the straps'),

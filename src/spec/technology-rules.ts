@@ -63,7 +63,15 @@ export function checkGrid({ technology, layers, vias, report, at }: Examination)
   const unit = record(technology.unit);
   const here = `${at}/unit`;
   items(unit.topPlate_um).forEach((side, i) => onGrid(`${here}/topPlate_um/${i}`, side, 2));
-  for (const key of ['plateEnclosure_um', 'tabLevel_um', 'fingerLength_um', 'gap_um', 'frameWidth_um', 'barWidth_um'])
+  for (const key of [
+    'plateEnclosure_um',
+    'tabLevel_um',
+    'strip_um',
+    'fingerLength_um',
+    'gap_um',
+    'frameWidth_um',
+    'barWidth_um',
+  ])
     onGrid(`${here}/${key}`, unit[key]);
   onGrid(`${here}/fingerWidth_um`, unit.fingerWidth_um, 2);
   items(unit.tab_um).forEach((side, i) => onGrid(`${here}/tab_um/${i}`, side, i === 1 ? 2 : 1));

@@ -50,20 +50,26 @@ interface AnyUnit {
   readonly terminals: { readonly bottom: Terminal; readonly top: Terminal };
 }
 
-/** A bottom plate with a smaller top plate on it; tabs left (upper level) and right (lower level) of the bottom plate. */
-export interface ParallelPlateUnit extends AnyUnit {
+/** Where the hookup meets what is drawn: in the channel style at tabs, under plates at a strip along the lower edge. */
+interface Met {
+  readonly tab_um?: readonly [number, number];
+  readonly tabLevel_um?: number;
+  readonly strip_um?: number;
+}
+
+/** A bottom plate with a smaller top plate on it; tabs left (upper level) and right (lower level) of the bottom plate, or a strip. */
+export interface ParallelPlateUnit extends AnyUnit, Met {
   readonly kind: 'parallel-plate';
   readonly topPlate_um: readonly [number, number];
   readonly plateEnclosure_um: number;
-  readonly tab_um: readonly [number, number];
-  readonly tabLevel_um: number;
 }
 
 /**
  * Interdigitated metal: a closed frame with fingers hanging from its upper side, the bottom terminal, and within it a comb on the same
- * metal with its fingers upwards, the top terminal. Tabs as on a parallel plate.
+ * metal with its fingers upwards, the top terminal. Tabs as on a parallel plate; a strip widens the frame's lower side, and then a plate of
+ * the bottom terminal on the stubs' metal lies under it all.
  */
-export interface FramedFingersUnit extends AnyUnit {
+export interface FramedFingersUnit extends AnyUnit, Met {
   readonly kind: 'framed-fingers';
   /** Fingers of the comb; the frame has one fewer. */
   readonly fingers: number;
@@ -74,8 +80,6 @@ export interface FramedFingersUnit extends AnyUnit {
   readonly frameWidth_um: number;
   /** Height of the bar that the comb's fingers stand on. */
   readonly barWidth_um: number;
-  readonly tab_um: readonly [number, number];
-  readonly tabLevel_um: number;
   /** True: a `VSS` strip on the trunks' metal under each column of units. */
   readonly shield?: boolean;
 }

@@ -75,8 +75,12 @@ export function matchedArea_um2(unit: Unit): number {
 export function isWideUnit({ unit, layers, roles }: Technology): boolean {
   const from = layers.find((layer) => layer.name === roles.bottomPlate)?.wideFrom_um;
   if (from === undefined || unit.kind === 'named-cell') return false;
+  const [width, height] = unitSize_um(unit);
+  const { strip_um = 0 } = unit;
   const widest =
-    unit.kind === 'parallel-plate' ? Math.min(...unitSize_um(unit)) : Math.max(unit.frameWidth_um, unit.fingerWidth_um);
+    unit.kind === 'parallel-plate'
+      ? Math.min(width, height + strip_um)
+      : Math.max(unit.frameWidth_um + strip_um, unit.fingerWidth_um);
   return nm(Math.round(widest * 1000) / 1000) >= nm(from);
 }
 

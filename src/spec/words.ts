@@ -30,12 +30,17 @@ export function shown(value: unknown): string {
   return cut(JSON.stringify(value) ?? 'nothing');
 }
 
-/** `"a", "b" or "c"`. */
-export function either(values: readonly unknown[]): string {
+function joined(values: readonly unknown[], word: string): string {
   const words = values.map((v) => JSON.stringify(v));
   const last = words.pop() ?? '';
-  return words.length === 0 ? last : `${words.join(', ')} or ${last}`;
+  return words.length === 0 ? last : `${words.join(', ')} ${word} ${last}`;
 }
+
+/** `"a", "b" or "c"`. */
+export const either = (values: readonly unknown[]): string => joined(values, 'or');
+
+/** `"a", "b" and "c"`. */
+export const all = (values: readonly unknown[]): string => joined(values, 'and');
 
 /** `1 row`, `2 rows`. */
 export const counted = (count: number, noun: string): string => `${count} ${noun}${count === 1 ? '' : 's'}`;

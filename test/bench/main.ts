@@ -3,6 +3,7 @@
 import { writeFileSync } from 'node:fs';
 import { cpus } from 'node:os';
 import { parseArgs } from 'node:util';
+import { measureArrays } from './arrays.js';
 import { exponent } from './fit.js';
 import { measureHostile } from './hostile.js';
 import { measureInterrupts } from './interrupts.js';
@@ -12,7 +13,7 @@ import { measureSolve } from './solve.js';
 import { measureWhole } from './whole.js';
 
 const bitCounts = [6, 8, 10, 12];
-const known = ['whole', 'solve', 'placement', 'router', 'hostile', 'interrupts'];
+const known = ['whole', 'solve', 'placement', 'router', 'arrays', 'hostile', 'interrupts'];
 
 const { values, positionals } = parseArgs({
   allowPositionals: true,
@@ -22,6 +23,7 @@ const { values, positionals } = parseArgs({
     seed: { type: 'string', default: '1' },
     from: { type: 'string', default: '0' },
     seeds: { type: 'string', default: '20' },
+    technology: { type: 'string' },
     bits: { type: 'string', default: bitCounts.join(',') },
   },
 });
@@ -65,6 +67,11 @@ if (chosen.includes('router')) {
   print('The router against an integer programme, random placements', [measured.against]);
   print('The router on whole arrays', measured.rows);
   result['router'] = measured;
+}
+if (chosen.includes('arrays')) {
+  const rows = measureArrays(values.bits.split(',').map(Number), values.technology);
+  print('Arrays of every emphasis with 0 to 2 rings', rows);
+  result['arrays'] = rows;
 }
 if (chosen.includes('hostile')) {
   const runs = Number(values.runs ?? 20_000);

@@ -321,6 +321,9 @@ const unitDeleted: Plant = (p, random) => {
   const unit = p.structures.find((s) => s.name === reference.structure)!;
   const plates = unit.polygons.filter((polygon) => polygon.part === 'plate');
   const lost = pick(plates, random);
+  // A plate under a comb is no part of what makes it a unit: without it the unit is one of another size.
+  const { roles } = p.technology;
+  const shields = lost && ![roles.bottomPlate, roles.topPlate].includes(layerOf(p, lost)?.name ?? '');
   const faulty = {
     ...unit,
     name: `${unit.name}_faulty`,
@@ -336,7 +339,10 @@ const unitDeleted: Plant = (p, random) => {
     }),
     [faulty],
   );
-  return { polygons, rules: ['unit-missing'], nets: [cell.name], region: cell.region };
+  const region = cell.region;
+  return shields
+    ? { polygons, rules: ['unit-area'], region }
+    : { polygons, rules: ['unit-missing'], nets: [cell.name], region };
 };
 
 const busCut: Plant = (p, random) => {
@@ -425,9 +431,52 @@ const shieldTied: Plant = (p, random) => {
     p,
     random,
     layer,
-    boxes.filter((box) => box.part === 'shield'),
+    boxes.filter((box) => box.part === 'shield' || (box.part === 'trunk' && box.net === 'VSS')),
     boxes.filter((box) => isBit(p, box.net) && box.part === 'trunk'),
   );
+};
+
+/** The via on a unit's landing strip moved up along its trunk until it lies under the top plate. */
+const viaUnderPlate: Plant = (p, random) => {
+  if (p.technology.viaUnderTopPlate) return undefined;
+  const { roles } = p.technology;
+  const joins = p.technology.vias.find((v) => v.lower === roles.trunk && v.upper === roles.stub)!;
+  const flat = flatten(p.structures, p.topStructure);
+  const top = p.technology.layers.find((l) => l.name === roles.topPlate)!;
+  const plates = flatBoxes(flat, flat.layers.get(streamKey(top.stream)));
+  const vias = topBoxes(p, 'via').filter(({ polygon }) => viaOf(p, polygon) === joins && isBit(p, polygon.net));
+  return fromAny(vias, random, ({ index, polygon, box }) => {
+    const above = plates
+      .filter((plate) => plate.x0 <= box.x0 && plate.x1 >= box.x1 && plate.y0 >= box.y1)
+      .sort((a, b) => a.y0 - b.y0)[0];
+    const up = above && above.y0 - box.y1 + p.technology.grid_nm;
+    if (!above || up > nanometres(1)) return undefined;
+    const moved = { ...box, y0: box.y0 + up, y1: box.y1 + up };
+    return { polygons: withPolygon(p, index, redrawn(polygon, moved)), rules: ['via-under-plate'], region: moved };
+  });
+};
+
+/** A via on a trunk below a unit that hangs on another one: where the two cross, nothing keeps them apart any more. */
+const viaTooMany: Plant = (p, random) => {
+  const { roles } = p.technology;
+  const joins = p.technology.vias.find((v) => v.lower === roles.trunk && v.upper === roles.stub)!;
+  const half = nanometres(joins.size_um) / 2;
+  const flat = flatten(p.structures, p.topStructure);
+  const stub = p.technology.layers.find((l) => l.name === roles.stub)!;
+  const plates = flatBoxes(flat, flat.layers.get(streamKey(stub.stream))).filter((box) => box.part === 'plate');
+  const trunks = topBoxes(p, 'trunk').filter(({ polygon }) => isBit(p, polygon.net));
+  return fromAny(trunks, random, ({ polygon, box }) => {
+    const passed = plates.filter(
+      (plate) => overlaps(plate, box) && plate.net !== polygon.net && plate.y0 > box.y0 && plate.y1 < box.y1,
+    );
+    const plate = pick(passed, random);
+    if (!plate) return undefined;
+    const x = (box.x0 + box.x1) / 2;
+    const y = plate.y0 + (box.x1 - box.x0) / 2;
+    const via = rectangle(x - half, y - half, x + half, y + half);
+    const polygons = withAdded(p, { ...joins.stream, xy: outline(via) });
+    return { polygons, rules: ['short'], nets: [polygon.net!, plate.net!], region: via };
+  });
 };
 
 const smallIsland: Plant = (p, random) => {
@@ -494,6 +543,12 @@ export const faults: Readonly<Record<string, Plant>> = {
   'shield tied to a trunk': shieldTied,
   'island below its least area': smallIsland,
   'enclosure one grid step short': enclosureShort,
+};
+
+/** Kinds of fault that trunks below the plates bring with them. */
+export const underPlateFaults: Readonly<Record<string, Plant>> = {
+  'via under a top plate': viaUnderPlate,
+  'via too many below a unit': viaTooMany,
 };
 
 /** Whether a finding names a planted fault: one of its rules, one of its nets, within a pitch of it. */

@@ -28,7 +28,7 @@ describe('a command line that is none ends with 2, says what was found and what 
     ['place --bits 4 --seed -1', '--seed: found "-1"; wanted a whole number'],
     ['place --bits 4 --rings 9', '--rings: found 9; wanted a whole number from 0 to 3'],
     ['place --bits 4 --balance on', '--balance: found "on"; wanted "off" ("on" is not available yet)'],
-    ['place --bits 4 --hookup under-plate', '--hookup: found "under-plate"; wanted "channel" ("under-plate" is not'],
+    ['place --bits 4 --hookup under', '--hookup: found "under"; wanted "channel" or "under-plate"'],
     [
       'place --bits 4 --technology pp',
       '--technology: found "pp"; wanted a shipped template (framed-fingers, named-cell, parallel',
@@ -151,7 +151,13 @@ describe('what needs no input file', () => {
 
   it('technology lists the templates, one line each, and prints one as its file is', async () => {
     const list = (await outcome('technology')).out.trimEnd().split('\n');
-    expect(list.map((line) => line.split(' ')[0])).toEqual(['framed-fingers', 'named-cell', 'parallel-plate']);
+    expect(list.map((line) => line.split(' ')[0])).toEqual([
+      'framed-fingers',
+      'named-cell',
+      'parallel-plate',
+      'under-fingers',
+      'under-plate',
+    ]);
     for (const line of list) expect(line).toMatch(/^[a-z-]+ +Generic .*not foundry data/i);
     for (const line of list) {
       const name = line.split(' ')[0] ?? '';

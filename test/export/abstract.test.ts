@@ -210,7 +210,7 @@ const drawings: [string, Polygons][] = [
   ...([{ bits: 6 }, { bits: 5, fillTop: 'VSS' }, { bits: 4, rings: 0 }, { bits: 5, rings: 2 }] as const).map(
     (given): [string, Polygons] => [JSON.stringify(given), drawn({ ...given, effort: 'quick' }).polygons!],
   ),
-  ...['framed-fingers', 'named-cell'].map((name): [string, Polygons] => [
+  ...['framed-fingers', 'named-cell', 'under-plate', 'under-fingers'].map((name): [string, Polygons] => [
     name,
     drawn({ bits: 4, effort: 'quick' }, undefined, 1e6, template(name)).polygons!,
   ]),

@@ -140,9 +140,8 @@ const cases: [name: string, text: string, problems: string[]][] = [
   ],
   [
     'values of later versions',
-    withKeys('"bits": 4, "hookup": "under-plate", "balance": "on", "pair": "mirrored"'),
+    withKeys('"bits": 4, "balance": "on", "pair": "mirrored"'),
     [
-      '/hookup | "under-plate" | "channel" ("under-plate" is not available yet)',
       '/balance | "on" | "off" ("on" is not available yet)',
       '/pair | "mirrored" | "none" ("mirrored" is not available yet)',
     ],

@@ -73,7 +73,9 @@ const floorplans: Case[] = [
   [
     ['hookup', 'columns'],
     [],
-    ['/hookup | key "columns" | "sides" and "channels": wiring under the plates is not available yet'],
+    [
+      '/hookup | "sides", "channels" and "columns" | "sides" and "channels", or "columns" alone for trunks under the plates',
+    ],
   ],
   [['placement', 'status'], 'optimal', ['/placement/status | "optimal" | "proved", "effort-spent" or "interrupted"']],
   [
@@ -179,7 +181,7 @@ const technologies: Case[] = [
       '/unit | no key "terminals" | "terminals": an object with "bottom", "top"',
     ],
   ],
-  [['hookup'], 'under-plate', ['/hookup | "under-plate" | "channel" ("under-plate" is not available yet)']],
+  [['hookup'], 'under', ['/hookup | "under" | "channel" or "under-plate"']],
   [['name'], '../x', ['/name | "../x" | a letter, then letters, digits, - or _, 40 at most']],
   [['layers', 0, 'minWidth_um'], 0.203, ['/layers/0/minWidth_um | 0.203 um | a multiple of 0.005 um, the grid']],
   [

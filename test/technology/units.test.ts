@@ -78,7 +78,7 @@ describe('framed fingers', () => {
     const [region, ...more] = unit.polygons.filter(({ layer }) => layer === stream.layer);
     expect(more).toEqual([]);
     for (const { xy } of comb) for (const [x, y] of xy) expect(holds(region.xy, x, y)).toBe(true);
-    const tab = (p.technology.unit as FramedFingersUnit).tab_um[0] * 1000;
+    const tab = (p.technology.unit as FramedFingersUnit).tab_um![0] * 1000;
     const reach = (shapes: readonly Polygon[]) => Math.max(...shapes.flatMap(({ xy }) => xy.map(([x]) => x)));
     expect(reach([region])).toBe(reach(frame) - tab);
   });
