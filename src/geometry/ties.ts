@@ -3,9 +3,9 @@ import { Infeasible } from '../core/problem.js';
 import { rectangle, type Rectangle } from '../core/rectangle.js';
 import { nm, um } from '../core/units.js';
 import type { Frame } from '../hookup/frame.js';
-import { viaBetween } from '../hookup/rules.js';
 import { tiesOf } from '../hookup/ties.js';
 import type { Technology } from '../spec/technology.js';
+import { joinToFrame } from './frame-joint.js';
 import { Sheet } from './sheet.js';
 
 /** Contacts are drawn as structures of one, and arrays of it. */
@@ -105,9 +105,8 @@ function drawGroundLines(sheet: Sheet, technology: Technology, frame: Frame): vo
   sheet.add(roles.trunk, rectangle(0, height - w, width, height), line);
   sheet.add(roles.trunk, rectangle(0, frameLow, w, height), line);
   sheet.add(roles.trunk, rectangle(width - w, frameLow, width, height), line);
-  const via = viaBetween(technology, roles.trunk, roles.stub).name;
   for (let row = -frame.rings; row < frame.rows + frame.rings; row++)
-    for (const x of [w / 2, width - w / 2]) sheet.via(via, rules.viaTrack.size, x, frame.rowY(row), 'VSS');
+    for (const x of [w / 2, width - w / 2]) joinToFrame(sheet, technology, rules, x, frame.rowY(row), 'VSS');
 }
 
 /** A wire below the frame's left side, down to the edge, and its pin. */

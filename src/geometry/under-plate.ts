@@ -6,6 +6,7 @@ import { viaBetween } from '../hookup/rules.js';
 import type { UnderPlateFrame } from '../hookup/under-plate-frame.js';
 import type { UnderPlateHookup } from '../hookup/under-plate-wires.js';
 import type { Technology } from '../spec/technology.js';
+import { joinToFrame } from './frame-joint.js';
 import type { Sheet } from './sheet.js';
 
 /** What the under-plate style adds to its wires: a via on every unit's landing strip, and the fill dummies' trunks joined to the frame. */
@@ -13,15 +14,8 @@ export function drawUnderPlates(sheet: Sheet, technology: Technology, hookup: Un
   const { rules } = hookup.frame;
   const { roles } = technology;
   const via = viaBetween(technology, roles.trunk, roles.stub).name;
-  for (const { net, x, y } of [...hookup.landings, ...hookup.grounds]) sheet.via(via, rules.viaTrack.size, x, y, net);
-  if (!rules.floor) return;
-  // The frame lies a metal above the one that trunks are met on: a pad, and a via on it.
-  const toFrame = viaBetween(technology, roles.stub, roles.bottomPlate);
-  const half = Math.max(rules.trackWidth / 2, nm(toFrame.size_um) / 2 + nm(toFrame.enclosure_um));
-  for (const { net, x, y } of hookup.grounds) {
-    sheet.add(roles.stub, rectangle(x - half, y - half, x + half, y + half), { net, part: 'pad' });
-    sheet.via(toFrame.name, nm(toFrame.size_um), x, y, net);
-  }
+  for (const { net, x, y } of hookup.landings) sheet.via(via, rules.viaTrack.size, x, y, net);
+  for (const { net, x, y } of hookup.grounds) joinToFrame(sheet, technology, rules, x, y, net);
 }
 
 /** Fill dummies with the top plate on `VSS`: upper metal runs from the pad straight down to a via on the dummy's own landing strip. */

@@ -84,6 +84,14 @@ describe('around and below the array, drawn without a finding', () => {
     }),
   );
 
+  it.each(['under-plate', 'under-fingers'])('below trunks that run under the plates: %s', (name) => {
+    for (const [i, [{ shieldLines: _, ...ground }, vias]] of Object.values(cases).entries()) {
+      if (Object.keys(ground).length === 0) continue;
+      const side = i % 2 === 0 ? 'bottom' : 'top';
+      draw({ bits: 3, rings: i % 3, pins: { bits: { side } } }, technologyWith(name, ground, vias));
+    }
+  });
+
   it('with fill dummies on VSS beside shield lines', () => {
     draw(
       { bits: 5, core: { rows: 6, columns: 6 }, fillTop: 'VSS' },
