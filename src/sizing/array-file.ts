@@ -1,12 +1,9 @@
 import type { ArraySpec } from '../spec/array-spec.js';
 import type { ResolvedConverter } from '../spec/converter.js';
-import { options, unitMismatch } from '../spec/options.js';
+import { unitMismatch } from '../spec/options.js';
 import { withUnitOf } from '../spec/scale-unit.js';
 import type { Technology } from '../spec/technology.js';
 import type { Sizing } from './size.js';
-
-/** Keys that an array file may not have yet. */
-const waiting = new Set(options.filter(({ available }) => !available).map(({ key }) => key));
 
 /**
  * The array file of a sized converter.
@@ -21,7 +18,7 @@ export function arrayFileOf(
   const { mismatch, topLoad_fF } = converter;
   const drive = resistances?.drive ?? converter.drive;
   const made = withUnitOf(technology, unit.capacitance_fF);
-  const array: ArraySpec = {
+  return {
     format: 'steelyard/array',
     version: 1,
     ...(weights ? { weights } : { bits }),
@@ -32,5 +29,4 @@ export function arrayFileOf(
     ...(topLoad_fF > 0 && { topLoad_fF }),
     limits,
   };
-  return Object.fromEntries(Object.entries(array).filter(([key]) => !waiting.has(key))) as unknown as ArraySpec;
 }

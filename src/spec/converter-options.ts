@@ -152,7 +152,6 @@ export const converterOptions: readonly ConverterOption[] = [
     values: 'whole number from 0',
     standard: '1',
     help: 'seed of noise, of mismatch and of the phase of the input',
-    flag: '--seed <number>',
     schema: seed,
     value: 1,
   },

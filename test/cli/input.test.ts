@@ -25,11 +25,7 @@ describe('a broken file ends with its code, is named with the place of each prob
     ],
     ['bits and weights', `{${head}, "bits": 4, "weights": [1, 2]}`, [/\/weights: found "weights" beside "bits"/]],
     ['a repeated key', `{${head}, "bits": 4, "bits": 5}`, [/\/bits: found key "bits" once more/]],
-    [
-      'a key of a later version',
-      `{${head}, "bits": 4, "limits": {"inl_lsb": 1, "dnl_lsb": 1}}`,
-      [/"limits" is not available/],
-    ],
+    ['a key of a later version', `{${head}, "bits": 4, "block": {"maxWidth_um": 90}}`, [/"block" is not available/]],
     [
       'a pitch with wires',
       `{${head}, "bits": 4, "core": {"rows": 5, "columns": 3, "pitch_um": [9, 9]}}`,

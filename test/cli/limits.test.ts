@@ -2,7 +2,8 @@ import { describe, expect, it } from 'vitest';
 import { MachineInMemory } from './machine-in-memory.js';
 
 const array = (keys: object) => ({ format: 'steelyard/array', version: 1, bits: 6, effort: 'quick', ...keys });
-const placed = async (keys: object, options = '') => {
+// Cells alone: what the wires cost has a test of its own below.
+const placed = async (keys: object, options = '--floorplan-only') => {
   const machine = new MachineInMemory().put('a.json', array(keys));
   const code = await machine.run(`place a.json --out d ${options}`);
   return { code, machine, metrics: machine.files.has('d/cdac6.metrics.json') && machine.json('d/cdac6.metrics.json') };
@@ -26,7 +27,7 @@ describe('limits of an array', () => {
     const { code, machine } = await placed({ mismatch, limits: { dnl_lsb: 0.2, yield: 0.98 } });
     expect(code).toBe(1);
     expect(machine.out).toMatch(/^limit missed +The yield is \d+\.\d+ %; the limit is 98 %\.$/m);
-    expect(machine.files.has('d/cdac6.gds')).toBe(true);
+    expect(machine.files.has('d/cdac6.floorplan.svg')).toBe(true);
   });
 
   it('without a yield hold for all errors at three sigma', async () => {
@@ -43,16 +44,27 @@ describe('limits of an array', () => {
 
   it('take as many arrays as --samples says; the same seed gives the same share', async () => {
     const limits = { dnl_lsb: 0.3 };
-    const first = await placed({ mismatch, limits }, '--samples 5000 --json');
+    const first = await placed({ mismatch, limits }, '--samples 5000 --json --floorplan-only');
     expect(first.metrics.yield.samples).toBe(5000);
     expect(JSON.parse(first.machine.out).yield).toEqual(first.metrics.yield);
-    expect((await placed({ mismatch, limits }, '--samples 5000')).metrics.yield).toEqual(first.metrics.yield);
-    expect((await placed({ mismatch, limits, seed: 2 }, '--samples 5000')).metrics.yield.share).not.toBe(first.metrics.yield.share); // prettier-ignore
+    expect((await placed({ mismatch, limits }, '--samples 5000 --floorplan-only')).metrics.yield).toEqual(
+      first.metrics.yield,
+    );
+    expect((await placed({ mismatch, limits, seed: 2 }, '--samples 5000 --floorplan-only')).metrics.yield.share).not.toBe(first.metrics.yield.share); // prettier-ignore
+  });
+
+  it('count the wires of what is drawn', async () => {
+    const { metrics, machine } = await placed({ mismatch, limits: { dnl_lsb: 0.3 } }, '');
+    expect(metrics.parasitic.dnl_lsb).toBeGreaterThan(0);
+    expect(metrics.yield.withoutWiring).toBeGreaterThan(metrics.yield.share);
+    expect(machine.out).toMatch(
+      /^ +\d[\d.]* % without the gradient, \d[\d.]* % without the wires, \d[\d.]* % with mismatch alone$/m,
+    );
   });
 
   it('are held against a floorplan that is drawn again, too', async () => {
     const { machine } = await placed({ mismatch, limits: { dnl_lsb: 0.2, yield: 0.98 } });
-    expect(await machine.run('place d/cdac6.floorplan.json --samples 2000 --out again')).toBe(1);
+    expect(await machine.run('place d/cdac6.floorplan.json --floorplan-only --samples 2000 --out again')).toBe(1);
     expect(machine.json('again/cdac6.metrics.json').yield.samples).toBe(2000);
   });
 

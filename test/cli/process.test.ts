@@ -17,16 +17,16 @@ afterEach(() => {
 const quick = ['place', '--bits', '4', '--effort', 'quick'];
 const endings = [
   'cir',
+  'extracted.cir',
   'floorplan.json',
   'floorplan.svg',
   'gds',
   'hookup.svg',
-  'mismatch.svg',
-  'mismatch.csv',
   'lef',
   'lvs.cir',
-  'extracted.cir',
   'metrics.json',
+  'mismatch.csv',
+  'mismatch.svg',
   'polygons.json',
 ];
 const text = (path: string) => readFileSync(join(folder, path), 'utf8');
