@@ -40,7 +40,7 @@ it('the packed archive, installed in an empty folder, has a tool and a library t
   const run = spawnSync('npx', ['steelyard', 'place', '--bits', '4'], { cwd: empty, env, encoding: 'utf8' });
   expect({ status: run.status, stderr: run.stderr }).toEqual({ status: 0, stderr: '' });
   expect(run.stdout).toMatch(/^cdac4, 4 bits/);
-  expect(filesBelow(join(empty, 'cdac4')).length).toBe(11);
+  expect(filesBelow(join(empty, 'cdac4')).length).toBe(12);
 
   writeFileSync(join(empty, 'use.js'), `import { schemaNames } from 'steelyard'; console.log(schemaNames[0]);`);
   const library = execFileSync(process.execPath, ['use.js'], { cwd: empty, encoding: 'utf8' });

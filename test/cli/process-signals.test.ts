@@ -75,7 +75,7 @@ describe('Ctrl-C', () => {
     const ours = filesBelow(join(folder, 'o')).filter((name) => name.startsWith('old'));
     expect(ours).toEqual(['old.floorplan.json', 'old.metrics.json', 'old.note']);
     expect(err).toContain('steelyard: o/old.gds removed: it belonged to the floorplan that was there before\n');
-    expect(filesBelow(join(folder, 'o')).filter((name) => name.startsWith('cdac2'))).toHaveLength(10);
+    expect(filesBelow(join(folder, 'o')).filter((name) => name.startsWith('cdac2'))).toHaveLength(12);
   });
 
   it('ends the drawing and checking of what is there too', { timeout: 180_000 }, async () => {

@@ -25,7 +25,7 @@ describe('the built tool with workers', () => {
       const args = ['place', '--bits', '8', '--out', workers, '--workers', workers];
       expect(await finished(folder, args)).toMatchObject({ code: 0, err: '' });
     }
-    expect(bytes('1').length).toBe(11);
+    expect(bytes('1').length).toBe(12);
     expect(bytes('2')).toEqual(bytes('1'));
     expect(bytes('5')).toEqual(bytes('1'));
   });
@@ -41,7 +41,7 @@ describe('the built tool with workers', () => {
       signal: null,
       err: 'steelyard: interrupted; the best so far is saved\n',
     });
-    expect(filesBelow(join(folder, 'o')).length).toBe(11);
+    expect(filesBelow(join(folder, 'o')).length).toBe(12);
     const checked = await finished(folder, ['check', 'o/cdac8.floorplan.json', 'o/cdac8.polygons.json']);
     expect(checked).toMatchObject({ code: 0, out: expect.stringMatching(/^no findings\n/) });
   });
